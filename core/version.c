@@ -1,0 +1,9 @@
+#include <bandtally/bandtally.h>
+
+#include "bt-config.h"
+
+const char *
+bt_version (void)
+{
+  return BT_VERSION;
+}
