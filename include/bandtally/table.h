@@ -6,17 +6,37 @@
 
 G_BEGIN_DECLS
 
-/* Films and their tallies (same length). (transfer full): one JSON object { "bandtally": version, "films": [...] }. Numbers are
- * written so that reading them back gives the same double; what could not be had is null. */
+/* A file that could not be graded, and the whole sentence that says why. */
+typedef struct { char *file; char *reason; } BtFailure;
+BtFailure *bt_failure_new (const char *file, const char *reason);
+void bt_failure_free (BtFailure *failure);
+
+/**
+ * bt_tallies_to_json_with_failures:
+ * @films: (element-type BtFilm)
+ * @tallies: (element-type BtTally): as many as @films
+ * @failures: (nullable) (element-type BtFailure): files that are not among @films
+ *
+ * Numbers are written so that reading them back gives the same double; what could not be had is null.
+ *
+ * Returns: (transfer full): one JSON object { "bandtally": version, "films": [...], "failed": [...] }, UTF-8, ending in a line
+ *   feed
+ */
+char *bt_tallies_to_json_with_failures (GPtrArray *films, GPtrArray *tallies, GPtrArray *failures);
 char *bt_tallies_to_json (GPtrArray *films, GPtrArray *tallies);
-/* (transfer full): RFC 4180, one header record and one record a film. */
+/* (transfer full): RFC 4180, one header record and one record a film; an empty field is a value that could not be had. The
+ * columns at wavelengths are those of all tallies together. */
 char *bt_tallies_to_csv (GPtrArray *films, GPtrArray *tallies);
-/* (transfer full): translated text for a terminal of this many columns. */
+/* (transfer full): translated text for a terminal of this many columns; 0 for as many as it takes. A single film gets its whole
+ * account, several get a line each and their flags below. */
 char *bt_tallies_to_text (GPtrArray *films, GPtrArray *tallies, int columns);
 
-/* (transfer full): "0.661(26)", "1.52e5(3)": a value with its standard uncertainty in brackets, two digits; "-" for NAN. */
+/* (transfer full): "0.661(26)", "1.520(31)e5": a value with its standard uncertainty in brackets, two digits that count in the
+ * value's last places; the value alone where @u is 0 or not finite; "-" for NAN. With the locale's decimal mark: for people,
+ * never for files. */
 char *bt_format_uncertain (double value, double u);
-/* (transfer full): value with @digits significant digits in the window's locale where @localised, else with a point. */
+/* (transfer full): value with @digits significant digits in the window's locale where @localised, else with a point. "-" for
+ * NAN; with an exponent ("1.52e-7") below 0.0001 and from a million up. */
 char *bt_format_number (double value, int digits, gboolean localised);
 
 G_END_DECLS

@@ -1,0 +1,448 @@
+/* Tallies as text to read at a terminal. */
+#include <glib/gi18n-lib.h>
+#include <math.h>
+
+#include <bandtally/bandtally.h>
+
+#include "columns-private.h"
+
+/* Above this many different sentences, flags are listed by kind. */
+#define MOST_FLAG_SENTENCES 40
+/* Films named with a flag before the rest are counted. */
+#define MOST_FILMS_NAMED 6
+
+static char *
+per_cent (double share)
+{
+  return g_strdup_printf ("%.1f %%", share * 100);
+}
+
+static char *
+fraction_text (const BtFraction *fraction)
+{
+  char *low, *text;
+
+  switch (fraction->bound)
+    {
+    case BT_BOUND_TWO_SIDED:
+      return g_strdup_printf ("%.1f ± %.1f %%", fraction->value * 100, fraction->u * 100);
+    case BT_BOUND_LOWER:
+      low = per_cent (fraction->low);
+      text = g_strdup_printf (_ ("at least %s"), low);
+      g_free (low);
+      return text;
+    case BT_BOUND_NONE:
+      return g_strdup ("-");
+    default:
+      g_return_val_if_reached (NULL);
+    }
+}
+
+static char *
+interval_text (const BtFraction *fraction)
+{
+  char *low, *high, *text;
+
+  if (fraction->bound == BT_BOUND_NONE)
+    return g_strdup ("-");
+  low = g_strdup_printf ("%.1f", fraction->low * 100);
+  high = per_cent (fraction->bound == BT_BOUND_LOWER ? 1 : fraction->high);
+  text = g_strdup_printf (_ ("%s to %s"), low, high);
+  g_free (low);
+  g_free (high);
+  return text;
+}
+
+static char *
+diameter_text (const BtTally *tally)
+{
+  if (isnan (tally->diameter.mean_nm))
+    return g_strdup ("-");
+  return g_strdup_printf ("%.2f ± %.2f", tally->diameter.mean_nm, tally->diameter.spread_nm);
+}
+
+static char *
+wavelength_text (double wavelength_nm)
+{
+  return g_strdup_printf ("%.6g", wavelength_nm);
+}
+
+/* What a film is called in a list: its file's last part, or the whole name where two films would be called the same. */
+static char **
+film_names (GPtrArray *films)
+{
+  GHashTable *seen = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, NULL);
+  char **names = g_new0 (char *, films->len + 1);
+  gboolean unique = TRUE;
+
+  for (guint i = 0; i < films->len && unique; i++)
+    {
+      const char *file = bt_spectrum_get_file (bt_film_get_spectrum (g_ptr_array_index (films, i)));
+
+      unique = file != NULL && g_hash_table_add (seen, g_filename_display_basename (file));
+    }
+  for (guint i = 0; i < films->len; i++)
+    {
+      BtFilm *film = g_ptr_array_index (films, i);
+      const char *file = bt_spectrum_get_file (bt_film_get_spectrum (film));
+
+      if (file == NULL)
+        names[i] = g_strdup (bt_film_get_label (film) != NULL ? bt_film_get_label (film) : "");
+      else
+        names[i] = unique ? g_filename_display_basename (file) : g_filename_display_name (file);
+    }
+  g_hash_table_unref (seen);
+  return names;
+}
+
+static void
+append_heading (GString *out, const char *heading)
+{
+  g_string_append_printf (out, "\n%s\n", heading);
+}
+
+static void
+append_groups (GString *out, const BtTally *tally)
+{
+  BtColumns *columns = bt_columns_new (6);
+
+  for (guint i = 2; i < 6; i++)
+    bt_columns_set_right (columns, i, TRUE);
+  bt_columns_take (columns, g_strdup (_ ("Group")));
+  bt_columns_take (columns, g_strdup (_ ("Bands")));
+  bt_columns_take (columns, g_strdup (_ ("Centre eV")));
+  bt_columns_take (columns, g_strdup (_ ("Centre nm")));
+  bt_columns_take (columns, g_strdup (_ ("FWHM eV")));
+  bt_columns_take (columns, g_strdup (_ ("Area, absorbance eV")));
+  bt_columns_set_right (columns, 1, TRUE);
+  for (int group = 0; group < BT_N_GROUPS; group++)
+    {
+      const BtGroupTally *sum = &tally->groups[group];
+
+      if (sum->n_bands == 0)
+        continue;
+      bt_columns_take (columns, g_strdup (bt_group_name ((BtGroup)group)));
+      bt_columns_take (columns, g_strdup_printf ("%u", sum->n_bands));
+      bt_columns_take (columns, bt_format_uncertain (sum->centre_ev, sum->centre_u_ev));
+      bt_columns_take (columns, bt_format_number (bt_nm_from_ev (sum->centre_ev), 4, TRUE));
+      bt_columns_take (columns, bt_format_uncertain (sum->fwhm_ev, sum->fwhm_u_ev));
+      bt_columns_take (columns, bt_format_uncertain (sum->area, sum->area_u));
+    }
+  append_heading (out, _ ("Bands, summed by group"));
+  bt_columns_append (columns, 6, 2, out);
+  bt_columns_free (columns);
+}
+
+static void
+append_tails (GString *out, const BtTally *tally)
+{
+  BtColumns *columns = bt_columns_new (3);
+
+  bt_columns_set_right (columns, 1, TRUE);
+  bt_columns_set_right (columns, 2, TRUE);
+  bt_columns_take (columns, g_strdup (_ ("Tail")));
+  bt_columns_take (columns, g_strdup (_ ("Weight")));
+  bt_columns_take (columns, g_strdup (_ ("Fraction")));
+  for (guint i = 0; i < tally->n_tails; i++)
+    {
+      const BtTailTally *tail = &tally->tails[i];
+
+      bt_columns_take (columns, g_strdup (bt_tail_title (tail->kind)));
+      bt_columns_take (columns, g_strdup_printf ("%.3f", tail->weight));
+      bt_columns_take (columns, bt_format_uncertain (tail->fraction, tail->fraction_u));
+    }
+  append_heading (out, _ ("Tails"));
+  bt_columns_append (columns, 3, 2, out);
+  bt_columns_free (columns);
+  if (!isnan (tally->tail_share_at_s22))
+    {
+      char *share = per_cent (tally->tail_share_at_s22);
+      char *line = g_strdup_printf (_ ("At S22 the tail is %s of the absorbance."), share);
+
+      g_string_append_printf (out, "  %s\n", line);
+      g_free (line);
+      g_free (share);
+    }
+}
+
+static void
+append_budget (GString *out, const BtTally *tally)
+{
+  BtColumns *columns;
+
+  if (tally->budget->len == 0)
+    return;
+  columns = bt_columns_new (2);
+  bt_columns_set_right (columns, 1, TRUE);
+  for (guint i = 0; i < tally->budget->len; i++)
+    {
+      const BtBudgetLine *line = &g_array_index (tally->budget, BtBudgetLine, i);
+
+      bt_columns_take (columns, g_strdup (line->title));
+      bt_columns_take (columns, g_strdup_printf ("%.4f", line->u));
+    }
+  append_heading (out, _ ("Where the fraction's standard uncertainty comes from"));
+  bt_columns_append (columns, 2, 2, out);
+  bt_columns_free (columns);
+}
+
+static void
+append_mean_alpha (GString *out, const BtTally *tally)
+{
+  char *low, *high, *alpha, *line;
+
+  if (isnan (tally->mean_alpha_per_cm))
+    return;
+  low = wavelength_text (bt_nm_from_ev (tally->mean_range.high_ev));
+  high = wavelength_text (bt_nm_from_ev (tally->mean_range.low_ev));
+  alpha = bt_format_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm);
+  line = g_strdup_printf (_ ("Mean absorption coefficient from %s to %s nm: %s 1/cm"), low, high, alpha);
+  g_string_append_printf (out, "  %s\n", line);
+  g_free (line);
+  g_free (alpha);
+  g_free (high);
+  g_free (low);
+}
+
+static void
+append_readings (GString *out, const BtTally *tally)
+{
+  BtColumns *columns;
+
+  if (tally->readings->len == 0)
+    return;
+  columns = bt_columns_new (4);
+  for (guint i = 0; i < 4; i++)
+    bt_columns_set_right (columns, i, TRUE);
+  bt_columns_take (columns, g_strdup (_ ("Wavelength nm")));
+  bt_columns_take (columns, g_strdup (_ ("Absorption coefficient 1/cm")));
+  bt_columns_take (columns, g_strdup (_ ("Absorbance")));
+  bt_columns_take (columns, g_strdup (_ ("Absorptance")));
+  for (guint i = 0; i < tally->readings->len; i++)
+    {
+      const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+
+      bt_columns_take (columns, wavelength_text (reading->wavelength_nm));
+      bt_columns_take (columns, bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm));
+      bt_columns_take (columns, bt_format_uncertain (reading->absorbance, reading->absorbance_u));
+      bt_columns_take (columns, bt_format_uncertain (reading->absorptance, reading->absorptance_u));
+    }
+  append_heading (out, _ ("Light taken up"));
+  bt_columns_append (columns, 4, 2, out);
+  bt_columns_free (columns);
+  append_mean_alpha (out, tally);
+}
+
+static void
+append_flags (GString *out, const BtTally *tally, int width)
+{
+  if (tally->flags->len == 0)
+    return;
+  append_heading (out, _ ("Flags"));
+  for (guint i = 0; i < tally->flags->len; i++)
+    bt_text_append_wrapped (out, "  - ", ((const BtFlag *)g_ptr_array_index (tally->flags, i))->text, width);
+}
+
+/* One film: its whole account. */
+static void
+append_account (GString *out, BtFilm *film, const BtTally *tally, int width)
+{
+  BtSpectrum *spectrum = bt_film_get_spectrum (film);
+  const char *file = bt_spectrum_get_file (spectrum);
+  char *name = file != NULL ? g_filename_display_name (file) : g_strdup ("");
+  char *answer = bt_tally_answer (tally);
+  char *diameter = diameter_text (tally);
+
+  g_string_append_printf (out, "%s\n", name);
+  bt_text_append_wrapped (out, "  ", bt_spectrum_get_reading (spectrum), width);
+  if (tally->curve != NULL && tally->curve->path != NULL)
+    bt_text_append_wrapped (out, "  ", tally->curve->path, width);
+  g_string_append_c (out, '\n');
+  bt_text_append_wrapped (out, "  ", answer, width);
+  g_string_append_printf (out, "  %s: %s\n", _ ("Verdict"), bt_verdict_title (tally->verdict));
+  if (tally->decision_rule != NULL)
+    bt_text_append_wrapped (out, "  ", tally->decision_rule, width);
+  g_string_append_printf (out, "  %s: %s\n", _ ("Diameters, nm (mean ± spread)"), diameter);
+  append_groups (out, tally);
+  append_tails (out, tally);
+  append_budget (out, tally);
+  append_readings (out, tally);
+  append_flags (out, tally, width);
+  g_free (diameter);
+  g_free (answer);
+  g_free (name);
+}
+
+static guint
+most_readings (GPtrArray *tallies)
+{
+  guint most = 0;
+
+  for (guint i = 0; i < tallies->len; i++)
+    most = MAX (most, ((const BtTally *)g_ptr_array_index (tallies, i))->readings->len);
+  return MIN (most, BT_COLUMNS_MAX - 6);
+}
+
+static void
+take_header (BtColumns *columns, const BtTally *first, guint n_readings)
+{
+  bt_columns_take (columns, g_strdup (_ ("Film")));
+  bt_columns_take (columns, g_strdup (_ ("Semiconducting")));
+  bt_columns_take (columns, g_strdup_printf (_ ("%.4g %% interval"), first->recipe->level * 100));
+  bt_columns_take (columns, g_strdup (_ ("Verdict")));
+  bt_columns_take (columns, g_strdup (_ ("Flags")));
+  bt_columns_take (columns, g_strdup (_ ("Diameters nm")));
+  for (guint i = 0; i < n_readings; i++)
+    {
+      char *wavelength = i < first->readings->len
+                             ? wavelength_text (g_array_index (first->readings, BtReading, i).wavelength_nm)
+                             : g_strdup ("");
+
+      /* Translators: absorption coefficient at a wavelength, as a column's head. */
+      bt_columns_take (columns, g_strdup_printf (_ ("1/cm at %s nm"), wavelength));
+      g_free (wavelength);
+    }
+  for (guint i = 1; i < columns->n_columns; i++)
+    bt_columns_set_right (columns, i, i != 3);
+}
+
+static void
+take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_readings)
+{
+  bt_columns_take (columns, g_strdup (name));
+  bt_columns_take (columns, fraction_text (&tally->fraction));
+  bt_columns_take (columns, interval_text (&tally->fraction));
+  bt_columns_take (columns, g_strdup (bt_verdict_title (tally->verdict)));
+  bt_columns_take (columns, tally->flags->len > 0 ? g_strdup_printf ("%u", tally->flags->len) : g_strdup (""));
+  bt_columns_take (columns, diameter_text (tally));
+  for (guint i = 0; i < n_readings; i++)
+    if (i < tally->readings->len)
+      {
+        const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+
+        bt_columns_take (columns, bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm));
+      }
+    else
+      bt_columns_take (columns, NULL);
+}
+
+/* A flag and the films that bear it. */
+typedef struct
+{
+  const BtFlag *flag;
+  GArray *films;
+} FlagLine;
+
+static void
+flag_line_free (FlagLine *line)
+{
+  g_array_unref (line->films);
+  g_free (line);
+}
+
+/* (element-type FlagLine): flags of the same sentence, or of the same kind, together. */
+static GPtrArray *
+gather_flags (GPtrArray *tallies, gboolean by_code)
+{
+  GPtrArray *lines = g_ptr_array_new_with_free_func ((GDestroyNotify)flag_line_free);
+  GHashTable *index = g_hash_table_new (g_str_hash, g_str_equal);
+
+  for (guint i = 0; i < tallies->len; i++)
+    {
+      const BtTally *tally = g_ptr_array_index (tallies, i);
+
+      for (guint j = 0; j < tally->flags->len; j++)
+        {
+          const BtFlag *flag = g_ptr_array_index (tally->flags, j);
+          char *key = by_code ? flag->code : flag->text;
+          FlagLine *line = g_hash_table_lookup (index, key);
+
+          if (line == NULL)
+            {
+              line = g_new (FlagLine, 1);
+              line->flag = flag;
+              line->films = g_array_new (FALSE, FALSE, sizeof (guint));
+              g_hash_table_insert (index, key, line);
+              g_ptr_array_add (lines, line);
+            }
+          g_array_append_val (line->films, i);
+        }
+    }
+  g_hash_table_unref (index);
+  return lines;
+}
+
+static char *
+name_films (const GArray *films, char **names, guint n_all)
+{
+  GString *text;
+
+  if (films->len == n_all)
+    return g_strdup (_ ("All films"));
+  text = g_string_new (NULL);
+  for (guint i = 0; i < MIN (films->len, MOST_FILMS_NAMED); i++)
+    g_string_append_printf (text, "%s%s", i > 0 ? ", " : "", names[g_array_index (films, guint, i)]);
+  if (films->len > MOST_FILMS_NAMED)
+    g_string_append_printf (text, ngettext (" and %u more", " and %u more", films->len - MOST_FILMS_NAMED),
+                            films->len - MOST_FILMS_NAMED);
+  return g_string_free (text, FALSE);
+}
+
+static void
+append_all_flags (GString *out, GPtrArray *tallies, char **names, int width)
+{
+  GPtrArray *lines = gather_flags (tallies, FALSE);
+  gboolean by_code = lines->len > MOST_FLAG_SENTENCES;
+
+  if (by_code)
+    {
+      g_ptr_array_unref (lines);
+      lines = gather_flags (tallies, TRUE);
+    }
+  if (lines->len > 0)
+    append_heading (out, by_code ? _ ("Flags, by kind, each with the sentence of its first film") : _ ("Flags"));
+  for (guint i = 0; i < lines->len; i++)
+    {
+      const FlagLine *line = g_ptr_array_index (lines, i);
+      char *films = name_films (line->films, names, tallies->len);
+      char *text = g_strdup_printf ("%s: %s", films, line->flag->text);
+
+      bt_text_append_wrapped (out, "  - ", text, width);
+      g_free (text);
+      g_free (films);
+    }
+  g_ptr_array_unref (lines);
+}
+
+static void
+append_list (GString *out, GPtrArray *films, GPtrArray *tallies, int width)
+{
+  char **names = film_names (films);
+  guint n_readings = most_readings (tallies);
+  BtColumns *columns = bt_columns_new (6 + n_readings);
+  guint shown = columns->n_columns;
+
+  take_header (columns, g_ptr_array_index (tallies, 0), n_readings);
+  for (guint i = 0; i < films->len; i++)
+    take_line (columns, names[i], g_ptr_array_index (tallies, i), n_readings);
+  /* The last columns are left out where the terminal is too narrow; the first five are always there. */
+  while (width > 0 && shown > 5 && bt_columns_width (columns, shown) > width)
+    shown--;
+  bt_columns_append (columns, shown, 0, out);
+  append_all_flags (out, tallies, names, width);
+  bt_columns_free (columns);
+  g_strfreev (names);
+}
+
+char *
+bt_tallies_to_text (GPtrArray *films, GPtrArray *tallies, int columns)
+{
+  GString *out = g_string_new (NULL);
+
+  g_return_val_if_fail (films->len == tallies->len, NULL);
+  if (films->len == 1)
+    append_account (out, g_ptr_array_index (films, 0), g_ptr_array_index (tallies, 0), columns);
+  else if (films->len > 1)
+    append_list (out, films, tallies, columns);
+  return g_string_free (out, FALSE);
+}
