@@ -240,7 +240,8 @@ fill_covariance (Workspace *ws, const double *x, BtSolution *solution)
 
       if (solution->at_bound != NULL)
         solution->at_bound[j] = bound;
-      if (!fixed && !bound)
+      /* A parameter without any effect at the minimum (the width of a band of height 0) has no row either. */
+      if (!fixed && !bound && ws->normal[j * p + j] > 0)
         ws->free_index[m++] = j;
     }
   for (gsize a = 0; a < m; a++)

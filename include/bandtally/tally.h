@@ -85,6 +85,7 @@ typedef struct {
   double tail_share_at_s22;        /* tail over the whole, at S22's centre; NAN without S22 */
   BtFraction fraction;
   GArray *budget;                  /* (element-type BtBudgetLine) */
+  double structure;                /* amplitude of what no band or tail follows, absorbance */
   double s22_m11_correlation;      /* of the two areas in the best fit; NAN */
   double m11_decision, m11_detection; /* areas, absorbance eV (Currie 1968); NAN */
   BtDiameterWindow diameter;       /* from the fitted bands; NAN where not to be had */
@@ -94,7 +95,8 @@ typedef struct {
   BtRange mean_range;              /* the part of it that the data cover */
   GPtrArray *flags;                /* (element-type BtFlag): reading, light path and fit */
   BtVerdict verdict;
-  double acceptance_limit, refusal_limit; /* NAN where not judged */
+  double conformance;              /* probability that the fraction is at least the limit (JCGM 106); NAN */
+  double acceptance_limit, refusal_limit; /* limit + and - 1.645 u; NAN where not judged */
   char *decision_rule;             /* translated sentence */
   BtBandPlan plan;
   BtRecipe *recipe;

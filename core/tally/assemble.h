@@ -1,0 +1,16 @@
+/* The parts of a tally beyond the fraction. Private to core/tally. */
+#ifndef BANDTALLY_ASSEMBLE_H
+#define BANDTALLY_ASSEMBLE_H
+
+#include "fraction.h"
+
+/* Absorbance, absorptance and alpha at the recipe's wavelengths, and the mean alpha over its range. */
+void bt_tally_fill_readings (BtTally *tally, BtFilm *film);
+/* Bands, curves and tail share of the best fit. */
+void bt_tally_fill_best (BtTally *tally, const BtCandidate *best, const BtPrepared *prepared);
+/* Group sums averaged over the candidates, and the diameter that the groups' centres mean. */
+void bt_tally_fill_groups (BtTally *tally, const BtCandidate *candidates, gsize n);
+/* Flags of the reading, the light path and the fit. */
+void bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared);
+
+#endif
