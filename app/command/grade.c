@@ -1,0 +1,348 @@
+/* bandtally-cli grade: films in; a table, JSON, CSV and a report out. */
+#include <float.h>
+#include <glib/gi18n.h>
+#include <math.h>
+#include <stdio.h>
+#include <sys/stat.h>
+
+#include "batch.h"
+
+#define MOST_JOBS 256
+
+/* As given. Strings are parsed by hand so that a wrong one is answered by a sentence that says what is wanted. */
+typedef struct
+{
+  char **files;
+  char *blank, *recipe, *json, *csv, *report;
+  char *thickness_nm, *thickness_u_nm, *diameter_nm, *diameter_spread_nm;
+  char *strength_ratio, *strength_ratio_u, *limit, *level, *wavelengths_nm;
+  char *x_unit, *y_unit, *jobs, *paper;
+} Options;
+
+static void
+options_clear (Options *options)
+{
+  char **strings[] = { &options->blank,
+                       &options->recipe,
+                       &options->json,
+                       &options->csv,
+                       &options->report,
+                       &options->thickness_nm,
+                       &options->thickness_u_nm,
+                       &options->diameter_nm,
+                       &options->diameter_spread_nm,
+                       &options->strength_ratio,
+                       &options->strength_ratio_u,
+                       &options->limit,
+                       &options->level,
+                       &options->wavelengths_nm,
+                       &options->x_unit,
+                       &options->y_unit,
+                       &options->jobs,
+                       &options->paper };
+
+  for (gsize i = 0; i < G_N_ELEMENTS (strings); i++)
+    g_clear_pointer (strings[i], g_free);
+  g_clear_pointer (&options->files, g_strfreev);
+}
+
+static gboolean
+parse_options (Options *options, int *argc, char ***argv, int *status)
+{
+  const GOptionEntry entries[] = {
+    { "thickness-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_nm,
+      N_ ("thickness of the films; without it the files' own"), "X" },
+    { "thickness-u-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_u_nm, N_ ("its standard uncertainty"), "X" },
+    { "blank", 0, 0, G_OPTION_ARG_FILENAME, &options->blank, N_ ("spectrum of the substrate alone, taken off every film"),
+      "FILE" },
+    { "diameter-nm", 0, 0, G_OPTION_ARG_STRING, &options->diameter_nm, N_ ("mean diameter; without it proposed from the data"),
+      "X" },
+    { "diameter-spread-nm", 0, 0, G_OPTION_ARG_STRING, &options->diameter_spread_nm,
+      N_ ("standard deviation of the diameters (0.1)"), "X" },
+    { "strength-ratio", 0, 0, G_OPTION_ARG_STRING, &options->strength_ratio,
+      N_ ("S22 area per carbon over M11 area per carbon"), "X" },
+    { "strength-ratio-u", 0, 0, G_OPTION_ARG_STRING, &options->strength_ratio_u, N_ ("its standard uncertainty"), "X" },
+    { "limit", 0, 0, G_OPTION_ARG_STRING, &options->limit, N_ ("least semiconducting fraction to be accepted, 0 to 1"), "X" },
+    { "level", 0, 0, G_OPTION_ARG_STRING, &options->level, N_ ("confidence level of intervals (0.95)"), "X" },
+    { "wavelengths-nm", 0, 0, G_OPTION_ARG_STRING, &options->wavelengths_nm, N_ ("wavelengths of interest (550,650,980,1550)"),
+      "X,X,…" },
+    { "recipe", 0, 0, G_OPTION_ARG_FILENAME, &options->recipe, N_ ("recipe; other options override what it says"), "FILE" },
+    { "x-unit", 0, 0, G_OPTION_ARG_STRING, &options->x_unit, N_ ("unit of the first column: nm, um, 1/cm, eV"), N_ ("UNIT") },
+    { "y-unit", 0, 0, G_OPTION_ARG_STRING, &options->y_unit, N_ ("what was read: absorbance, transmittance, transmittance%, …"),
+      N_ ("UNIT") },
+    { "json", 0, 0, G_OPTION_ARG_FILENAME, &options->json, N_ ("write everything as JSON; - is standard output"), "FILE" },
+    { "csv", 0, 0, G_OPTION_ARG_FILENAME, &options->csv, N_ ("write one record a film; - is standard output"), "FILE" },
+    { "report", 0, 0, G_OPTION_ARG_FILENAME, &options->report, N_ ("write a report of all films as PDF; - is standard output"),
+      "FILE.pdf" },
+    { "paper", 0, 0, G_OPTION_ARG_STRING, &options->paper, N_ ("paper of the report: a4 (default) or letter"), N_ ("PAPER") },
+    { "jobs", 'j', 0, G_OPTION_ARG_STRING, &options->jobs, N_ ("films graded at the same time (as many as processors)"), "N" },
+    { G_OPTION_REMAINING, 0, 0, G_OPTION_ARG_FILENAME_ARRAY, &options->files, NULL, NULL },
+    { NULL },
+  };
+
+  return command_parse ("grade", _ ("FILE…"), _ ("Grades films from their spectra."), entries,
+                        _ ("A readable table goes to standard output unless one of the outputs does.\n"
+                           "Exit status: 0 all films graded, 1 some could not be, 2 wrong usage."),
+                        argc, argv, status);
+}
+
+static gboolean
+usage (GError **error, const char *sentence)
+{
+  g_set_error_literal (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, sentence);
+  return FALSE;
+}
+
+static gboolean
+same_file (const char *a, const char *b)
+{
+  struct stat one, other;
+
+  if (a == NULL || b == NULL || is_standard_output (a) || is_standard_output (b))
+    return FALSE;
+  if (g_str_equal (a, b))
+    return TRUE;
+  return stat (a, &one) == 0 && stat (b, &other) == 0 && one.st_dev == other.st_dev && one.st_ino == other.st_ino
+         && S_ISREG (one.st_mode);
+}
+
+/* Outputs must not meet each other, nor overwrite what was measured. */
+static gboolean
+check_outputs (const Options *options, GError **error)
+{
+  const char *outputs[] = { options->json, options->csv, options->report };
+  int n_standard = 0;
+
+  for (gsize i = 0; i < G_N_ELEMENTS (outputs); i++)
+    {
+      n_standard += is_standard_output (outputs[i]);
+      for (gsize j = 0; j < i; j++)
+        if (same_file (outputs[i], outputs[j]))
+          return usage (error, _ ("--json, --csv and --report must name different files."));
+      for (char **file = options->files; *file != NULL; file++)
+        if (same_file (outputs[i], *file))
+          {
+            g_set_error (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED,
+                         _ ("“%s” is to be graded and to be written; name another file for the output."), *file);
+            return FALSE;
+          }
+      if (same_file (outputs[i], options->recipe) || same_file (outputs[i], options->blank))
+        return usage (error, _ ("An output would overwrite the recipe or the blank; name another file for it."));
+    }
+  if (n_standard > 1)
+    return usage (error, _ ("Only one of --json, --csv and --report can go to standard output."));
+  return TRUE;
+}
+
+static gboolean
+parse_recipe_numbers (const Options *options, BtRecipe *recipe, GError **error)
+{
+  const NumberOption numbers[] = {
+    { "--diameter-nm", options->diameter_nm, &recipe->window.mean_nm, 0.4, 5, N_ ("a diameter from 0.4 to 5 (nm)") },
+    { "--diameter-spread-nm", options->diameter_spread_nm, &recipe->window.spread_nm, 0.005, 2,
+      N_ ("a number from 0.005 to 2 (nm)") },
+    { "--strength-ratio", options->strength_ratio, &recipe->strength_ratio, 0.01, 100, N_ ("a number from 0.01 to 100") },
+    { "--strength-ratio-u", options->strength_ratio_u, &recipe->strength_ratio_u, 0, 100, N_ ("a number from 0 to 100") },
+    { "--limit", options->limit, &recipe->limit, 0, 1, N_ ("a share from 0 to 1 (0.9 for 90 %)") },
+    { "--level", options->level, &recipe->level, 0.5, 0.9999, N_ ("a level from 0.5 to 0.9999 (0.95 for 95 %)") },
+  };
+
+  if (!parse_numbers (numbers, G_N_ELEMENTS (numbers), error))
+    return FALSE;
+  if (options->diameter_spread_nm != NULL && recipe->window.mean_nm <= 0)
+    return usage (error, _ ("--diameter-spread-nm needs a mean diameter: give --diameter-nm too."));
+  if (options->diameter_nm != NULL && recipe->window.spread_nm <= 0)
+    recipe->window.spread_nm = 0.1;
+  if (options->strength_ratio != NULL || options->strength_ratio_u != NULL)
+    {
+      g_free (recipe->strength_ratio_source);
+      recipe->strength_ratio_source = g_strdup (_ ("stated on the command line"));
+    }
+  return TRUE;
+}
+
+/* (transfer full): the recipe of the file, or the default one, with the options' own values. */
+static BtRecipe *
+make_recipe (const Options *options, GError **error)
+{
+  BtRecipe *recipe = options->recipe != NULL ? bt_recipe_new_from_file (options->recipe, error) : bt_recipe_new ();
+
+  if (recipe == NULL)
+    return NULL;
+  if (options->wavelengths_nm != NULL)
+    {
+      GArray *wavelengths_nm = parse_list ("--wavelengths-nm", options->wavelengths_nm, 100, 20000,
+                                           _ ("wavelengths from 100 to 20000 (nm) between commas"), error);
+
+      if (wavelengths_nm == NULL)
+        {
+          bt_recipe_free (recipe);
+          return NULL;
+        }
+      g_array_unref (recipe->wavelengths_nm);
+      recipe->wavelengths_nm = wavelengths_nm;
+    }
+  if (!parse_recipe_numbers (options, recipe, error) || !bt_recipe_check (recipe, error))
+    {
+      bt_recipe_free (recipe);
+      return NULL;
+    }
+  return recipe;
+}
+
+static gboolean
+make_settings (const Options *options, BatchSettings *settings, GError **error)
+{
+  double jobs = g_get_num_processors ();
+  const NumberOption numbers[] = {
+    { "--thickness-nm", options->thickness_nm, &settings->thickness_nm, DBL_MIN, 1e9, N_ ("a number above 0 (nm)") },
+    { "--thickness-u-nm", options->thickness_u_nm, &settings->thickness_u_nm, 0, 1e9, N_ ("a number not below 0 (nm)") },
+    { "--jobs", options->jobs, &jobs, 1, MOST_JOBS, N_ ("a whole number from 1 to 256") },
+  };
+
+  settings->thickness_nm = settings->thickness_u_nm = NAN;
+  settings->reading = (BtReadOptions)BT_READ_OPTIONS_INIT;
+  if (!parse_numbers (numbers, G_N_ELEMENTS (numbers), error)
+      || !parse_units (options->x_unit, options->y_unit, &settings->reading, error))
+    return FALSE;
+  if (jobs != floor (jobs))
+    return bad_value ("--jobs", _ ("a whole number from 1 to 256"), options->jobs, error);
+  settings->jobs = (int)MIN (jobs, MOST_JOBS);
+  if (options->blank != NULL)
+    settings->blank = bt_spectrum_new_from_file (options->blank, error);
+  return options->blank == NULL || settings->blank != NULL;
+}
+
+static gboolean
+parse_paper (const char *text, BtPaper *paper, GError **error)
+{
+  *paper = BT_PAPER_A4;
+  if (text == NULL || g_ascii_strcasecmp (text, "a4") == 0)
+    return TRUE;
+  *paper = BT_PAPER_LETTER;
+  return g_ascii_strcasecmp (text, "letter") == 0 || bad_value ("--paper", _ ("a4 or letter"), text, error);
+}
+
+/* Says what went wrong; takes @error. */
+static gboolean
+complain_error (GError *error)
+{
+  complain (error->message);
+  g_error_free (error);
+  return FALSE;
+}
+
+static gboolean
+write_report (const char *path, const BatchResult *result, BtPaper paper)
+{
+  GError *error = NULL;
+  BtReport *report;
+  gboolean written;
+
+  if (result->films->len == 0)
+    {
+      complain (_ ("No report was written: no film could be graded."));
+      return FALSE;
+    }
+  report = bt_report_new (paper);
+  for (guint i = 0; i < result->films->len; i++)
+    bt_report_add (report, g_ptr_array_index (result->films, i), g_ptr_array_index (result->tallies, i));
+  written = output_write_report (path, report, &error);
+  bt_report_free (report);
+  return written || complain_error (error);
+}
+
+static gboolean
+write_text (const char *path, char *text)
+{
+  GError *error = NULL;
+  gboolean written = output_write (path, text, -1, &error);
+
+  g_free (text);
+  return written || complain_error (error);
+}
+
+/* Whether an output can be written is asked before the grading, which may take a night: the user learns of it at once. */
+static gboolean
+check_place (char **path)
+{
+  GError *error = NULL;
+
+  if (output_check (*path, &error))
+    return TRUE;
+  g_clear_pointer (path, g_free);
+  return complain_error (error);
+}
+
+/* The table comes last: whoever reads it may stop reading (| head), and the files must be there by then. */
+static gboolean
+write_outputs (const Options *options, const BatchResult *result, BtPaper paper)
+{
+  gboolean written = TRUE;
+
+  if (options->csv != NULL)
+    written &= write_text (options->csv, bt_tallies_to_csv (result->films, result->tallies));
+  if (options->json != NULL)
+    written &= write_text (options->json, bt_tallies_to_json_with_failures (result->films, result->tallies, result->failures));
+  if (options->report != NULL)
+    written &= write_report (options->report, result, paper);
+  if (!is_standard_output (options->csv) && !is_standard_output (options->json) && !is_standard_output (options->report))
+    {
+      char *text = bt_tallies_to_text (result->films, result->tallies, output_columns ());
+
+      g_print ("%s", text);
+      g_free (text);
+      if (fflush (stdout) != 0)
+        {
+          complain (_ ("The table could not be written to standard output."));
+          written = FALSE;
+        }
+    }
+  return written;
+}
+
+static int
+grade (Options *options, const BatchSettings *settings, BtPaper paper)
+{
+  BatchResult result;
+  gboolean complete;
+
+  complete = check_place (&options->json) & check_place (&options->csv) & check_place (&options->report);
+  batch_grade (options->files, settings, &result);
+  complete &= write_outputs (options, &result, paper);
+  complete &= result.failures->len == 0;
+  batch_result_clear (&result);
+  return complete ? STATUS_DONE : STATUS_SOME_FAILED;
+}
+
+int
+grade_command (int argc, char **argv)
+{
+  Options options = { NULL };
+  BatchSettings settings = { NULL };
+  BtRecipe *recipe = NULL;
+  BtPaper paper;
+  GError *error = NULL;
+  int status;
+
+  if (!parse_options (&options, &argc, &argv, &status))
+    {
+      options_clear (&options);
+      return status;
+    }
+  if (options.files == NULL)
+    usage (&error, _ ("No film was named: give at least one file."));
+  else if (check_outputs (&options, &error) && parse_paper (options.paper, &paper, &error))
+    recipe = make_recipe (&options, &error);
+  if (recipe != NULL && make_settings (&options, &settings, &error))
+    {
+      settings.recipe = recipe;
+      status = grade (&options, &settings, paper);
+    }
+  else
+    status = command_usage_error ("grade", error);
+  g_clear_pointer (&recipe, bt_recipe_free);
+  g_clear_object (&settings.blank);
+  options_clear (&options);
+  return status;
+}

@@ -1,0 +1,33 @@
+/* Language and number formats of the programs. */
+#include "locale.h"
+
+#include <gio/gio.h>
+#include <glib/gi18n.h>
+#include <locale.h>
+#include <string.h>
+
+#include "bt-config.h"
+
+/* Whether this very program lies in the build folder: a program that is installed must not look there, even where the folder
+ * still exists. */
+static gboolean
+runs_from_build (void)
+{
+  char *program = g_file_read_link ("/proc/self/exe", NULL);
+  char *build = g_path_get_dirname (BT_BUILD_LOCALE_DIR);
+  gsize length = strlen (build);
+  gboolean inside = program != NULL && strncmp (program, build, length) == 0 && program[length] == G_DIR_SEPARATOR;
+
+  g_free (build);
+  g_free (program);
+  return inside;
+}
+
+void
+app_init_locale (void)
+{
+  setlocale (LC_ALL, "");
+  bindtextdomain (GETTEXT_PACKAGE, runs_from_build () ? BT_BUILD_LOCALE_DIR : BT_LOCALE_DIR);
+  bind_textdomain_codeset (GETTEXT_PACKAGE, "UTF-8");
+  textdomain (GETTEXT_PACKAGE);
+}
