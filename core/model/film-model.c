@@ -32,9 +32,21 @@ first_step (const BtFilmFit *fit)
 }
 
 gsize
+bt_film_fit_wings (const BtFilmFit *fit)
+{
+  return first_step (fit) + fit->n_steps;
+}
+
+gsize
+bt_film_fit_sideband (const BtFilmFit *fit)
+{
+  return bt_film_fit_wings (fit) + 1;
+}
+
+gsize
 bt_film_fit_band (const BtFilmFit *fit, guint band)
 {
-  return first_step (fit) + fit->n_steps + 3 * (gsize) band;
+  return bt_film_fit_sideband (fit) + 1 + 3 * (gsize) band;
 }
 
 static double
@@ -46,6 +58,18 @@ largest_absorbance (const BtFilmData *data)
     largest = fmax (largest, fabs (data->absorbance[i]));
   return largest > 0 ? largest : 1;
 }
+
+/* How far a film's group may lie from where the reference energies put it, eV: published sets differ by this much at large diameters, most
+ * for the higher transitions. And areas of higher transitions against S22 or M11 of the same tubes: per carbon S11 > S22 > S33 (published
+ * order), values from common practice with a wide uncertainty. */
+static const double centre_u_ev[BT_N_GROUPS] = { [BT_S11] = 0.05, [BT_S22] = 0.06, [BT_M11] = 0.08, [BT_S33] = 0.12, [BT_S44] = 0.15, [BT_M22] = 0.15 };
+static const struct { BtGroup group, of; double ratio, u; } strengths[] = {
+  { BT_S33, BT_S22, 0.7, 0.35 },
+  { BT_S44, BT_S22, 0.5, 0.35 },
+  { BT_M22, BT_M11, 0.6, 0.4 },
+};
+/* A band's width against what the plan expects. */
+#define FWHM_RELATIVE_U 0.25
 
 static void
 init_parameter (BtFilmFit *fit, gsize j, double x, double low, double high, double step_limit)
@@ -73,8 +97,8 @@ init_tail (BtFilmFit *fit, const BtFilmData *data)
       fit->prior_mean[1 + s] = tail_windows[fit->tail].mean[s];
       fit->prior_u[1 + s] = tail_windows[fit->tail].u[s];
     }
-  init_parameter (fit, offset, 0, -scale, scale, INFINITY);
-  /* A film is clear somewhere: an offset that is large against the reading is no offset. */
+  /* A film is clear somewhere: an offset that is large against the reading is no offset, and below zero it is the instrument's. */
+  init_parameter (fit, offset, 0, -0.02 * scale, scale, INFINITY);
   fit->prior_u[offset] = 0.1 * scale;
   for (guint k = 0; k < fit->n_steps; k++)
     {
@@ -84,6 +108,12 @@ init_tail (BtFilmFit *fit, const BtFilmData *data)
       fit->prior_mean[j] = data->step_size[k];
       fit->prior_u[j] = 2 * data->step_u[k];
     }
+  init_parameter (fit, bt_film_fit_wings (fit), 0.1, 0, 0.6, 0.2);
+  fit->prior_mean[bt_film_fit_wings (fit)] = 0.1;
+  fit->prior_u[bt_film_fit_wings (fit)] = 0.15;
+  init_parameter (fit, bt_film_fit_sideband (fit), 0.06, 0, 0.2, 0.05);
+  fit->prior_mean[bt_film_fit_sideband (fit)] = 0.06;
+  fit->prior_u[bt_film_fit_sideband (fit)] = 0.03;
 }
 
 BtFilmFit *
@@ -111,6 +141,10 @@ bt_film_fit_new (BtTailKind tail, const BtBandPlan *plan, const guint n_in_group
           init_parameter (fit, j, 0, g == BT_M11 ? -INFINITY : 0, INFINITY, INFINITY);
           init_parameter (fit, j + 1, CLAMP (place, window->low_ev, window->high_ev), window->low_ev, window->high_ev, 0.25 * width);
           init_parameter (fit, j + 2, width, window->fwhm_low_ev, window->fwhm_high_ev, 0.35 * width);
+          fit->prior_mean[j + 1] = place;
+          fit->prior_u[j + 1] = hypot (centre_u_ev[g], n > 1 ? window->fwhm_ev / 3 : 0);
+          fit->prior_mean[j + 2] = width;
+          fit->prior_u[j + 2] = FWHM_RELATIVE_U * width;
         }
     }
   fit->p = bt_film_fit_band (fit, fit->n_bands);
@@ -192,6 +226,8 @@ bt_film_fit_start_from (BtFilmFit *fit, const BtFilmFit *other)
       fit->x[j] = other->x[j];
   for (guint k = 0; k < MIN (fit->n_steps, other->n_steps); k++)
     fit->x[first_step (fit) + k] = other->x[first_step (other) + k];
+  fit->x[bt_film_fit_wings (fit)] = other->x[bt_film_fit_wings (other)];
+  fit->x[bt_film_fit_sideband (fit)] = other->x[bt_film_fit_sideband (other)];
   for (guint g = 0; g < BT_N_GROUPS; g++)
     {
       guint n = fit->n_in_group[g], m = other->n_in_group[g];
@@ -225,7 +261,98 @@ bt_film_fit_hold (BtFilmFit *fit, guint band, guint field, double value)
   fit->x[j] = fit->low[j] = fit->high[j] = value;
 }
 
-typedef struct { const BtFilmFit *fit; const BtFilmData *data; } Call;
+typedef struct { const BtFilmFit *fit; const BtFilmData *data; double scale; } Call;
+
+/* Area of a band of unit height and unit FWHM. */
+static inline double
+unit_area (double wings)
+{
+  return (1 - wings) * BT_GAUSSIAN_AREA + wings * (G_PI / 2);
+}
+
+/* Rows below the data: what is known of the areas of higher transitions. @scale is the reference area that makes them relative. */
+static void
+strength_rows (const BtFilmFit *fit, const double *x, double scale, double *residual, double *jacobian)
+{
+  const gsize wings = bt_film_fit_wings (fit);
+
+  for (gsize k = 0; k < G_N_ELEMENTS (strengths); k++)
+    {
+      const double weight = fit->n_in_group[strengths[k].group] > 0 && fit->n_in_group[strengths[k].of] > 0 && scale > 0
+                              ? 1 / (strengths[k].u * scale) : 0;
+      double *row = jacobian != NULL ? jacobian + k * fit->p : NULL;
+
+      residual[k] = 0;
+      if (row != NULL)
+        memset (row, 0, sizeof (double) * fit->p);
+      for (guint b = 0; b < fit->n_bands; b++)
+        {
+          gsize j = bt_film_fit_band (fit, b);
+          double factor = fit->group[b] == strengths[k].group ? weight : fit->group[b] == strengths[k].of ? -weight * strengths[k].ratio : 0;
+
+          residual[k] += factor * unit_area (x[wings]) * x[j] * x[j + 2];
+          if (row != NULL)
+            {
+              row[j] = factor * unit_area (x[wings]) * x[j + 2];
+              row[j + 2] = factor * unit_area (x[wings]) * x[j];
+              row[wings] += factor * (G_PI / 2 - BT_GAUSSIAN_AREA) * x[j] * x[j + 2];
+            }
+        }
+    }
+}
+
+/* A band at one energy: @wings of its height in a Lorentzian, the rest in a Gaussian of the same FWHM; @side of it 0.2 eV higher and wider (S11 and
+ * S22), of the same area ratio. Returns the value for height 1; derivatives (nullable together) by centre, FWHM, wings and side. */
+typedef struct { double centre, fwhm, wings, side; } BandSlopes;
+
+static inline double
+line_at (double e, double centre, double fwhm, double wings, BandSlopes *slopes)
+{
+  const double u = (e - centre) / fwhm, l = 1 / (1 + 4 * u * u), g = fabs (u) < 3.3 ? exp (-LN16 * u * u) : 0;
+
+  if (slopes != NULL)
+    {
+      double du = (1 - wings) * 2 * LN16 * u * g + wings * 8 * u * l * l;
+
+      slopes->centre = du / fwhm;
+      slopes->fwhm = du * u / fwhm;
+      slopes->wings = l - g;
+    }
+  return (1 - wings) * g + wings * l;
+}
+
+static inline double
+band_at (double e, const double *band, double wings, double side, BandSlopes *slopes)
+{
+  double value = line_at (e, band[1], band[2], wings, slopes), above;
+  BandSlopes more;
+
+  if (!(side > 0) && slopes == NULL)
+    return value;
+  above = line_at (e, band[1] + BT_SIDEBAND_EV, BT_SIDEBAND_WIDTH * band[2], wings, slopes != NULL ? &more : NULL) / BT_SIDEBAND_WIDTH;
+  if (slopes != NULL)
+    {
+      slopes->centre = (1 - side) * slopes->centre + side * more.centre / BT_SIDEBAND_WIDTH;
+      slopes->fwhm = (1 - side) * slopes->fwhm + side * more.fwhm;
+      slopes->wings = (1 - side) * slopes->wings + side * more.wings / BT_SIDEBAND_WIDTH;
+      slopes->side = above - value;
+    }
+  return (1 - side) * value + side * above;
+}
+
+double
+bt_line_eval (double energy_ev, double centre_ev, double fwhm_ev, double wings, double sideband)
+{
+  const double band[3] = { 1, centre_ev, fwhm_ev };
+
+  return band_at (energy_ev, band, wings, sideband, NULL);
+}
+
+static inline gboolean
+has_sideband (BtGroup group)
+{
+  return group == BT_S11 || group == BT_S22;
+}
 
 /* Residual (model minus data over sigma) and its derivatives for parameters @x. */
 static void
@@ -233,7 +360,7 @@ model_function (const double *x, double *residual, double *jacobian, gpointer us
 {
   const BtFilmFit *fit = ((Call *) user_data)->fit;
   const BtFilmData *data = ((Call *) user_data)->data;
-  const gsize p = fit->p, offset = bt_film_fit_offset (fit);
+  const gsize p = fit->p, offset = bt_film_fit_offset (fit), wings = bt_film_fit_wings (fit), side = wings + 1;
   const guint n_shape = bt_tail_n_shape (fit->tail);
 
   for (gsize i = 0; i < data->n; i++)
@@ -251,6 +378,7 @@ model_function (const double *x, double *residual, double *jacobian, gpointer us
           if (n_shape == 2)
             row[2] = x[0] * d1 * w;
           row[offset] = w;
+          row[wings] = row[side] = 0;
         }
       for (guint k = 0; k < fit->n_steps; k++)
         {
@@ -262,37 +390,34 @@ model_function (const double *x, double *residual, double *jacobian, gpointer us
         }
       for (guint b = 0; b < fit->n_bands; b++)
         {
-          gsize j = offset + 1 + fit->n_steps + 3 * (gsize) b;
-          double u = (e - x[j + 1]) / x[j + 2], g;
+          gsize j = side + 1 + 3 * (gsize) b;
+          gboolean sideband = has_sideband (fit->group[b]);
+          BandSlopes slopes;
+          double value = band_at (e, x + j, x[wings], sideband ? x[side] : 0, row != NULL ? &slopes : NULL);
 
-          /* Beyond 3.3 FWHM a Gaussian is below 1e-13 of its height. */
-          if (fabs (u) > 3.3)
-            {
-              if (row != NULL)
-                row[j] = row[j + 1] = row[j + 2] = 0;
-              continue;
-            }
-          g = exp (-LN16 * u * u);
-          sum += x[j] * g;
+          sum += x[j] * value;
           if (row != NULL)
             {
-              double slope = 2 * LN16 * u / x[j + 2] * x[j] * g * w;
-
-              row[j] = g * w;
-              row[j + 1] = slope;
-              row[j + 2] = slope * u;
+              row[j] = value * w;
+              row[j + 1] = x[j] * slopes.centre * w;
+              row[j + 2] = x[j] * slopes.fwhm * w;
+              row[wings] += x[j] * slopes.wings * w;
+              if (sideband)
+                row[side] += x[j] * slopes.side * w;
             }
         }
       residual[i] = (sum - data->absorbance[i]) * w;
     }
+  strength_rows (fit, x, ((Call *) user_data)->scale, residual + data->n, jacobian != NULL ? jacobian + data->n * p : NULL);
 }
 
 static void
-problem_init (BtProblem *problem, const BtFilmFit *fit, const BtFilmData *data, Call *call, GCancellable *cancellable)
+problem_init (BtProblem *problem, const BtFilmFit *fit, const BtFilmData *data, double scale, Call *call, GCancellable *cancellable)
 {
   call->fit = fit;
   call->data = data;
-  *problem = (BtProblem){ .n_points = data->n, .n_parameters = fit->p, .model = model_function, .data = call, .low = fit->low,
+  call->scale = scale;
+  *problem = (BtProblem){ .n_points = data->n + G_N_ELEMENTS (strengths), .n_parameters = fit->p, .model = model_function, .data = call, .low = fit->low,
                           .high = fit->high, .step_limit = fit->step_limit, .prior_mean = fit->prior_mean,
                           .prior_u = fit->prior_u, .max_iterations = 120, .tolerance = 1e-8, .cancellable = cancellable };
 }
@@ -306,7 +431,7 @@ bt_film_fit_run (BtFilmFit *fit, const BtFilmData *data, GCancellable *cancellab
   double low[BT_MODEL_MAX_PARAMETERS], high[BT_MODEL_MAX_PARAMETERS];
   gsize free_parameters = 0;
 
-  problem_init (&problem, fit, data, &call, cancellable);
+  problem_init (&problem, fit, data, 0, &call, cancellable);
 
   /* What is linear first: heights, offset and steps with every shape held where it stands. */
   memcpy (low, fit->low, sizeof low);
@@ -320,6 +445,8 @@ bt_film_fit_run (BtFilmFit *fit, const BtFilmData *data, GCancellable *cancellab
       low[j + 1] = high[j + 1] = fit->x[j + 1];
       low[j + 2] = high[j + 2] = fit->x[j + 2];
     }
+  for (gsize j = bt_film_fit_wings (fit); j <= bt_film_fit_sideband (fit); j++)
+    low[j] = high[j] = fit->x[j];
   problem.low = low;
   problem.high = high;
   problem.max_iterations = 12;
@@ -327,7 +454,9 @@ bt_film_fit_run (BtFilmFit *fit, const BtFilmData *data, GCancellable *cancellab
   if (bt_least_squares (&problem, &solution) == BT_SOLVE_CANCELLED)
     return fit->state = BT_SOLVE_CANCELLED;
 
-  problem_init (&problem, fit, data, &call, cancellable);
+  /* The strengths are relative to all that S22 and M11 hold after that. */
+  problem_init (&problem, fit, data, bt_film_fit_group_area (fit, BT_S22, NULL) + fabs (bt_film_fit_group_area (fit, BT_M11, NULL)), &call,
+                cancellable);
   solution.covariance = fit->covariance;
   solution.at_bound = fit->at_bound;
   fit->state = bt_least_squares (&problem, &solution);
@@ -365,9 +494,10 @@ bt_film_fit_eval (const BtFilmFit *fit, const BtFilmData *data, const double *en
       for (guint b = 0; b < fit->n_bands; b++)
         {
           gsize j = bt_film_fit_band (fit, b);
-          double u = (energy_ev[i] - fit->x[j + 1]) / fit->x[j + 2];
 
-          sum += fit->x[j] * exp (-LN16 * u * u);
+          sum += fit->x[j]
+                 * band_at (energy_ev[i], fit->x + j, fit->x[bt_film_fit_wings (fit)],
+                            has_sideband (fit->group[b]) ? fit->x[bt_film_fit_sideband (fit)] : 0, NULL);
         }
       out[i] = sum;
     }
@@ -376,24 +506,30 @@ bt_film_fit_eval (const BtFilmFit *fit, const BtFilmData *data, const double *en
 void
 bt_film_fit_residual (const BtFilmFit *fit, const BtFilmData *data, double *residual, double *jacobian)
 {
-  Call call = { fit, data };
+  Call call = { fit, data, 0 };
+  const gsize rows = data->n + G_N_ELEMENTS (strengths);
+  g_autofree double *r = g_new (double, rows), *j = jacobian != NULL ? g_new (double, rows * fit->p) : NULL;
 
-  model_function (fit->x, residual, jacobian, &call);
+  model_function (fit->x, r, j, &call);
   for (gsize i = 0; i < data->n; i++)
-    residual[i] *= -data->sigma[i];
+    residual[i] = -r[i] * data->sigma[i];
+  if (jacobian != NULL)
+    memcpy (jacobian, j, sizeof (double) * data->n * fit->p);
 }
 
 double
 bt_film_fit_area (const BtFilmFit *fit, guint band, double *gradient)
 {
-  gsize j = bt_film_fit_band (fit, band);
+  gsize j = bt_film_fit_band (fit, band), wings = bt_film_fit_wings (fit);
+  double unit = unit_area (fit->x[wings]);
 
   if (gradient != NULL)
     {
-      gradient[j] += BT_GAUSSIAN_AREA * fit->x[j + 2];
-      gradient[j + 2] += BT_GAUSSIAN_AREA * fit->x[j];
+      gradient[j] += unit * fit->x[j + 2];
+      gradient[j + 2] += unit * fit->x[j];
+      gradient[wings] += (G_PI / 2 - BT_GAUSSIAN_AREA) * fit->x[j] * fit->x[j + 2];
     }
-  return BT_GAUSSIAN_AREA * fit->x[j] * fit->x[j + 2];
+  return unit * fit->x[j] * fit->x[j + 2];
 }
 
 double

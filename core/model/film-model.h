@@ -9,7 +9,7 @@
 
 #define BT_MODEL_MAX_BANDS 24
 #define BT_MODEL_MAX_STEPS 3
-#define BT_MODEL_MAX_PARAMETERS (4 + BT_MODEL_MAX_STEPS + 3 * BT_MODEL_MAX_BANDS)
+#define BT_MODEL_MAX_PARAMETERS (6 + BT_MODEL_MAX_STEPS + 3 * BT_MODEL_MAX_BANDS)
 
 /**
  * BtFilmData:
@@ -28,7 +28,7 @@ typedef struct {
  * BtFilmFit:
  * @n_in_group: bands by group
  * @group: of each band; bands of a group stand together, from low energy at the start
- * @x: parameters: tail height, shape (1 or 2), offset, step sizes, then height, centre (eV) and FWHM (eV) of each band
+ * @x: parameters: tail height, shape (1 or 2), offset, step sizes, share of Lorentzian wings, share of the phonon sideband, then height, centre (eV) and FWHM (eV) of each band
  * @covariance: of @x, row-major, for residuals in units of sigma
  * @held: (array): one bit a BtBandField for each band
  * @aic: chi2 + 2 K
@@ -52,8 +52,10 @@ typedef struct {
 
 /* Index of a band's height; centre and FWHM follow. */
 gsize bt_film_fit_band (const BtFilmFit *fit, guint band);
-/* Index of the offset. */
+/* Index of the offset; of the share of every band's height in Lorentzian wings; of the share of S11's and S22's area in a sideband. */
 gsize bt_film_fit_offset (const BtFilmFit *fit);
+gsize bt_film_fit_wings (const BtFilmFit *fit);
+gsize bt_film_fit_sideband (const BtFilmFit *fit);
 
 /* (transfer full): a fit that stands at its start: bands spread over their windows, heights 0. */
 BtFilmFit *bt_film_fit_new (BtTailKind tail, const BtBandPlan *plan, const guint n_in_group[BT_N_GROUPS], const BtFilmData *data);
@@ -68,6 +70,8 @@ void bt_film_fit_hold (BtFilmFit *fit, guint band, guint field, double value);
 /* Fits: first what is linear with the shapes held, then everything. */
 BtSolveState bt_film_fit_run (BtFilmFit *fit, const BtFilmData *data, GCancellable *cancellable);
 
+/* One band of height 1 with wings and sideband at one energy. */
+double bt_line_eval (double energy_ev, double centre_ev, double fwhm_ev, double wings, double sideband);
 /* The model at energies: out[i]; @tail_out (nullable) without the bands. */
 void bt_film_fit_eval (const BtFilmFit *fit, const BtFilmData *data, const double *energy_ev, gsize n, double *out, double *tail_out);
 /* Residual (data minus model, absorbance) at the data's points, and (nullable) the derivatives of the model over sigma, n x p. */

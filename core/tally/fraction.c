@@ -154,6 +154,10 @@ bt_candidate_init (BtCandidate *candidate, const BtFilmFit *fit, const BtPrepare
   sum = candidate->area_s + candidate->area_m;
   for (gsize j = 0; j < fit->p; j++)
     gf[j] = (gs[j] * candidate->area_m - gm[j] * candidate->area_s) / (sum * sum);
+  /* An area below zero by more than its uncertainty says that the uncertainty is too small: something else, most often the tail, takes from
+   * it at least as much as it is short of zero. */
+  if (candidate->area_m < 0 && candidate->area_m * candidate->area_m > candidate->var_mm)
+    candidate->var_mm = candidate->area_m * candidate->area_m;
   candidate->step_share = step_share (fit, gf, bt_film_fit_covariance_of (fit, gf, gf));
   find_ambiguous (candidate, prepared);
 }
@@ -185,6 +189,27 @@ ambiguous_variance (const BtCandidate *candidate, double area_s, double area_m, 
   return variance;
 }
 
+/* Areas at which a candidate's variances are taken: the expected ones, on the physical side. */
+static void
+areas_stated (const BtCandidate *candidate, double *area_s, double *area_m)
+{
+  bt_candidate_expected (candidate, area_s, area_m);
+  *area_s = fmax (*area_s, 0);
+  *area_m = fmax (*area_m, 0);
+  if (!(*area_s + *area_m > 0))
+    *area_s = *area_m = sqrt (candidate->var_ss + candidate->var_mm);
+}
+
+/* var(fraction) within one candidate. */
+static double
+candidate_variance (const BtCandidate *candidate, double k)
+{
+  double s, m;
+
+  areas_stated (candidate, &s, &m);
+  return fraction_variance (s, m, k, candidate->var_ss, candidate->var_mm, candidate->var_sm) + ambiguous_variance (candidate, s, m, k);
+}
+
 static int
 compare_double (const void *a, const void *b)
 {
@@ -205,7 +230,7 @@ draw_fractions (double *draws, const BtCandidate *candidates, gsize n, const BtR
   for (gsize d = 0; d < DRAWS; d++)
     {
       const BtCandidate *candidate;
-      double s, m, k, us, rest, slope;
+      double s, m, k, us, rest, slope, shift;
 
       /* Candidates in turn, each for its weight's share of the draws. */
       while (c + 1 < n && ((double) d + 0.5) / DRAWS > reached + candidates[c].weight)
@@ -214,8 +239,9 @@ draw_fractions (double *draws, const BtCandidate *candidates, gsize n, const BtR
       us = sqrt (fmax (0, candidate->var_ss));
       slope = candidate->var_ss > 0 ? candidate->var_sm / candidate->var_ss : 0;
       rest = sqrt (fmax (0, candidate->var_mm - slope * candidate->var_sm));
+      shift = fmin (candidate->area_m, 0);
       s = gsl_ran_gaussian_ziggurat (rng, us);
-      m = candidate->area_m + slope * s + gsl_ran_gaussian_ziggurat (rng, rest);
+      m = candidate->area_m - shift + slope * s + gsl_ran_gaussian_ziggurat (rng, rest);
       s += candidate->area_s;
       for (guint a = 0; a < candidate->n_ambiguous; a++)
         if (gsl_rng_uniform (rng) < candidate->ambiguous[a].probability)
@@ -268,7 +294,7 @@ fill_budget (BtTally *tally, const BtCandidate *candidates, gsize n, double mean
       const BtCandidate *candidate = &candidates[c];
       double s, m, f, all, from_noise, w = candidate->weight, tail_f = tally->tails[candidate->tail].fraction;
 
-      bt_candidate_expected (candidate, &s, &m);
+      areas_stated (candidate, &s, &m);
       f = bt_area_fraction (s, m, k);
       all = fraction_variance (s, m, k, candidate->var_ss, candidate->var_mm, candidate->var_sm);
       from_noise = fmin (all, fraction_variance (s, m, k, candidate->noise_ss, candidate->noise_mm, candidate->noise_sm));
@@ -308,35 +334,55 @@ judge (BtTally *tally, const double *draws)
                                                 : BT_VERDICT_UNDECIDED;
 }
 
-/* Mean fraction of each tail and of all; the mean of all is returned. */
+/* Fraction of mean areas, limited to 0 .. 1 only here, where it is stated: M11 below zero stands for "none seen". */
+static double
+stated_fraction (double area_s, double area_m, double k)
+{
+  area_s = fmax (area_s, 0);
+  area_m = fmax (area_m, 0);
+  return area_s + area_m > 0 ? bt_area_fraction (area_s, area_m, k) : 0.5;
+}
+
+/* Mean fraction of each tail and of all, from mean areas; the mean of all is returned. */
 static double
 average_fractions (BtTally *tally, const BtCandidate *candidates, gsize n)
 {
-  double mean = 0, sums[BT_N_TAILS] = { 0 }, weights[BT_N_TAILS] = { 0 }, squares[BT_N_TAILS] = { 0 };
   const double k = tally->recipe->strength_ratio;
+  double all_s = 0, all_m = 0;
 
-  for (gsize c = 0; c < n; c++)
-    {
-      const BtCandidate *candidate = &candidates[c];
-      /* A weight may round to nothing; its tail's own average still has to have one. */
-      double w = fmax (candidate->weight, 1e-300), s, m, f;
-
-      bt_candidate_expected (candidate, &s, &m);
-      f = bt_area_fraction (s, m, k);
-      sums[candidate->tail] += w * f;
-      squares[candidate->tail] += w * (f * f + fraction_variance (s, m, k, candidate->var_ss, candidate->var_mm, candidate->var_sm)
-                                       + ambiguous_variance (candidate, s, m, k));
-      weights[candidate->tail] += w;
-      mean += candidate->weight * f;
-    }
   for (guint t = 0; t < tally->n_tails; t++)
     {
-      tally->tails[t].fraction = weights[t] > 0 ? sums[t] / weights[t] : NAN;
-      tally->tails[t].fraction_u = weights[t] > 0
-                                     ? sqrt (fmax (0, squares[t] / weights[t] - tally->tails[t].fraction * tally->tails[t].fraction))
-                                     : NAN;
+      double sum_s = 0, sum_m = 0, sum_w = 0, spread = 0, f;
+
+      for (gsize c = 0; c < n; c++)
+        if (candidates[c].tail == t)
+          {
+            /* A weight may round to nothing; its tail's own average still has to have one. */
+            double w = fmax (candidates[c].weight, 1e-300), s, m;
+
+            bt_candidate_expected (&candidates[c], &s, &m);
+            sum_w += w;
+            sum_s += w * s;
+            sum_m += w * m;
+            all_s += candidates[c].weight * s;
+            all_m += candidates[c].weight * m;
+          }
+      if (!(sum_w > 0))
+        continue;
+      f = stated_fraction (sum_s, sum_m, k);
+      for (gsize c = 0; c < n; c++)
+        if (candidates[c].tail == t)
+          {
+            double w = fmax (candidates[c].weight, 1e-300) / sum_w, s, m, g;
+
+            bt_candidate_expected (&candidates[c], &s, &m);
+            g = stated_fraction (s, m, k);
+            spread += w * ((g - f) * (g - f) + candidate_variance (&candidates[c], k));
+          }
+      tally->tails[t].fraction = f;
+      tally->tails[t].fraction_u = sqrt (spread);
     }
-  return mean;
+  return stated_fraction (all_s, all_m, k);
 }
 
 /* Decision and detection limits of M11's area (Currie, Anal. Chem. 40, 586 (1968)): 1.645 and 3.29 times its whole u. Returns u. */

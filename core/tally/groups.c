@@ -38,7 +38,8 @@ add_band (BtTally *tally, const BtCandidate *best, guint b, guint index)
   gsize j = bt_film_fit_band (fit, b);
   double gradient[BT_MODEL_MAX_PARAMETERS] = { 0 };
   BtBand band = { .group = fit->group[b], .index = index, .height = fit->x[j], .centre_ev = fit->x[j + 1],
-                  .fwhm_ev = fit->x[j + 2], .held = fit->held[b] };
+                  .fwhm_ev = fit->x[j + 2], .held = fit->held[b], .wings = fit->x[bt_film_fit_wings (fit)],
+                  .sideband = fit->group[b] <= BT_S22 ? fit->x[bt_film_fit_sideband (fit)] : 0 };
 
   band.area = bt_film_fit_area (fit, b, gradient);
   band.area_u = sqrt (best->scale * bt_film_fit_covariance_of (fit, gradient, gradient));
@@ -131,7 +132,7 @@ group_shape (const BtCandidate *candidate, BtGroup group, double *centre, double
 
         g[j + 1] = a / area;
         if (a > 0)
-          g[j] = BT_GAUSSIAN_AREA * fit->x[j + 2] * (fit->x[j + 1] - *centre) / area;
+          g[j] = a / fit->x[j] * (fit->x[j + 1] - *centre) / area;
       }
   *centre_var = candidate->scale * bt_film_fit_covariance_of (fit, g, g);
   return TRUE;

@@ -229,6 +229,9 @@ follow_previous (BtPrepared *prepared, const BtRecipe *recipe, const BtTally *pr
       start->x[j] = band->height;
       start->x[j + 1] = band->centre_ev;
       start->x[j + 2] = band->fwhm_ev;
+      start->x[bt_film_fit_wings (start)] = band->wings;
+      if (band->group <= BT_S22)
+        start->x[bt_film_fit_sideband (start)] = band->sideband;
     }
   return bt_fit_bands (prepared, recipe, tail->kind, n_in_group, start, cancellable);
 }
@@ -351,7 +354,6 @@ bt_tally_answer (const BtTally *tally)
 void
 bt_band_eval (const BtBand *band, const double *energy_ev, gsize n, double *out)
 {
-  bt_gaussian_eval (energy_ev, n, band->centre_ev, band->fwhm_ev, out);
   for (gsize i = 0; i < n; i++)
-    out[i] *= band->height;
+    out[i] = band->height * bt_line_eval (energy_ev[i], band->centre_ev, band->fwhm_ev, band->wings, band->sideband);
 }

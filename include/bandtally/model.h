@@ -22,7 +22,11 @@ const char *bt_tail_name (BtTailKind kind);
 const char *bt_tail_title (BtTailKind kind);
 gboolean bt_tail_from_name (const char *name, BtTailKind *kind);
 
-#define BT_TAIL_MAX_PARAMETERS 4
+/* The phonon sideband of S11 and S22: this far above its band, eV, and this much wider (Perebeinos et al., Phys. Rev. Lett. 94, 027402
+ * (2005), from memory; width from common practice). */
+#define BT_SIDEBAND_EV 0.2
+#define BT_SIDEBAND_WIDTH 1.8
+
 /**
  * BtTail:
  * @height: amplitude: the tail's value at its reference point, absorbance (plasmon: at its maximum; others: at 500 nm)

@@ -12,7 +12,8 @@ G_BEGIN_DECLS
 typedef enum { BT_TALLY_ERROR_DATA, BT_TALLY_ERROR_FIT, BT_TALLY_ERROR_CANCELLED } BtTallyError;
 GQuark bt_tally_error_quark (void);
 
-/* One Gaussian of the best fit. Uncertainties are standard uncertainties; 0 where the number is held. Area in absorbance eV. */
+/* One band of the best fit: a Gaussian that holds @wings of its height in a Lorentzian of the same width and, for S11 and S22, @sideband of its
+ * area 0.2 eV higher (bt_band_eval()). Uncertainties are standard uncertainties; 0 where the number is held. Area in absorbance eV. */
 typedef struct {
   BtGroup group;
   guint index;                     /* within its group, from low energy */
@@ -20,6 +21,7 @@ typedef struct {
   double fwhm_ev, fwhm_u_ev;
   double height, height_u;         /* absorbance */
   double area, area_u;             /* absorbance eV; only M11's may be negative */
+  double wings, sideband;          /* 0 to 1; common to all bands of a fit */
   guint held;                      /* one bit a BtBandField */
   gboolean at_bound;
 } BtBand;
