@@ -7,7 +7,7 @@
 #include <glib/gi18n-lib.h>
 
 /* More points than this say nothing more about bands of 50 meV and more: they are averaged. */
-#define MAX_POINTS 2500
+#define MAX_POINTS 700
 /* Fewer than this cannot carry a tail and a band. */
 #define MIN_POINTS 20
 

@@ -236,11 +236,35 @@ follow_previous (BtPrepared *prepared, const BtRecipe *recipe, const BtTally *pr
   return bt_fit_bands (prepared, recipe, tail->kind, n_in_group, start, cancellable);
 }
 
+/* One tail's fits, in a thread of its own. */
+typedef struct {
+  const BtPrepared *prepared;
+  const BtRecipe *recipe;
+  BtTailKind kind;
+  GCancellable *cancellable;
+  GPtrArray *fits;
+  GError *error;
+} TailTask;
+
+static gpointer
+run_tail (gpointer data)
+{
+  TailTask *task = data;
+
+  task->fits = bt_select_bands (task->prepared, task->recipe, task->kind, task->cancellable, &task->error);
+  return NULL;
+}
+
 /* Fits every tail; fits[t] is sorted, the best first. FALSE with @error set. */
 static gboolean
 fit_tails (BtTally *tally, BtPrepared *prepared, BtEffort effort, const BtTally *previous, GPtrArray **fits, BtProgressFunc progress,
            gpointer progress_data, GCancellable *cancellable, GError **error)
 {
+  TailTask tasks[BT_N_TAILS];
+  GThread *threads[BT_N_TAILS];
+  gboolean good = TRUE;
+  guint n = 0;
+
   if (effort == BT_EFFORT_QUICK && previous != NULL && previous->bands->len > 0)
     {
       BtFilmFit *fit = follow_previous (prepared, tally->recipe, previous, cancellable);
@@ -256,18 +280,28 @@ fit_tails (BtTally *tally, BtPrepared *prepared, BtEffort effort, const BtTally 
     return FALSE;
   if (progress != NULL)
     progress (0.4, progress_data);
+  /* The tails do not know of each other, so the outcome is the same however many threads there are. */
   for (guint kind = 0; kind < BT_N_TAILS; kind++)
+    if (tally->recipe->tails & (1u << kind))
+      {
+        tasks[n] = (TailTask){ prepared, tally->recipe, (BtTailKind) kind, cancellable, NULL, NULL };
+        threads[n] = g_thread_new ("tail", run_tail, &tasks[n]);
+        n++;
+      }
+  for (guint t = 0; t < n; t++)
     {
-      if (!(tally->recipe->tails & (1u << kind)))
-        continue;
-      fits[tally->n_tails] = bt_select_bands (prepared, tally->recipe, (BtTailKind) kind, cancellable, error);
-      if (fits[tally->n_tails] == NULL)
-        return FALSE;
-      tally->n_tails++;
+      g_thread_join (threads[t]);
+      fits[t] = tasks[t].fits;
+      if (tasks[t].error != NULL && good)
+        g_propagate_error (error, tasks[t].error);
+      else
+        g_clear_error (&tasks[t].error);
+      good = good && fits[t] != NULL;
       if (progress != NULL)
-        progress (0.4 + 0.2 * (kind + 1), progress_data);
+        progress (0.4 + 0.5 * (t + 1) / n, progress_data);
     }
-  return TRUE;
+  tally->n_tails = n;
+  return good;
 }
 
 BtTally *
