@@ -3,6 +3,7 @@
 
 #include <math.h>
 #include <stdlib.h>
+#include <string.h>
 
 #define FWHM_PER_SIGMA 2.3548200450309493
 
@@ -103,70 +104,154 @@ bt_tally_fill_best (BtTally *tally, const BtCandidate *best, const BtPrepared *p
   tally->s22_m11_correlation = ss > 0 && mm > 0 ? bt_film_fit_covariance_of (fit, gs, gm) / sqrt (ss * mm) : NAN;
 }
 
-/* Area-weighted centre and width of a group in one fit, with the centre's variance. FALSE for an empty or negative group. */
-static gboolean
-group_shape (const BtCandidate *candidate, BtGroup group, double *centre, double *centre_var, double *fwhm)
+/* The sum of a group's bands, sidebands left out: they are not what one reads a crown from. */
+static double
+group_sum (const BtFilmFit *fit, const double *x, BtGroup group, double energy_ev)
 {
-  const BtFilmFit *fit = candidate->fit;
-  double area = 0, first = 0, second = 0, g[BT_MODEL_MAX_PARAMETERS] = { 0 };
+  double sum = 0;
 
   for (guint b = 0; b < fit->n_bands; b++)
     if (fit->group[b] == group)
       {
-        gsize j = bt_film_fit_band (fit, b);
-        double a = fmax (0, bt_film_fit_area (fit, b, NULL)), sigma = fit->x[j + 2] / FWHM_PER_SIGMA;
+        const double *band = x + bt_film_fit_band (fit, b);
 
-        area += a;
-        first += a * fit->x[j + 1];
-        second += a * (fit->x[j + 1] * fit->x[j + 1] + sigma * sigma);
+        sum += band[0] * bt_line_eval (energy_ev, band[1], band[2], x[bt_film_fit_wings (fit)], 0);
       }
-  if (!(area > 0))
-    return FALSE;
-  *centre = first / area;
-  *fwhm = FWHM_PER_SIGMA * sqrt (fmax (0, second / area - *centre * *centre));
+  return sum;
+}
+
+/* Energy of the highest point of a group's sum: a scan at 2 meV, then a parabola through the top. */
+static double
+crown_of (const BtFilmFit *fit, const double *x, BtGroup group, double low, double high)
+{
+  const double step = 0.002;
+  double best = low, top = -INFINITY, left, right, bend;
+
+  for (double e = low; e <= high; e += step)
+    {
+      double value = group_sum (fit, x, group, e);
+
+      if (value > top)
+        {
+          top = value;
+          best = e;
+        }
+    }
+  left = group_sum (fit, x, group, best - step);
+  right = group_sum (fit, x, group, best + step);
+  bend = left - 2 * top + right;
+  return bend < 0 ? best + step * CLAMP (0.5 * (left - right) / bend, -1, 1) : best;
+}
+
+static double
+width_at_half (const BtFilmFit *fit, BtGroup group, double crown)
+{
+  const double half = group_sum (fit, fit->x, group, crown) / 2, step = 0.001;
+  double low = crown, high = crown;
+
+  while (low > crown - 2 && group_sum (fit, fit->x, group, low) > half)
+    low -= step;
+  while (high < crown + 2 && group_sum (fit, fit->x, group, high) > half)
+    high += step;
+  return high - low;
+}
+
+typedef struct { double crown, crown_var, mean, mean_var, fwhm; } GroupShape;
+
+/* FALSE for an empty or negative group. */
+static gboolean
+group_shape (const BtCandidate *candidate, BtGroup group, GroupShape *shape)
+{
+  const BtFilmFit *fit = candidate->fit;
+  double area = 0, first = 0, low = INFINITY, high = -INFINITY, x[BT_MODEL_MAX_PARAMETERS];
+  double mean_g[BT_MODEL_MAX_PARAMETERS] = { 0 }, crown_g[BT_MODEL_MAX_PARAMETERS] = { 0 };
+
   for (guint b = 0; b < fit->n_bands; b++)
     if (fit->group[b] == group)
       {
         gsize j = bt_film_fit_band (fit, b);
         double a = fmax (0, bt_film_fit_area (fit, b, NULL));
 
-        g[j + 1] = a / area;
-        if (a > 0)
-          g[j] = a / fit->x[j] * (fit->x[j + 1] - *centre) / area;
+        area += a;
+        first += a * fit->x[j + 1];
+        low = fmin (low, fit->x[j + 1] - 0.02);
+        high = fmax (high, fit->x[j + 1] + 0.02);
       }
-  *centre_var = candidate->scale * bt_film_fit_covariance_of (fit, g, g);
+  if (!(area > 0))
+    return FALSE;
+  shape->mean = first / area;
+  shape->crown = crown_of (fit, fit->x, group, low, high);
+  shape->fwhm = width_at_half (fit, group, shape->crown);
+  memcpy (x, fit->x, sizeof (double) * fit->p);
+  for (guint b = 0; b < fit->n_bands; b++)
+    if (fit->group[b] == group)
+      {
+        gsize j = bt_film_fit_band (fit, b);
+        double a = fmax (0, bt_film_fit_area (fit, b, NULL));
+
+        mean_g[j + 1] = a / area;
+        if (a > 0)
+          mean_g[j] = a / fit->x[j] * (fit->x[j + 1] - shape->mean) / area;
+        for (gsize k = j; k < j + 3; k++)
+          {
+            double h = 1e-3 * fabs (fit->x[k]);
+
+            if (!(h > 0))
+              continue;
+            x[k] = fit->x[k] + h;
+            crown_g[k] = (crown_of (fit, x, group, low, high) - shape->crown) / h;
+            x[k] = fit->x[k];
+          }
+      }
+  shape->mean_var = candidate->scale * bt_film_fit_covariance_of (fit, mean_g, mean_g);
+  shape->crown_var = candidate->scale * bt_film_fit_covariance_of (fit, crown_g, crown_g);
   return TRUE;
+}
+
+/* Weighted mean and the standard uncertainty that holds the spread between the fits beside what each of them says. */
+typedef struct { double weight, sum, squares; } Average;
+
+static void
+average_add (Average *average, double weight, double value, double variance)
+{
+  average->weight += weight;
+  average->sum += weight * value;
+  average->squares += weight * (value * value + variance);
+}
+
+static void
+average_get (const Average *average, double *value, double *u)
+{
+  if (!(average->weight > 0))
+    return;
+  *value = average->sum / average->weight;
+  *u = sqrt (fmax (0, average->squares / average->weight - *value * *value));
 }
 
 static void
 average_group (BtGroupTally *out, const BtCandidate *candidates, gsize n, BtGroup group)
 {
-  double area = 0, area2 = 0, weight = 0, centre = 0, centre2 = 0, fwhm = 0, fwhm2 = 0;
+  Average area = { 0 }, crown = { 0 }, mean = { 0 }, fwhm = { 0 };
 
   for (gsize c = 0; c < n; c++)
     {
       const BtFilmFit *fit = candidates[c].fit;
-      double w = candidates[c].weight, g[BT_MODEL_MAX_PARAMETERS] = { 0 }, a = bt_film_fit_group_area (fit, group, g), e, v, width;
+      double w = candidates[c].weight, g[BT_MODEL_MAX_PARAMETERS] = { 0 }, a = bt_film_fit_group_area (fit, group, g);
+      GroupShape shape;
 
-      area += w * a;
-      area2 += w * (a * a + candidates[c].scale * bt_film_fit_covariance_of (fit, g, g));
-      if (group_shape (&candidates[c], group, &e, &v, &width))
+      average_add (&area, w, a, candidates[c].scale * bt_film_fit_covariance_of (fit, g, g));
+      /* Fits that count for next to nothing are not worth the search for their crown. */
+      if (w > 1e-3 && group_shape (&candidates[c], group, &shape))
         {
-          weight += w;
-          centre += w * e;
-          centre2 += w * (e * e + v);
-          fwhm += w * width;
-          fwhm2 += w * width * width;
+          average_add (&crown, w, shape.crown, shape.crown_var);
+          average_add (&mean, w, shape.mean, shape.mean_var);
+          average_add (&fwhm, w, shape.fwhm, 0);
         }
     }
-  out->area = area;
-  out->area_u = sqrt (fmax (0, area2 - area * area));
-  if (!(weight > 0))
-    return;
-  out->centre_ev = centre / weight;
-  out->centre_u_ev = sqrt (fmax (0, centre2 / weight - out->centre_ev * out->centre_ev));
-  out->fwhm_ev = fwhm / weight;
-  out->fwhm_u_ev = sqrt (fmax (0, fwhm2 / weight - out->fwhm_ev * out->fwhm_ev));
+  average_get (&area, &out->area, &out->area_u);
+  average_get (&crown, &out->centre_ev, &out->centre_u_ev);
+  average_get (&mean, &out->mean_ev, &out->mean_u_ev);
+  average_get (&fwhm, &out->fwhm_ev, &out->fwhm_u_ev);
 }
 
 /* The diameter whose group lies at an energy (films' shift added back), by bisection: energies fall with diameter. */
@@ -202,12 +287,12 @@ fill_diameter (BtTally *tally)
       const BtGroupTally *group = &tally->groups[g];
       double d, slope, sigma, u;
 
-      if (group->n_bands == 0 || !(group->area > 2 * group->area_u) || !isfinite (group->centre_ev))
+      if (group->n_bands == 0 || !(group->area > 2 * group->area_u) || !isfinite (group->mean_ev))
         continue;
-      d = diameter_at ((BtGroup) g, group->centre_ev + tally->plan.shift_ev);
-      slope = (diameter_at ((BtGroup) g, group->centre_ev + tally->plan.shift_ev - 0.01) - d) / 0.01;
+      d = diameter_at ((BtGroup) g, group->mean_ev + tally->plan.shift_ev);
+      slope = (diameter_at ((BtGroup) g, group->mean_ev + tally->plan.shift_ev - 0.01) - d) / 0.01;
       sigma = sqrt (fmax (0, group->fwhm_ev * group->fwhm_ev - line_ev[g] * line_ev[g])) / FWHM_PER_SIGMA;
-      u = slope * hypot (hypot (group->centre_u_ev, shift_u_ev), 0.01);
+      u = slope * hypot (hypot (group->mean_u_ev, shift_u_ev), 0.01);
       mean += d / (u * u);
       spread += sigma * slope / (u * u);
       weight += 1 / (u * u);
@@ -225,7 +310,7 @@ bt_tally_fill_groups (BtTally *tally, const BtCandidate *candidates, gsize n)
 {
   for (guint g = 0; g < BT_N_GROUPS; g++)
     {
-      tally->groups[g] = (BtGroupTally){ n > 0 ? candidates[0].fit->n_in_group[g] : 0, NAN, NAN, NAN, NAN, NAN, NAN };
+      tally->groups[g] = (BtGroupTally){ n > 0 ? candidates[0].fit->n_in_group[g] : 0, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN };
       if (tally->groups[g].n_bands > 0)
         average_group (&tally->groups[g], candidates, n, (BtGroup) g);
     }

@@ -65,7 +65,7 @@ tally_new (const BtPrepared *prepared, const BtRecipe *recipe)
   tally->fraction = (BtFraction){ NAN, NAN, NAN, NAN, recipe->level, BT_BOUND_NONE };
   tally->conformance = tally->acceptance_limit = tally->refusal_limit = NAN;
   for (guint g = 0; g < BT_N_GROUPS; g++)
-    tally->groups[g] = (BtGroupTally){ 0, NAN, NAN, NAN, NAN, NAN, NAN };
+    tally->groups[g] = (BtGroupTally){ 0, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN };
   return tally;
 }
 

@@ -30,8 +30,9 @@ typedef struct {
 typedef struct {
   guint n_bands;
   double area, area_u;             /* absorbance eV */
-  double centre_ev, centre_u_ev;   /* area-weighted */
-  double fwhm_ev, fwhm_u_ev;       /* of the sum */
+  double centre_ev, centre_u_ev;   /* of the crown of the group's sum */
+  double mean_ev, mean_u_ev;       /* area-weighted mean energy */
+  double fwhm_ev, fwhm_u_ev;       /* full width of the sum at half the crown's height */
 } BtGroupTally;
 
 /* What one tail says. */
