@@ -292,7 +292,7 @@ write_outputs (const Options *options, const BatchResult *result, BtPaper paper)
 
       g_print ("%s", text);
       g_free (text);
-      if (fflush (stdout) != 0)
+      if (fflush (stdout) != 0 || ferror (stdout))
         {
           complain (_ ("The table could not be written to standard output."));
           written = FALSE;

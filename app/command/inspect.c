@@ -160,9 +160,11 @@ write_points (BtSpectrum *spectrum, const char *path, GError **error)
                           bt_y_unit_name (bt_spectrum_get_y_unit (spectrum)));
   for (gsize i = 0; i < n; i++)
     {
-      char a[G_ASCII_DTOSTR_BUF_SIZE], b[G_ASCII_DTOSTR_BUF_SIZE];
+      char *a = bt_format_exact (x[i]), *b = bt_format_exact (y[i]);
 
-      g_string_append_printf (text, "%s,%s\r\n", g_ascii_dtostr (a, sizeof a, x[i]), g_ascii_dtostr (b, sizeof b, y[i]));
+      g_string_append_printf (text, "%s,%s\r\n", a, b);
+      g_free (a);
+      g_free (b);
     }
   written = output_write (path, text->str, (gssize)text->len, error);
   g_string_free (text, TRUE);

@@ -1,9 +1,9 @@
 /* Writing of results. A file is either complete or as it was before. */
 #include <errno.h>
-#include <stdio.h>
-#include <stdlib.h>
 #include <glib/gi18n.h>
 #include <glib/gstdio.h>
+#include <stdio.h>
+#include <stdlib.h>
 #include <string.h>
 #include <sys/ioctl.h>
 #include <sys/stat.h>

@@ -1,4 +1,4 @@
-/* Numbers for people: rounded to what is known of them. Files that programs read never come through here. */
+/* Numbers as text: for people rounded to what is known of them, for files exact. */
 #include <langinfo.h>
 #include <math.h>
 #include <string.h>
@@ -99,10 +99,13 @@ bt_format_uncertain (double value, double u)
   last = u_exponent - 1;
   u_digits = lround (u / pow (10, last));
   exponent = MAX (u_exponent, decimal_exponent (value, MAX (1, decimal_exponent (value, 17) - last + 1)));
-  if (last <= 0 && exponent >= FIXED_LOW && exponent <= FIXED_HIGH)
+  if (exponent >= FIXED_LOW && exponent <= FIXED_HIGH)
     {
-      mantissa = fixed (value, -last);
-      text = g_strdup_printf ("%s(%ld)", mantissa, u_digits);
+      /* 24560(120): zeros before the point stand in the value and in the bracket alike. */
+      double unit = last > 0 ? pow (10, last) : 1;
+
+      mantissa = last > 0 ? fixed (round (value / unit) * unit, 0) : fixed (value, -last);
+      text = g_strdup_printf ("%s(%.0f)", mantissa, (double)u_digits * unit);
     }
   else
     {
@@ -111,4 +114,21 @@ bt_format_uncertain (double value, double u)
     }
   g_free (mantissa);
   return localise (text);
+}
+
+char *
+bt_format_exact (double value)
+{
+  char *text = g_malloc (G_ASCII_DTOSTR_BUF_SIZE);
+
+  for (int digits = 15; digits <= 17; digits++)
+    {
+      char format[16];
+
+      g_snprintf (format, sizeof format, "%%.%dg", digits);
+      g_ascii_formatd (text, G_ASCII_DTOSTR_BUF_SIZE, format, value);
+      if (g_ascii_strtod (text, NULL) == value)
+        break;
+    }
+  return text;
 }

@@ -7,12 +7,19 @@
 static void
 put_text (GString *out, const char *text)
 {
-  if (out->len > 0 && out->str[out->len - 1] != '\n')
+  gboolean first = out->len == 0 || out->str[out->len - 1] == '\n';
+  gboolean empty = text == NULL || text[0] == '\0';
+
+  if (!first)
     g_string_append_c (out, ',');
-  if (text == NULL)
-    return;
-  /* An empty string is quoted: an empty first field must still count as a field. */
-  if (text[0] != '\0' && strpbrk (text, ",\"\r\n") == NULL)
+  if (empty)
+    {
+      /* Else the field after it would take itself for the first. */
+      if (first)
+        g_string_append (out, "\"\"");
+      return;
+    }
+  if (strpbrk (text, ",\"\r\n") == NULL)
     {
       g_string_append (out, text);
       return;

@@ -264,6 +264,7 @@ put_judgement (JsonBuilder *builder, const BtTally *tally)
   put_string (builder, "verdict", bt_verdict_name (tally->verdict));
   begin_object (builder, "decision");
   put_number (builder, "limit", tally->recipe->limit);
+  put_number (builder, "probability_at_least_limit", tally->conformance);
   put_number (builder, "acceptance_limit", tally->acceptance_limit);
   put_number (builder, "refusal_limit", tally->refusal_limit);
   put_string (builder, "rule", tally->decision_rule);

@@ -31,13 +31,15 @@ char *bt_tallies_to_csv (GPtrArray *films, GPtrArray *tallies);
  * account, several get a line each and their flags below. */
 char *bt_tallies_to_text (GPtrArray *films, GPtrArray *tallies, int columns);
 
-/* (transfer full): "0.661(26)", "1.520(31)e5": a value with its standard uncertainty in brackets, two digits that count in the
- * value's last places; the value alone where @u is 0 or not finite; "-" for NAN. With the locale's decimal mark: for people,
- * never for files. */
+/* (transfer full): "0.661(26)", "24560(120)", "1.523(31)e7": a value with its standard uncertainty in brackets, two digits that
+ * count in the value's last places; the value alone where @u is 0 or not finite; "-" for NAN. With the locale's decimal mark:
+ * for people, never for files. */
 char *bt_format_uncertain (double value, double u);
 /* (transfer full): value with @digits significant digits in the window's locale where @localised, else with a point. "-" for
  * NAN; with an exponent ("1.52e-7") below 0.0001 and from a million up. */
 char *bt_format_number (double value, int digits, gboolean localised);
+/* (transfer full): the fewest digits, with a point, that read back as the same double: for files. */
+char *bt_format_exact (double value);
 
 G_END_DECLS
 

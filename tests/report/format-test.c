@@ -14,9 +14,11 @@ typedef struct
 /* The notation is that of JCGM 100:2008, 7.2.2; the rows are worked by hand. */
 static const UncertainRow uncertain_rows[] = {
   { 0.661, 0.026, "0.661(26)" },
-  { 152000, 3100, "1.520(31)e5" },
+  { 152000, 3100, "152000(3100)" },
   { 1402.4, 25, "1402(25)" },
-  { 14020, 250, "1.402(25)e4" },
+  { 1523456, 3100, "1.5235(31)e6" },
+  { 2, 4000000, "0.0(40)e6" },
+  { 14020, 250, "14020(250)" },
   { 12.34, 4.5, "12.3(45)" },
   { 1.23456, 0.0996, "1.23(10)" }, /* 0.0996 rounds up to 0.10 */
   { 0.02, 0.035, "0.020(35)" },
@@ -27,7 +29,7 @@ static const UncertainRow uncertain_rows[] = {
   { 99999.7, 1.2, "99999.7(12)" },
   { 999999.7, 12, "1.000000(12)e6" },
   { 1.5e-7, 2.5e-9, "1.500(25)e-7" },
-  { 3, 400, "0.0(40)e2" },
+  { 3, 400, "0(400)" },
   { 0.5, 0, "0.5000" },
   { 0.5, NAN, "0.5000" },
   { 0.5, INFINITY, "0.5000" },
@@ -60,10 +62,11 @@ test_uncertain_reads_back (void)
       char *bracket = strchr (text, '('), *point = strchr (text, '.');
       double exponent = strchr (text, 'e') != NULL ? g_ascii_strtod (strchr (text, 'e') + 1, NULL) : 0;
       double places = point != NULL && point < bracket ? (double)(bracket - point - 1) : 0;
+      double last = (double)strcspn (bracket + 1, ")") - 2; /* zeros before the point are not among the two digits */
       double unit = pow (10, exponent - places);
 
       g_assert_nonnull (bracket);
-      g_assert_cmpfloat_with_epsilon (g_ascii_strtod (text, NULL) * pow (10, exponent), value, 0.5001 * unit);
+      g_assert_cmpfloat_with_epsilon (g_ascii_strtod (text, NULL) * pow (10, exponent), value, 0.5001 * unit * pow (10, last));
       g_assert_cmpfloat_with_epsilon (g_ascii_strtod (bracket + 1, NULL) * unit, u, 0.0501 * u);
       g_free (text);
     }
@@ -102,6 +105,24 @@ test_number (void)
       char *text = bt_format_number (number_rows[i].value, number_rows[i].digits, FALSE);
 
       g_assert_cmpstr (text, ==, number_rows[i].expected);
+      g_free (text);
+    }
+}
+
+/* Fewest digits, and the same double again. */
+static void
+test_exact (void)
+{
+  char *text = bt_format_exact (0.95);
+
+  g_assert_cmpstr (text, ==, "0.95");
+  g_free (text);
+  for (int i = 0; i < 2000; i++)
+    {
+      double value = g_test_rand_double_range (-1, 1) * pow (10, g_test_rand_int_range (-300, 300));
+
+      text = bt_format_exact (value);
+      g_assert_true (g_ascii_strtod (text, NULL) == value);
       g_free (text);
     }
 }
@@ -147,6 +168,7 @@ main (int argc, char **argv)
   g_test_add_func ("/format/uncertain", test_uncertain);
   g_test_add_func ("/format/uncertain-reads-back", test_uncertain_reads_back);
   g_test_add_func ("/format/number", test_number);
+  g_test_add_func ("/format/exact", test_exact);
   g_test_add_func ("/columns/align", test_columns);
   g_test_add_func ("/columns/wrapped", test_wrapped);
   return g_test_run ();

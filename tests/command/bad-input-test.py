@@ -1,0 +1,172 @@
+"""Files that are no spectrum, messy ones, and films that lack something: a sentence each, and nothing crashes."""
+import json
+import math
+import os
+import random
+
+from whole_program import Folder, holds, main, run, test
+
+HEADER = "wavelength_nm,absorbance\n"
+
+
+def curve(wavelength_nm):
+    """Some curve with bands, for files whose form is at stake and not their content."""
+    energy_ev = 1239.842 / wavelength_nm
+    bands = ((0.62, 0.12, 0.10), (1.2, 0.2, 0.08), (1.75, 0.2, 0.05))
+    return 0.1 + 0.05 * energy_ev + sum(h * math.exp(-4 * math.log(2) * ((energy_ev - c) / w) ** 2) for c, w, h in bands)
+
+
+def noisy(low=400, high=2400, step=4, seed=1):
+    generator = random.Random(seed)
+    return [(x, curve(x) + generator.gauss(0, 5e-4)) for x in range(low, high + 1, step)]
+
+
+def rows(points, separator=","):
+    return "".join(f"{x}{separator}{y!r}\n" for x, y in points)
+
+
+# Name, content, and what the sentence must name beside the file.
+REFUSED = [
+    ("empty.csv", "", ["empty"]),
+    ("blank-lines.csv", "\n\n  \n", []),
+    ("binary.csv", bytes(range(256)) * 40, []),
+    ("picture.png", b"\x89PNG\r\n\x1a\n" + bytes(2000), []),
+    ("one-column.csv", "".join(f"{x}\n" for x in range(300, 900)), ["column"]),
+    ("three-points.csv", HEADER + "500,0.1\n600,0.2\n700,0.3\n", ["3", "points"]),
+    ("all-missing.csv", HEADER + "".join(f"{x},nan\n" for x in range(400, 900)), []),
+    ("constant-x.csv", HEADER + "".join(f"500,0.{i}\n" for i in range(100, 150)), []),
+    ("words.txt", "There is no table in here.\nNot at all.\n", []),
+    ("header-only.csv", HEADER, []),
+    ("negative-x.csv", HEADER + rows((-x, y) for x, y in noisy()), []),
+]
+
+
+def grade(path, *options, status=0):
+    return json.loads(run("grade", path, *options, "--json", "-", status=status).stdout)["films"]
+
+
+def codes(film):
+    return [flag["code"] for flag in film["flags"]]
+
+
+@test
+def test_what_is_no_spectrum_is_refused_by_a_sentence():
+    with Folder() as folder:
+        for name, content, parts in REFUSED:
+            path = folder.write(name, content)
+            for command in ("grade", "inspect"):
+                result = run(command, path, status=1)
+                sentences = result.stderr.strip().splitlines()
+                assert len(sentences) == 1, (name, command, result.stderr)
+                holds(sentences[0], name, *parts)
+                assert sentences[0].endswith("."), sentences[0]
+                assert result.stdout == "", (name, result.stdout)
+
+
+@test
+def test_folder_vanished_file_and_unreadable_place():
+    with Folder() as folder:
+        os.mkdir(folder("films"))
+        film = folder.film()
+        for path, parts in ((folder("films"), []), (folder("vanished.csv"), []), (os.path.join(film, "below.csv"), [])):
+            result = run("grade", path, status=1)
+            assert len(result.stderr.strip().splitlines()) == 1
+            holds(result.stderr, path, *parts)
+
+
+@test
+def test_constant_reading_gives_no_fraction():
+    with Folder() as folder:
+        path = folder.write("constant.csv", HEADER + "".join(f"{x},0.25\n" for x in range(400, 2400, 4)))
+        result = run("grade", path, "--json", "-")
+        if result.returncode == 1:
+            holds(result.stderr, "constant.csv")
+        else:
+            film = json.loads(result.stdout)["films"][0]
+            assert film["semiconducting_fraction"]["value"] is None and film["flags"], film
+
+
+@test
+def test_negative_absorbance_is_graded_and_flagged():
+    with Folder() as folder:
+        film = grade(folder.write("negative.csv", HEADER + rows((x, y - 0.3) for x, y in noisy())))[0]
+        assert any("negative" in flag["text"].lower() or "below 0" in flag["text"].lower() for flag in film["flags"]), film["flags"]
+
+
+@test
+def test_units_that_cannot_be_are_named():
+    with Folder() as folder:
+        path = folder.write("film.csv", "wavelength_nm,absorbance\n" + rows(noisy()))
+        result = run("grade", path, "--x-unit", "eV", status=1)
+        holds(result.stderr, "film.csv", "eV")
+
+
+@test
+def test_duplicate_and_unordered_points_do_not_matter():
+    with Folder() as folder:
+        points = noisy()
+        shuffled = points[:]
+        random.Random(5).shuffle(shuffled)
+        doubled = [point for point in points for _ in (0, 1)]
+        plain = grade(folder.write("plain.csv", HEADER + rows(points)))[0]
+        for name, messy in (("shuffled.csv", shuffled), ("backwards.csv", points[::-1]), ("doubled.csv", doubled)):
+            film = grade(folder.write(name, HEADER + rows(messy)))[0]
+            assert film["points"] == plain["points"]
+            a, b = film["semiconducting_fraction"], plain["semiconducting_fraction"]
+            assert a["bound"] == b["bound"] and abs(a["value"] - b["value"]) < 1e-6, (name, a, b)
+
+
+@test
+def test_dialects_read_the_same():
+    with Folder() as folder:
+        points = noisy()
+        comma = {x: repr(y).replace(".", ",") for x, y in points}
+        dialects = {
+            "semicolon.csv": "Wellenlänge (nm);Absorbance\r\n" + "".join(f"{x};{comma[x]}\r\n" for x, _ in points),
+            "tab.txt": "\ufeffnm\tA\n" + rows(points, "\t"),
+            "spaces.dat": rows(points, "   "),
+            "preamble.csv": "Instrument; invented\nOperator: nobody\n\n" + HEADER + rows(points),
+            "energy.csv": "energy (eV),absorbance\n" + "".join(f"{1239.8419843320026 / x!r},{y!r}\n" for x, y in points),
+            "wavenumber.csv": "wavenumber (1/cm),absorbance\n" + "".join(f"{1e7 / x!r},{y!r}\n" for x, y in points),
+            "micrometre.csv": "wavelength (um),absorbance\n" + "".join(f"{x / 1000!r},{y!r}\n" for x, y in points),
+            "transmittance.csv": "wavelength (nm),T\n" + "".join(f"{x},{10 ** -y!r}\n" for x, y in points),
+            "percent.csv": "wavelength (nm),%T\n" + "".join(f"{x},{100 * 10 ** -y!r}\n" for x, y in points),
+        }
+        plain = grade(folder.write("plain.csv", HEADER + rows(points)))[0]
+        for name, content in dialects.items():
+            film = grade(folder.write(name, content))[0]
+            assert film["points"] == plain["points"], name
+            for a, b in zip(film["absorbance"], plain["absorbance"], strict=True):
+                assert abs(a["value"] - b["value"]) < 1e-9, (name, a, b)
+
+
+@test
+def test_no_s22_in_range_gives_no_fraction_but_a_flag():
+    with Folder() as folder:
+        path = folder.write("short.csv", HEADER + rows(noisy(400, 750, 1)))
+        film = grade(path, "--diameter-nm", "1.4", "--diameter-spread-nm", "0.1")[0]
+        assert film["semiconducting_fraction"]["value"] is None and film["semiconducting_fraction"]["bound"] is None
+        assert any("S22" in flag["text"] for flag in film["flags"]), film["flags"]
+        assert film["groups"]["S22"]["area"] is None
+        assert film["verdict"] == "not judged"
+
+
+@test
+def test_faults_of_the_instrument_are_flagged():
+    with Folder() as folder:
+        step = folder.film("step.csv", "--step-at-nm", "860", "--step-size", "0.02")
+        assert "detector-step" in codes(grade(step)[0]), grade(step)[0]["flags"]
+        ceiling = folder.film("ceiling.csv", "--thickness-nm", "800", "--ceiling", "2.5")
+        assert any("saturat" in code for code in codes(grade(ceiling)[0])), grade(ceiling)[0]["flags"]
+
+
+@test
+def test_recipe_that_makes_no_sense_is_named():
+    with Folder() as folder:
+        film = folder.film()
+        for content, part in (("{", "recipe.json"), ("[]", "recipe.json"), ('{"level": 7}', "level"), ('{"limit": "much"}', "limit")):
+            result = run("grade", film, "--recipe", folder.write("recipe.json", content), status=2)
+            holds(result.stderr, part)
+
+
+main()
