@@ -1,0 +1,15 @@
+/* Faults of a reading: noise, steps, saturation. Pure functions over the core's axes. Private to core/spectrum. */
+#ifndef BANDTALLY_FAULTS_PRIVATE_H
+#define BANDTALLY_FAULTS_PRIVATE_H
+
+#include <bandtally/spectrum.h>
+
+/* (transfer full): standard uncertainty of each of @n points. */
+double *bt_faults_noise (const double *energy_ev, const double *absorbance, gsize n);
+/* Appends BtRange. */
+void bt_faults_find_saturated (const double *energy_ev, const double *absorbance, const double *noise, gsize n, GArray *saturated);
+/* Appends BtStep, by energy. */
+void bt_faults_find_steps (const double *energy_ev, const double *absorbance, const double *noise, gsize n, const GArray *saturated,
+                           GArray *steps);
+
+#endif

@@ -1,0 +1,430 @@
+/* A spectrum: the numbers as read, and the same on the core's axes. Immutable once made. */
+#include <bandtally/spectrum.h>
+
+#include <math.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include <glib/gi18n-lib.h>
+
+#include "faults-private.h"
+#include "spectrum-private.h"
+
+struct _BtSpectrum
+{
+  GObject parent_instance;
+
+  gsize n_raw;
+  double *raw_x, *raw_y;
+  BtXUnit x_unit;
+  BtYUnit y_unit;
+  gsize n;
+  double *energy_ev, *absorbance, *noise;
+  char *title, *file, *sha256, *reading;
+  GHashTable *notes;
+  GPtrArray *flags;
+  GArray *steps, *saturated;
+};
+
+G_DEFINE_FINAL_TYPE (BtSpectrum, bt_spectrum, G_TYPE_OBJECT)
+G_DEFINE_QUARK (bt-spectrum-error-quark, bt_spectrum_error)
+
+static void
+bt_spectrum_finalize (GObject *object)
+{
+  BtSpectrum *self = BT_SPECTRUM (object);
+
+  g_free (self->raw_x);
+  g_free (self->raw_y);
+  g_free (self->energy_ev);
+  g_free (self->absorbance);
+  g_free (self->noise);
+  g_free (self->title);
+  g_free (self->file);
+  g_free (self->sha256);
+  g_free (self->reading);
+  g_hash_table_unref (self->notes);
+  g_ptr_array_unref (self->flags);
+  g_array_unref (self->steps);
+  g_array_unref (self->saturated);
+  G_OBJECT_CLASS (bt_spectrum_parent_class)->finalize (object);
+}
+
+static void
+bt_spectrum_class_init (BtSpectrumClass *klass)
+{
+  G_OBJECT_CLASS (klass)->finalize = bt_spectrum_finalize;
+}
+
+static void
+bt_spectrum_init (BtSpectrum *self)
+{
+  self->notes = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free);
+  self->flags = bt_flags_new ();
+  self->steps = g_array_new (FALSE, TRUE, sizeof (BtStep));
+  self->saturated = g_array_new (FALSE, TRUE, sizeof (BtRange));
+}
+
+typedef struct { double energy, absorbance; } Point;
+
+static int
+by_energy (const void *a, const void *b)
+{
+  const Point *p = a, *q = b;
+
+  return p->energy < q->energy ? -1 : p->energy > q->energy;
+}
+
+/* FALSE where the reading has no absorbance (a transmittance of 0 or less). */
+static gboolean
+absorbance_of (double y, BtYUnit unit, double *absorbance)
+{
+  switch (unit)
+    {
+    case BT_Y_TRANSMITTANCE:
+    case BT_Y_TRANSMITTANCE_PERCENT:
+      if (unit == BT_Y_TRANSMITTANCE_PERCENT)
+        y /= 100;
+      *absorbance = -log10 (y);
+      return y > 0;
+    case BT_Y_ALPHA_PER_CM:
+      *absorbance = y / BT_LN10;
+      return TRUE;
+    case BT_Y_ABSORBANCE:
+    case BT_Y_REFLECTANCE:
+    case BT_Y_REFLECTANCE_PERCENT:
+    default:
+      *absorbance = y;
+      return TRUE;
+    }
+}
+
+/* Fills points with what can be used, in file order; returns their number and counts what cannot. */
+static gsize
+usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark, guint *n_bad_x)
+{
+  gsize n = 0;
+
+  for (gsize i = 0; i < self->n_raw; i++)
+    {
+      double x = self->raw_x[i], a;
+
+      if (!isfinite (x) || !isfinite (self->raw_y[i]))
+        (*n_missing)++;
+      else if (!(x > 0))
+        (*n_bad_x)++;
+      else if (!absorbance_of (self->raw_y[i], self->y_unit, &a))
+        (*n_dark)++;
+      else
+        points[n++] = (Point){ bt_energy_ev_from_x (x, self->x_unit), a };
+    }
+  return n;
+}
+
+/* Averages points of equal energy; returns how many are left. */
+static gsize
+merge_equal (Point *points, gsize n, guint *n_merged)
+{
+  gsize out = 0;
+
+  for (gsize i = 0; i < n;)
+    {
+      double sum = 0;
+      gsize k = i;
+
+      for (; k < n && points[k].energy - points[i].energy <= 1e-12 * points[i].energy; k++)
+        sum += points[k].absorbance;
+      *n_merged += (guint) (k - i - 1);
+      points[out++] = (Point){ points[i].energy, sum / (double) (k - i) };
+      i = k;
+    }
+  return out;
+}
+
+static void
+flag_counts (BtSpectrum *self, guint n_missing, guint n_dark, guint n_merged)
+{
+  if (n_missing > 0)
+    bt_spectrum_add_flag (self, bt_flag_new ("missing-values", g_dngettext (GETTEXT_PACKAGE, "%u point has no value and was left out; look at the "
+                                                                            "file if you expected one.",
+                                                                            "%u points have no value and were left out; look at the file if you "
+                                                                            "expected them.", n_missing), n_missing));
+  if (n_dark > 0)
+    bt_spectrum_add_flag (self, bt_flag_new ("dark", g_dngettext (GETTEXT_PACKAGE, "%u point has a transmittance of 0 or less and was left out; the "
+                                                                  "film is too dark there for the instrument.",
+                                                                  "%u points have a transmittance of 0 or less and were left out; the film is too "
+                                                                  "dark there for the instrument.", n_dark), n_dark));
+  if (n_merged > 0)
+    bt_spectrum_add_flag (self, bt_flag_new ("duplicate-x", g_dngettext (GETTEXT_PACKAGE, "%u point repeats a wavelength and was averaged with the "
+                                                                         "other reading there.",
+                                                                         "%u points repeat a wavelength and were averaged with the other readings "
+                                                                         "there.", n_merged), n_merged));
+}
+
+static gboolean
+refuse (GError **error, int code, const char *text)
+{
+  g_set_error_literal (error, BT_SPECTRUM_ERROR, code, text);
+  return FALSE;
+}
+
+static gboolean
+fill_axes (BtSpectrum *self, GError **error)
+{
+  g_autofree Point *points = g_new (Point, MAX (self->n_raw, 1));
+  guint n_missing = 0, n_dark = 0, n_bad_x = 0, n_merged = 0;
+  gsize n = usable_points (self, points, &n_missing, &n_dark, &n_bad_x);
+  double low = INFINITY, high = -INFINITY;
+
+  if (n_bad_x > 0)
+    return refuse (error, BT_SPECTRUM_ERROR_UNITS, _ ("wavelengths and energies have to be above 0; state which column is which, or the unit."));
+  qsort (points, n, sizeof *points, by_energy);
+  n = merge_equal (points, n, &n_merged);
+  if (n < BT_SPECTRUM_MIN_POINTS)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
+                   g_dngettext (GETTEXT_PACKAGE, "there is only %u usable point; a spectrum needs at least %d.",
+                                "there are only %u usable points; a spectrum needs at least %d.", (gulong) n),
+                   (guint) n, BT_SPECTRUM_MIN_POINTS);
+      return FALSE;
+    }
+  if (points[0].energy < 0.01 || points[n - 1].energy > 30)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
+                   _ ("in %s the data would reach from %.3g to %.3g eV, which no spectrophotometer measures; state another unit."),
+                   bt_x_unit_name (self->x_unit), points[0].energy, points[n - 1].energy);
+      return FALSE;
+    }
+  self->n = n;
+  self->energy_ev = g_new (double, n);
+  self->absorbance = g_new (double, n);
+  for (gsize i = 0; i < n; i++)
+    {
+      self->energy_ev[i] = points[i].energy;
+      self->absorbance[i] = points[i].absorbance;
+      low = fmin (low, points[i].absorbance);
+      high = fmax (high, points[i].absorbance);
+    }
+  if (!(high > low))
+    return refuse (error, BT_SPECTRUM_ERROR_VALUES, _ ("every reading has the same value; this is no measurement of a film."));
+  flag_counts (self, n_missing, n_dark, n_merged);
+  return TRUE;
+}
+
+static void
+find_faults (BtSpectrum *self)
+{
+  double lowest = INFINITY;
+
+  self->noise = bt_faults_noise (self->energy_ev, self->absorbance, self->n);
+  bt_faults_find_saturated (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated);
+  bt_faults_find_steps (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated, self->steps);
+  for (gsize i = 0; i < self->n; i++)
+    lowest = fmin (lowest, self->absorbance[i]);
+  if (lowest < -0.005 && self->y_unit != BT_Y_ALPHA_PER_CM)
+    bt_spectrum_add_flag (self, bt_flag_new ("negative-absorbance", _ ("The absorbance falls to %.3f: the baseline or the blank does not belong to "
+                                                                       "this film. Measure the baseline again, or use the right blank."),
+                                             lowest));
+  for (guint i = 0; i < self->steps->len; i++)
+    {
+      const BtStep *step = &g_array_index (self->steps, BtStep, i);
+
+      bt_spectrum_add_flag (self, bt_flag_new ("detector-step", _ ("The reading jumps by %+.4f at %.0f nm: a change of detector or grating. The fit "
+                                                                   "takes it into account; check that the film was flat and fully in the beam."),
+                                               -step->size, bt_nm_from_ev (step->energy_ev)));
+    }
+  for (guint i = 0; i < self->saturated->len; i++)
+    {
+      const BtRange *range = &g_array_index (self->saturated, BtRange, i);
+
+      bt_spectrum_add_flag (self, bt_flag_new ("saturated", _ ("From %.0f to %.0f nm the film is darker than the instrument can read; that range is left "
+                                                               "out. Measure a thinner film to have it."),
+                                               bt_nm_from_ev (range->high_ev), bt_nm_from_ev (range->low_ev)));
+    }
+}
+
+BtSpectrum *
+bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit x_unit, BtYUnit y_unit, const char *title, GError **error)
+{
+  g_autoptr (BtSpectrum) self = g_object_new (BT_TYPE_SPECTRUM, NULL);
+
+  self->n_raw = n;
+  self->raw_x = g_memdup2 (x, sizeof (double) * n);
+  self->raw_y = g_memdup2 (y, sizeof (double) * n);
+  self->x_unit = x_unit;
+  self->y_unit = y_unit;
+  self->title = g_strdup (title != NULL ? title : "");
+  if (!fill_axes (self, error))
+    return NULL;
+  find_faults (self);
+  return g_steal_pointer (&self);
+}
+
+void
+bt_spectrum_set_origin (BtSpectrum *self, const char *file, const char *sha256, const char *reading)
+{
+  g_free (self->file);
+  g_free (self->sha256);
+  g_free (self->reading);
+  self->file = g_strdup (file);
+  self->sha256 = g_strdup (sha256);
+  self->reading = g_strdup (reading);
+}
+
+/* Keys compare without case, and an underscore is a space. */
+static char *
+fold_key (const char *key)
+{
+  char *folded = g_ascii_strdown (key, -1);
+
+  g_strdelimit (folded, "_", ' ');
+  return g_strstrip (folded);
+}
+
+void
+bt_spectrum_add_note (BtSpectrum *self, const char *key, const char *value)
+{
+  char *folded = fold_key (key);
+
+  if (g_hash_table_contains (self->notes, folded))
+    g_free (folded);
+  else
+    g_hash_table_insert (self->notes, folded, g_strstrip (g_strdup (value)));
+}
+
+void
+bt_spectrum_add_flag (BtSpectrum *self, BtFlag *flag)
+{
+  g_ptr_array_add (self->flags, flag);
+}
+
+const char *
+bt_spectrum_get_note (BtSpectrum *self, const char *key)
+{
+  g_autofree char *folded = fold_key (key);
+
+  return g_hash_table_lookup (self->notes, folded);
+}
+
+gsize
+bt_spectrum_get_n_points (BtSpectrum *self)
+{
+  return self->n;
+}
+
+const double *
+bt_spectrum_get_energy_ev (BtSpectrum *self, gsize *n)
+{
+  if (n != NULL)
+    *n = self->n;
+  return self->energy_ev;
+}
+
+const double *
+bt_spectrum_get_absorbance (BtSpectrum *self, gsize *n)
+{
+  if (n != NULL)
+    *n = self->n;
+  return self->absorbance;
+}
+
+const double *
+bt_spectrum_get_noise (BtSpectrum *self, gsize *n)
+{
+  if (n != NULL)
+    *n = self->n;
+  return self->noise;
+}
+
+double
+bt_spectrum_absorbance_at (BtSpectrum *self, double energy_ev)
+{
+  gsize low = 0, high = self->n - 1;
+  double t;
+
+  if (!(energy_ev >= self->energy_ev[0] && energy_ev <= self->energy_ev[high]))
+    return NAN;
+  while (high - low > 1)
+    {
+      gsize middle = (low + high) / 2;
+
+      if (self->energy_ev[middle] <= energy_ev)
+        low = middle;
+      else
+        high = middle;
+    }
+  t = (energy_ev - self->energy_ev[low]) / (self->energy_ev[high] - self->energy_ev[low]);
+  return (1 - t) * self->absorbance[low] + t * self->absorbance[high];
+}
+
+const double *
+bt_spectrum_get_raw_x (BtSpectrum *self, gsize *n)
+{
+  if (n != NULL)
+    *n = self->n_raw;
+  return self->raw_x;
+}
+
+const double *
+bt_spectrum_get_raw_y (BtSpectrum *self, gsize *n)
+{
+  if (n != NULL)
+    *n = self->n_raw;
+  return self->raw_y;
+}
+
+BtXUnit
+bt_spectrum_get_x_unit (BtSpectrum *self)
+{
+  return self->x_unit;
+}
+
+BtYUnit
+bt_spectrum_get_y_unit (BtSpectrum *self)
+{
+  return self->y_unit;
+}
+
+const char *
+bt_spectrum_get_title (BtSpectrum *self)
+{
+  return self->title;
+}
+
+const char *
+bt_spectrum_get_file (BtSpectrum *self)
+{
+  return self->file;
+}
+
+const char *
+bt_spectrum_get_sha256 (BtSpectrum *self)
+{
+  return self->sha256;
+}
+
+const char *
+bt_spectrum_get_reading (BtSpectrum *self)
+{
+  return self->reading != NULL ? self->reading : "";
+}
+
+const GPtrArray *
+bt_spectrum_get_flags (BtSpectrum *self)
+{
+  return self->flags;
+}
+
+const BtStep *
+bt_spectrum_get_steps (BtSpectrum *self, gsize *n)
+{
+  *n = self->steps->len;
+  return (const BtStep *) (void *) self->steps->data;
+}
+
+const BtRange *
+bt_spectrum_get_saturated (BtSpectrum *self, gsize *n)
+{
+  *n = self->saturated->len;
+  return (const BtRange *) (void *) self->saturated->data;
+}
