@@ -141,11 +141,11 @@ show_progress (guint n_done, guint n_all)
     g_printerr (_ ("%u of %u files"), n_done, n_all);
 }
 
-/* Moves a finished file's outcome to the whole. */
+/* Moves a finished file's outcome to the whole. What an interrupt left undone is counted, not told file by file. */
 static void
 gather (Job *job, BatchResult *result)
 {
-  for (guint i = 0; i < job->result.failures->len; i++)
+  for (guint i = 0; i < job->result.failures->len && !interrupted; i++)
     complain (((const BtFailure *)g_ptr_array_index (job->result.failures, i))->reason);
   g_ptr_array_extend_and_steal (result->films, g_steal_pointer (&job->result.films));
   g_ptr_array_extend_and_steal (result->tallies, g_steal_pointer (&job->result.tallies));
@@ -212,6 +212,15 @@ batch_grade (char **files, const BatchSettings *settings, BatchResult *result)
     }
   collect (&batch, jobs, n_jobs, result);
   sigaction (SIGINT, &before, NULL);
+  if (interrupted)
+    {
+      char *sentence = g_strdup_printf (
+          ngettext ("Interrupted; %u file was not graded.", "Interrupted; %u files were not graded.", result->failures->len),
+          result->failures->len);
+
+      complain (sentence);
+      g_free (sentence);
+    }
   g_thread_pool_free (pool, FALSE, TRUE);
   g_free (jobs);
   g_async_queue_unref (batch.finished);

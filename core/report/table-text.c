@@ -6,8 +6,6 @@
 
 #include "columns-private.h"
 
-/* Above this many different sentences, flags are listed by kind. */
-#define MOST_FLAG_SENTENCES 40
 /* Films named with a flag before the rest are counted. */
 #define MOST_FILMS_NAMED 6
 
@@ -326,11 +324,12 @@ take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_r
       bt_columns_take (columns, NULL);
 }
 
-/* A flag and the films that bear it. */
+/* A kind of flag, the films that bear it, and whether it says the same of all of them. */
 typedef struct
 {
-  const BtFlag *flag;
+  const BtFlag *first;
   GArray *films;
+  gboolean same;
 } FlagLine;
 
 static void
@@ -340,9 +339,9 @@ flag_line_free (FlagLine *line)
   g_free (line);
 }
 
-/* (element-type FlagLine): flags of the same sentence, or of the same kind, together. */
+/* (element-type FlagLine) */
 static GPtrArray *
-gather_flags (GPtrArray *tallies, gboolean by_code)
+gather_flags (GPtrArray *tallies)
 {
   GPtrArray *lines = g_ptr_array_new_with_free_func ((GDestroyNotify)flag_line_free);
   GHashTable *index = g_hash_table_new (g_str_hash, g_str_equal);
@@ -354,17 +353,16 @@ gather_flags (GPtrArray *tallies, gboolean by_code)
       for (guint j = 0; j < tally->flags->len; j++)
         {
           const BtFlag *flag = g_ptr_array_index (tally->flags, j);
-          char *key = by_code ? flag->code : flag->text;
-          FlagLine *line = g_hash_table_lookup (index, key);
+          FlagLine *line = g_hash_table_lookup (index, flag->code);
 
           if (line == NULL)
             {
               line = g_new (FlagLine, 1);
-              line->flag = flag;
-              line->films = g_array_new (FALSE, FALSE, sizeof (guint));
-              g_hash_table_insert (index, key, line);
+              *line = (FlagLine){ flag, g_array_new (FALSE, FALSE, sizeof (guint)), TRUE };
+              g_hash_table_insert (index, flag->code, line);
               g_ptr_array_add (lines, line);
             }
+          line->same &= g_str_equal (line->first->text, flag->text);
           g_array_append_val (line->films, i);
         }
     }
@@ -391,21 +389,18 @@ name_films (const GArray *films, char **names, guint n_all)
 static void
 append_all_flags (GString *out, GPtrArray *tallies, char **names, int width)
 {
-  GPtrArray *lines = gather_flags (tallies, FALSE);
-  gboolean by_code = lines->len > MOST_FLAG_SENTENCES;
+  GPtrArray *lines = gather_flags (tallies);
 
-  if (by_code)
-    {
-      g_ptr_array_unref (lines);
-      lines = gather_flags (tallies, TRUE);
-    }
   if (lines->len > 0)
-    append_heading (out, by_code ? _ ("Flags, by kind, each with the sentence of its first film") : _ ("Flags"));
+    append_heading (out, _ ("Flags"));
   for (guint i = 0; i < lines->len; i++)
     {
       const FlagLine *line = g_ptr_array_index (lines, i);
       char *films = name_films (line->films, names, tallies->len);
-      char *text = g_strdup_printf ("%s: %s", films, line->flag->text);
+      /* Translators: the films that bear a flag, and the flag's sentence. */
+      char *text = line->same ? g_strdup_printf (_ ("%s: %s"), films, line->first->text)
+                              : g_strdup_printf (_ ("%s; for %s: %s"), films, names[g_array_index (line->films, guint, 0)],
+                                                 line->first->text);
 
       bt_text_append_wrapped (out, "  - ", text, width);
       g_free (text);
