@@ -85,10 +85,11 @@ bt_film_light_path (BtFilm *self)
   g_return_val_if_fail (BT_IS_FILM (self), NULL);
   spectrum = bt_film_get_spectrum (self);
   blank = bt_film_get_blank (self);
-  n = curve->n = bt_spectrum_get_n_points (spectrum);
+  n = bt_spectrum_get_n_points (spectrum);
   curve->energy_ev = g_memdup2 (bt_spectrum_get_energy_ev (spectrum, NULL), sizeof (double) * n);
   curve->absorbance = g_memdup2 (bt_spectrum_get_absorbance (spectrum, NULL), sizeof (double) * n);
   curve->absorbance_u = g_memdup2 (bt_spectrum_get_noise (spectrum, NULL), sizeof (double) * n);
+  curve->n = n;
   curve->flags = bt_flags_new ();
   if (bt_spectrum_get_y_unit (spectrum) == BT_Y_ALPHA_PER_CM)
     {
