@@ -207,7 +207,7 @@ int
 energies_command (int argc, char **argv)
 {
   Options options = { NULL };
-  BtReferenceSet set;
+  BtReferenceSet set = BT_REFERENCE_EMPIRICAL;
   double shift_mev = 0;
   GArray *tubes = NULL;
   GError *error = NULL;

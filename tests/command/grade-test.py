@@ -159,12 +159,12 @@ def test_diameter_window_is_taken_or_proposed():
 
 @test
 def test_blank_is_taken_off():
-    """A film measured through a substrate of A = 0.2 everywhere, with the substrate as its blank, is the film alone."""
+    """A film measured through a substrate of A = 0.2 and a little, with the substrate as its blank, is the film alone."""
     with Folder() as folder:
         film = folder.film("film.csv", "--noise", "0")
         points = read_film(film)
-        through = folder.write("through.csv", "wavelength_nm,absorbance\n" + "".join(f"{x},{y + 0.2!r}\n" for x, y in points))
-        blank = folder.write("blank.csv", "wavelength_nm,absorbance\n" + "".join(f"{x},0.2\n" for x, _ in points))
+        through = folder.write("through.csv", "wavelength_nm,absorbance\n" + "".join(f"{x},{y + 0.2 + 1e-5 * x!r}\n" for x, y in points))
+        blank = folder.write("blank.csv", "wavelength_nm,absorbance\n" + "".join(f"{x},{0.2 + 1e-5 * x!r}\n" for x, _ in points))
         graded = grade_json(through, "--blank", blank, "--thickness-nm", "100")["films"][0]
         alone = grade_json(film)["films"][0]
         for a, b in zip(graded["absorbance"], alone["absorbance"]):
