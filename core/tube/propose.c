@@ -1,7 +1,8 @@
 /* A diameter window proposed from a spectrum's own bands.
  *
- * Bands show as minima of the second derivative, which a smooth tail hardly touches. A diameter is good when S11, S22 and M11 of that
- * diameter all fall on such minima: one alone could be any of them. */
+ * Bands show in the second derivative, which a smooth tail hardly touches. A window is good when the second derivative of its
+ * tubes' S11, S22, M11 and S33, each group with an area of its own, explains the spectrum's: one band alone could be any of them,
+ * the pattern of all cannot. */
 #include <bandtally/band_plan.h>
 
 #include <math.h>
@@ -11,14 +12,19 @@
 /* Local quadratic over +-60 meV: about the half width of a film's narrowest group. */
 #define HALF_WINDOW 12
 #define FILM_SHIFT_EV 0.04
-/* Reading the reference energies of a film to better than this is luck. */
-#define TOLERANCE_EV 0.05
+/* A spectrum of which even the best window explains less than this shows no nanotube bands. */
+#define LEAST_EXPLAINED 0.15
+#define WITHOUT_S11 0.7
+
+/* Groups that are looked for, with the width of one tube's line in a film, eV (common practice). */
+enum { PART_S11, PART_S22, PART_M11, PART_S33, N_PARTS };
+static const struct { BtGroup group; double fwhm_ev; } parts[N_PARTS] = {
+  [PART_S11] = { BT_S11, 0.08 }, [PART_S22] = { BT_S22, 0.115 }, [PART_M11] = { BT_M11, 0.155 }, [PART_S33] = { BT_S33, 0.18 } };
 
 typedef struct {
   gsize n;
   double low_ev;
-  double *bend; /* minus the second derivative where that is above 0, over its largest value */
-  double *raw;  /* minus the second derivative */
+  double *bend; /* minus the second derivative */
 } Curvature;
 
 static double
@@ -62,7 +68,7 @@ resample (const double *energy_ev, const double *absorbance, gsize n, double low
 
 /* Second derivative by a least-squares quadratic over 2 HALF_WINDOW + 1 points (Savitzky and Golay, Anal. Chem. 36, 1627 (1964)). */
 static void
-bend_of (const double *y, gsize n, double *raw)
+bend_of (const double *y, gsize n, double *bend)
 {
   const double h = HALF_WINDOW, mean_square = h * (h + 1) / 3;
   double norm = 0;
@@ -71,18 +77,18 @@ bend_of (const double *y, gsize n, double *raw)
     norm += (k * k - mean_square) * (k * k - mean_square);
   for (gsize i = 0; i < n; i++)
     {
-      raw[i] = 0;
+      bend[i] = 0;
       if (i < HALF_WINDOW || i + HALF_WINDOW >= n)
         continue;
       for (int k = -HALF_WINDOW; k <= HALF_WINDOW; k++)
-        raw[i] -= 2 * (k * k - mean_square) / norm * y[(gsize) ((gssize) i + k)] / (STEP_EV * STEP_EV);
+        bend[i] -= 2 * (k * k - mean_square) / norm * y[(gsize) ((gssize) i + k)] / (STEP_EV * STEP_EV);
     }
 }
 
 static gboolean
 curvature_init (Curvature *curvature, const double *energy_ev, const double *absorbance, gsize n)
 {
-  double low = fmax (energy_ev[0], 0.4), high = fmin (energy_ev[n - 1], 3.0), largest = 0;
+  double low = fmax (energy_ev[0], 0.4), high = fmin (energy_ev[n - 1], 3.0);
   g_autofree double *y = NULL;
 
   curvature->n = high > low ? (gsize) ((high - low) / STEP_EV) + 1 : 0;
@@ -90,137 +96,211 @@ curvature_init (Curvature *curvature, const double *energy_ev, const double *abs
   if (curvature->n < 4 * HALF_WINDOW)
     return FALSE;
   y = resample (energy_ev, absorbance, n, low, curvature->n);
-  curvature->raw = g_new0 (double, curvature->n);
   curvature->bend = g_new0 (double, curvature->n);
-  bend_of (y, curvature->n, curvature->raw);
-  for (gsize i = 0; i < curvature->n; i++)
-    largest = fmax (largest, curvature->raw[i]);
-  for (gsize i = 0; i < curvature->n; i++)
-    curvature->bend[i] = largest > 0 ? fmax (0, curvature->raw[i] / largest) : 0;
-  return largest > 0;
+  bend_of (y, curvature->n, curvature->bend);
+  return TRUE;
 }
 
-/* The largest bend near an energy, less the further away it lies; -1 where the data do not reach. */
-static double
-bend_near (const Curvature *curvature, double energy_ev, double tolerance_ev)
-{
-  double first = energy_of (curvature, HALF_WINDOW), last = energy_of (curvature, curvature->n - 1 - HALF_WINDOW), best = 0;
+/* What each group of a population would look like, one array a group. */
+typedef struct { const Curvature *curvature; double *sum[N_PARTS], *bend[N_PARTS]; } Pattern;
 
-  if (energy_ev < first || energy_ev > last)
-    return -1;
+static void
+pattern_init (Pattern *pattern, const Curvature *curvature)
+{
+  pattern->curvature = curvature;
+  for (guint p = 0; p < N_PARTS; p++)
+    {
+      pattern->sum[p] = g_new (double, curvature->n);
+      pattern->bend[p] = g_new (double, curvature->n);
+    }
+}
+
+static void
+pattern_clear (Pattern *pattern)
+{
+  for (guint p = 0; p < N_PARTS; p++)
+    {
+      g_free (pattern->sum[p]);
+      g_free (pattern->bend[p]);
+    }
+}
+
+/* Adds a Gaussian line of unit area out to where it ends. */
+static void
+add_line (const Curvature *curvature, double *sum, double centre, double fwhm, double area)
+{
+  const double first = (centre - 1.6 * fwhm - curvature->low_ev) / STEP_EV, last = (centre + 1.6 * fwhm - curvature->low_ev) / STEP_EV;
+
+  for (gssize i = (gssize) fmax (first, 0); i <= (gssize) last && i < (gssize) curvature->n; i++)
+    {
+      double u = (energy_of (curvature, (gsize) i) - centre) / fwhm;
+
+      sum[i] += area / fwhm * exp (-2.772588722239781 * u * u);
+    }
+}
+
+/* Fills the pattern for a window; @metal_ev is how far M11 lies above its reference. */
+static void
+pattern_fill (Pattern *pattern, const GArray *tubes, double mean_nm, double spread_nm, double metal_ev)
+{
+  for (guint p = 0; p < N_PARTS; p++)
+    memset (pattern->sum[p], 0, sizeof (double) * pattern->curvature->n);
+  for (guint t = 0; t < tubes->len; t++)
+    {
+      BtTube tube = g_array_index (tubes, BtTube, t);
+      double z = (bt_tube_diameter_nm (tube) - mean_nm) / spread_nm, weight = exp (-z * z / 2);
+
+      if (fabs (z) > 3)
+        continue;
+      for (guint p = 0; p < N_PARTS; p++)
+        for (int branch = 0; branch < 2; branch++)
+          {
+            double e = bt_tube_energy_ev (tube, parts[p].group, branch, BT_REFERENCE_EMPIRICAL);
+
+            if (!isnan (e))
+              add_line (pattern->curvature, pattern->sum[p], e - FILM_SHIFT_EV + (parts[p].group == BT_M11 ? metal_ev : 0),
+                        parts[p].fwhm_ev, weight);
+          }
+    }
+  for (guint p = 0; p < N_PARTS; p++)
+    bend_of (pattern->sum[p], pattern->curvature->n, pattern->bend[p]);
+}
+
+/* Solves the normal equations of the parts in @used; FALSE where they are singular. */
+static gboolean
+solve_parts (double normal[N_PARTS][N_PARTS], const double *right, const gboolean *used, double *x)
+{
+  double m[N_PARTS][N_PARTS + 1];
+  guint index[N_PARTS], n = 0;
+
+  for (guint p = 0; p < N_PARTS; p++)
+    {
+      x[p] = 0;
+      if (used[p])
+        index[n++] = p;
+    }
+  for (guint r = 0; r < n; r++)
+    {
+      for (guint c = 0; c < n; c++)
+        m[r][c] = normal[index[r]][index[c]];
+      m[r][n] = right[index[r]];
+    }
+  for (guint k = 0; k < n; k++)
+    {
+      if (!(m[k][k] > 1e-9 * normal[index[k]][index[k]]))
+        return FALSE;
+      for (guint r = k + 1; r < n; r++)
+        for (guint c = n + 1; c-- > k;)
+          m[r][c] -= m[r][k] / m[k][k] * m[k][c];
+    }
+  for (guint k = n; k-- > 0;)
+    {
+      x[index[k]] = m[k][n];
+      for (guint c = k + 1; c < n; c++)
+        x[index[k]] -= m[k][c] * x[index[c]];
+      x[index[k]] /= m[k][k];
+    }
+  return TRUE;
+}
+
+/* Share of the spectrum's curvature that the groups explain with areas that are not negative; 0 without S22. */
+static double
+explained (const Pattern *pattern)
+{
+  const Curvature *curvature = pattern->curvature;
+  double normal[N_PARTS][N_PARTS] = { { 0 } }, right[N_PARTS] = { 0 }, x[N_PARTS], total = 0, share = 0;
+  gboolean used[N_PARTS];
+
   for (gsize i = HALF_WINDOW; i + HALF_WINDOW < curvature->n; i++)
     {
-      double z = (energy_of (curvature, i) - energy_ev) / tolerance_ev;
+      /* Bands widen about as their energy, and curvature falls as the square of the width: without a weight S11 alone would decide. */
+      const double e = energy_of (curvature, i), weight = e * e * e;
 
-      if (fabs (z) < 3)
-        best = fmax (best, curvature->bend[i] * exp (-z * z / 2));
-    }
-  return best;
-}
-
-static double
-score_of (const Curvature *curvature, double diameter_nm)
-{
-  /* M11's reference is the least certain of the three (only the scaling law gives it). */
-  static const struct { BtGroup group; double weight, tolerance, floor; } parts[] = {
-    { BT_S11, 1, TOLERANCE_EV, 0.02 }, { BT_S22, 1, TOLERANCE_EV, 0.01 }, { BT_M11, 0.5, 2 * TOLERANCE_EV, 0.01 } };
-  double score = 0;
-  guint seen = 0;
-
-  for (guint p = 0; p < G_N_ELEMENTS (parts); p++)
-    {
-      double e = bt_group_energy_ev (diameter_nm, parts[p].group, BT_REFERENCE_EMPIRICAL) - FILM_SHIFT_EV;
-      double bend = bend_near (curvature, e, parts[p].tolerance);
-
-      /* A group that the data do not reach says nothing; it costs what a poor match would, so that hiding bands never pays. */
-      if (bend < 0)
-        score += parts[p].weight * log (0.05);
-      else
+      total += weight * curvature->bend[i] * curvature->bend[i];
+      for (guint p = 0; p < N_PARTS; p++)
         {
-          score += parts[p].weight * log (parts[p].floor + bend);
-          seen++;
+          right[p] += weight * pattern->bend[p][i] * curvature->bend[i];
+          for (guint q = 0; q <= p; q++)
+            normal[p][q] += weight * pattern->bend[p][i] * pattern->bend[q][i];
         }
     }
-  return seen > 0 ? score : -INFINITY;
-}
-
-/* Standard deviation of the group whose crown is near an energy, from where its curvature changes sign; 0 where it does not. */
-static double
-sigma_near (const Curvature *curvature, double energy_ev)
-{
-  gsize top = 0, a, b;
-  double best = 0, smoothing;
-
-  for (gsize i = HALF_WINDOW; i + HALF_WINDOW < curvature->n; i++)
-    if (fabs (energy_of (curvature, i) - energy_ev) < 2 * TOLERANCE_EV && curvature->bend[i] > best)
-      {
-        best = curvature->bend[i];
-        top = i;
-      }
-  if (!(best > 0))
-    return 0;
-  for (a = top; a > HALF_WINDOW && curvature->raw[a] > 0; a--)
-    ;
-  for (b = top; b + HALF_WINDOW < curvature->n && curvature->raw[b] > 0; b++)
-    ;
-  /* The local quadratic smooths like a box of its own length. */
-  smoothing = (2 * HALF_WINDOW + 1) * STEP_EV / sqrt (28);
-  best = (energy_of (curvature, b) - energy_of (curvature, a)) / 2;
-  return sqrt (fmax (0, best * best - smoothing * smoothing));
-}
-
-static double
-propose_spread (const Curvature *curvature, double diameter_nm)
-{
-  /* Half widths of single lines in films, eV (common practice). */
-  static const struct { BtGroup group; double line_sigma; } parts[] = { { BT_S11, 0.034 }, { BT_S22, 0.049 } };
-  double sum = 0;
-  guint count = 0;
-
-  for (guint p = 0; p < G_N_ELEMENTS (parts); p++)
+  for (guint p = 0; p < N_PARTS; p++)
     {
-      double e = bt_group_energy_ev (diameter_nm, parts[p].group, BT_REFERENCE_EMPIRICAL);
-      double slope = (bt_group_energy_ev (diameter_nm + 0.01, parts[p].group, BT_REFERENCE_EMPIRICAL) - e) / 0.01;
-      double sigma = sigma_near (curvature, e - FILM_SHIFT_EV);
-
-      if (!(sigma > 0))
-        continue;
-      sum += sqrt (fmax (0, sigma * sigma - parts[p].line_sigma * parts[p].line_sigma)) / fabs (slope);
-      count++;
+      for (guint q = p + 1; q < N_PARTS; q++)
+        normal[p][q] = normal[q][p];
+      used[p] = normal[p][p] > 0;
     }
-  return CLAMP (count > 0 ? sum / count : 0.08 * diameter_nm, 0.05, 0.25);
+  for (guint round = 0; round < N_PARTS; round++)
+    {
+      guint worst = N_PARTS;
+
+      if (!solve_parts (normal, right, used, x))
+        return 0;
+      for (guint p = 0; p < N_PARTS; p++)
+        if (used[p] && x[p] < 0 && (worst == N_PARTS || x[p] * sqrt (normal[p][p]) < x[worst] * sqrt (normal[worst][worst])))
+          worst = p;
+      if (worst == N_PARTS)
+        break;
+      used[worst] = FALSE;
+    }
+  for (guint p = 0; p < N_PARTS; p++)
+    share += x[p] * right[p];
+  if (!(x[PART_S22] > 0 && total > 0))
+    return 0;
+  /* Doping weakens S11 but seldom takes all of it: a window that needs an S11 of nothing is the less likely one. */
+  return share / total * (!used[PART_S11] && normal[PART_S11][PART_S11] > 0 ? WITHOUT_S11 : 1);
+}
+
+/* The best of a grid of windows about (mean, spread). */
+static double
+search (Pattern *pattern, const GArray *tubes, double low_nm, double high_nm, double step_nm, const double *spreads, guint n_spreads,
+        BtDiameterWindow *window)
+{
+  /* The scaling law runs low for M11 of large tubes, by up to about 0.1 eV in published films. */
+  static const double metal_ev[] = { 0, 0.08 };
+  double best = -1;
+
+  for (double d = low_nm; d <= high_nm; d += step_nm)
+    for (guint s = 0; s < n_spreads; s++)
+      for (guint k = 0; k < G_N_ELEMENTS (metal_ev); k++)
+        {
+          double share;
+
+          pattern_fill (pattern, tubes, d, spreads[s], metal_ev[k]);
+          share = explained (pattern);
+          if (share > best)
+            {
+              best = share;
+              *window = (BtDiameterWindow){ d, spreads[s] };
+            }
+        }
+  return best;
 }
 
 gboolean
 bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window)
 {
+  static const double coarse[] = { 0.06, 0.10, 0.16 };
   Curvature curvature = { 0 };
-  double best = -INFINITY, empty;
+  gboolean found = FALSE;
 
   *window = (BtDiameterWindow){ 1.4, 0.1 };
-  if (n < 8 || !curvature_init (&curvature, energy_ev, absorbance, n))
+  if (n >= 8 && curvature_init (&curvature, energy_ev, absorbance, n))
     {
-      g_free (curvature.raw);
-      g_free (curvature.bend);
-      return FALSE;
-    }
-  for (double d = 0.7; d < 2.4; d += 0.005)
-    {
-      double score = score_of (&curvature, d);
+      g_autoptr (GArray) tubes = bt_tubes_in_diameter (0.5, 2.9);
+      BtDiameterWindow near;
+      Pattern pattern;
 
-      if (score > best)
+      pattern_init (&pattern, &curvature);
+      if (search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), &near) > LEAST_EXPLAINED)
         {
-          best = score;
-          window->mean_nm = d;
+          const double fine[] = { 0.7 * near.spread_nm, 0.85 * near.spread_nm, near.spread_nm, 1.15 * near.spread_nm, 1.3 * near.spread_nm };
+
+          search (&pattern, tubes, near.mean_nm - 0.03, near.mean_nm + 0.031, 0.01, fine, G_N_ELEMENTS (fine), window);
+          found = TRUE;
         }
+      pattern_clear (&pattern);
     }
-  /* What a spectrum without any band would score. */
-  empty = log (0.05) + log (0.05) + 0.5 * log (0.05);
-  if (best > empty)
-    window->spread_nm = propose_spread (&curvature, window->mean_nm);
-  else
-    *window = (BtDiameterWindow){ 1.4, 0.1 };
-  g_free (curvature.raw);
   g_free (curvature.bend);
-  return best > empty;
+  return found;
 }
