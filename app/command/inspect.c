@@ -83,7 +83,10 @@ print_noise (BtSpectrum *spectrum)
   const double *noise = bt_spectrum_get_noise (spectrum, &n);
   char *typical = bt_format_number (median (noise, n), 2, TRUE);
 
-  print_line (_ ("Noise"), _ ("%s (standard deviation of the absorbance, median)"), typical);
+  if (bt_spectrum_get_y_unit (spectrum) == BT_Y_ALPHA_PER_CM)
+    print_line (_ ("Noise"), _ ("%s 1/cm (standard deviation of alpha / ln 10, median)"), typical);
+  else
+    print_line (_ ("Noise"), _ ("%s (standard deviation of the absorbance, median)"), typical);
   g_free (typical);
 }
 

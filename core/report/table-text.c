@@ -100,8 +100,9 @@ append_heading (GString *out, const char *heading)
 }
 
 static void
-append_groups (GString *out, const BtTally *tally)
+append_groups (GString *out, BtFilm *film, const BtTally *tally)
 {
+  gboolean alpha = bt_spectrum_get_y_unit (bt_film_get_spectrum (film)) == BT_Y_ALPHA_PER_CM;
   BtColumns *columns = bt_columns_new (6);
 
   for (guint i = 2; i < 6; i++)
@@ -111,7 +112,7 @@ append_groups (GString *out, const BtTally *tally)
   bt_columns_take (columns, g_strdup (_ ("Centre eV")));
   bt_columns_take (columns, g_strdup (_ ("Centre nm")));
   bt_columns_take (columns, g_strdup (_ ("FWHM eV")));
-  bt_columns_take (columns, g_strdup (_ ("Area, absorbance eV")));
+  bt_columns_take (columns, g_strdup (alpha ? _ ("Area, eV/cm (decadic)") : _ ("Area, absorbance eV")));
   bt_columns_set_right (columns, 1, TRUE);
   for (int group = 0; group < BT_N_GROUPS; group++)
     {
@@ -261,7 +262,7 @@ append_account (GString *out, BtFilm *film, const BtTally *tally, int width)
   if (tally->decision_rule != NULL)
     bt_text_append_wrapped (out, "  ", tally->decision_rule, width);
   g_string_append_printf (out, "  %s: %s\n", _ ("Diameters, nm (mean ± spread)"), diameter);
-  append_groups (out, tally);
+  append_groups (out, film, tally);
   append_tails (out, tally);
   append_budget (out, tally);
   append_readings (out, tally);
