@@ -65,31 +65,63 @@ wavelength_text (double wavelength_nm)
   return g_strdup_printf ("%.6g", wavelength_nm);
 }
 
-/* What a film is called in a list: its file's last part, or the whole name where two films would be called the same. */
+/* (transfer full): the film's file, as a whole or its last part. */
+static char *
+file_name (BtFilm *film, gboolean whole)
+{
+  const char *file = bt_spectrum_get_file (bt_film_get_spectrum (film));
+
+  if (file == NULL)
+    return g_strdup (bt_film_get_label (film) != NULL ? bt_film_get_label (film) : "");
+  return whole ? g_filename_display_name (file) : g_filename_display_basename (file);
+}
+
+/* Where a file holds several films, each goes by its label too. */
+static void
+tell_apart (char **names, GPtrArray *films, GHashTable *counts)
+{
+  for (guint i = 0; i < films->len; i++)
+    {
+      const char *label = bt_film_get_label (g_ptr_array_index (films, i));
+      char *name = names[i];
+
+      if (GPOINTER_TO_UINT (g_hash_table_lookup (counts, name)) > 1 && label != NULL && label[0] != '\0'
+          && !g_str_equal (label, name))
+        {
+          names[i] = g_strdup_printf ("%s: %s", name, label);
+          g_free (name);
+        }
+    }
+}
+
+/* What films are called in a list: the last part of the file's name, or the whole where two files would be called the same. */
 static char **
 film_names (GPtrArray *films)
 {
-  GHashTable *seen = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, NULL);
+  GHashTable *files = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free);
+  GHashTable *counts = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, NULL);
   char **names = g_new0 (char *, films->len + 1);
-  gboolean unique = TRUE;
+  gboolean whole = FALSE;
 
-  for (guint i = 0; i < films->len && unique; i++)
+  for (guint i = 0; i < films->len; i++)
     {
-      const char *file = bt_spectrum_get_file (bt_film_get_spectrum (g_ptr_array_index (films, i)));
+      char *base = file_name (g_ptr_array_index (films, i), FALSE), *all = file_name (g_ptr_array_index (films, i), TRUE);
+      const char *before = g_hash_table_lookup (files, base);
 
-      unique = file != NULL && g_hash_table_add (seen, g_filename_display_basename (file));
+      whole |= before != NULL && !g_str_equal (before, all);
+      g_hash_table_replace (files, base, all);
     }
   for (guint i = 0; i < films->len; i++)
     {
-      BtFilm *film = g_ptr_array_index (films, i);
-      const char *file = bt_spectrum_get_file (bt_film_get_spectrum (film));
+      guint count;
 
-      if (file == NULL)
-        names[i] = g_strdup (bt_film_get_label (film) != NULL ? bt_film_get_label (film) : "");
-      else
-        names[i] = unique ? g_filename_display_basename (file) : g_filename_display_name (file);
+      names[i] = file_name (g_ptr_array_index (films, i), whole);
+      count = GPOINTER_TO_UINT (g_hash_table_lookup (counts, names[i]));
+      g_hash_table_replace (counts, g_strdup (names[i]), GUINT_TO_POINTER (count + 1));
     }
-  g_hash_table_unref (seen);
+  tell_apart (names, films, counts);
+  g_hash_table_unref (counts);
+  g_hash_table_unref (files);
   return names;
 }
 
@@ -282,8 +314,23 @@ most_readings (GPtrArray *tallies)
   return MIN (most, BT_COLUMNS_MAX - 6);
 }
 
+/* Whether some film has an absorption coefficient; else the absorbance is shown. */
+static gboolean
+any_alpha (GPtrArray *tallies)
+{
+  for (guint i = 0; i < tallies->len; i++)
+    {
+      const BtTally *tally = g_ptr_array_index (tallies, i);
+
+      for (guint j = 0; j < tally->readings->len; j++)
+        if (!isnan (g_array_index (tally->readings, BtReading, j).alpha_per_cm))
+          return TRUE;
+    }
+  return FALSE;
+}
+
 static void
-take_header (BtColumns *columns, const BtTally *first, guint n_readings)
+take_header (BtColumns *columns, const BtTally *first, guint n_readings, gboolean alpha)
 {
   bt_columns_take (columns, g_strdup (_ ("Film")));
   bt_columns_take (columns, g_strdup (_ ("Semiconducting")));
@@ -297,8 +344,8 @@ take_header (BtColumns *columns, const BtTally *first, guint n_readings)
                              ? wavelength_text (g_array_index (first->readings, BtReading, i).wavelength_nm)
                              : g_strdup ("");
 
-      /* Translators: absorption coefficient at a wavelength, as a column's head. */
-      bt_columns_take (columns, g_strdup_printf (_ ("1/cm at %s nm"), wavelength));
+      /* Translators: absorption coefficient, or absorbance, at a wavelength, as a column's head. */
+      bt_columns_take (columns, g_strdup_printf (alpha ? _ ("1/cm at %s nm") : _ ("A at %s nm"), wavelength));
       g_free (wavelength);
     }
   for (guint i = 1; i < columns->n_columns; i++)
@@ -306,7 +353,7 @@ take_header (BtColumns *columns, const BtTally *first, guint n_readings)
 }
 
 static void
-take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_readings)
+take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_readings, gboolean alpha)
 {
   bt_columns_take (columns, g_strdup (name));
   bt_columns_take (columns, fraction_text (&tally->fraction));
@@ -319,7 +366,8 @@ take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_r
       {
         const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
 
-        bt_columns_take (columns, bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm));
+        bt_columns_take (columns, alpha ? bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm)
+                                        : bt_format_uncertain (reading->absorbance, reading->absorbance_u));
       }
     else
       bt_columns_take (columns, NULL);
@@ -417,10 +465,11 @@ append_list (GString *out, GPtrArray *films, GPtrArray *tallies, int width)
   guint n_readings = most_readings (tallies);
   BtColumns *columns = bt_columns_new (6 + n_readings);
   guint shown = columns->n_columns;
+  gboolean alpha = any_alpha (tallies);
 
-  take_header (columns, g_ptr_array_index (tallies, 0), n_readings);
+  take_header (columns, g_ptr_array_index (tallies, 0), n_readings, alpha);
   for (guint i = 0; i < films->len; i++)
-    take_line (columns, names[i], g_ptr_array_index (tallies, i), n_readings);
+    take_line (columns, names[i], g_ptr_array_index (tallies, i), n_readings, alpha);
   /* The last columns are left out where the terminal is too narrow; the first five are always there. */
   while (width > 0 && shown > 5 && bt_columns_width (columns, shown) > width)
     shown--;
