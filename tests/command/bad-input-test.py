@@ -155,6 +155,42 @@ def test_faults_of_the_instrument_are_flagged():
         assert "saturated" in codes(grade(ceiling)[0]), grade(ceiling)[0]["flags"]
 
 
+def mutilate(content, generator):
+    """Cuts, repeats and overwrites parts of a file."""
+    content = bytearray(content[:generator.randrange(200, len(content))] if generator.random() < 0.7 else content)
+    for _ in range(generator.choice((1, 3, 30, 300))):
+        at = generator.randrange(len(content) + 1)
+        match generator.randrange(4):
+            case 0:
+                content[at:at + 1] = bytes([generator.randrange(256)])
+            case 1:
+                del content[at:at + generator.randrange(20)]
+            case 2:
+                content[at:at] = generator.choice((b"\n", b",", b";", b"e999", b"-", b"nan", b"\0", b"\t", b"#", b"1e-308", b'"', b"\xff"))
+            case 3:
+                start = generator.randrange(len(content) + 1)
+                content[at:at] = content[start:start + generator.randrange(50)]
+    return bytes(content)
+
+
+@test
+def test_mutilated_files_never_crash():
+    with Folder() as folder:
+        generator = random.Random(11)
+        text = (HEADER + rows(noisy())).encode()
+        paths = [folder.write(f"{i}.csv", mutilate(text, generator)) for i in range(300)]
+        result = run("inspect", *paths)
+        assert result.returncode in (0, 1), result.returncode
+        assert "CRITICAL" not in result.stderr and "WARNING" not in result.stderr, result.stderr
+        told = [path for path in paths if f"{path}\n" in result.stdout or path in result.stderr]
+        assert told == paths, set(paths) - set(told)
+        graded = run("grade", *paths[:60], "--json", "-")
+        assert graded.returncode in (0, 1) and "CRITICAL" not in graded.stderr, graded.stderr
+        outcome = json.loads(graded.stdout)
+        named = {film["file"] for film in outcome["films"]} | {failure["file"] for failure in outcome["failed"]}
+        assert named == set(paths[:60])
+
+
 @test
 def test_recipe_that_makes_no_sense_is_named():
     with Folder() as folder:
