@@ -22,7 +22,9 @@ bt_figure_text (BtFigure *figure, cairo_t *cr, const char *markup, double scale)
       layout = pango_layout_new (context);
       g_object_unref (context);
     }
-  pango_font_description_set_absolute_size (figure->font, figure->view.font_pt * scale * PANGO_SCALE);
+  /* At 72 dpi a point is a unit of the surface; sizes in points let Pango scale superscripts. */
+  pango_cairo_context_set_resolution (pango_layout_get_context (layout), 72);
+  pango_font_description_set_size (figure->font, (int) (figure->view.font_pt * scale * PANGO_SCALE));
   pango_layout_set_font_description (layout, figure->font);
   pango_layout_set_markup (layout, markup, -1);
   return layout;
@@ -243,18 +245,17 @@ draw_residual_axis (BtFigure *figure, cairo_t *cr)
   double w, h, step;
 
   text_size (figure, "0", &w, &h);
-  step = bt_ticks_step (-figure->residual_top, figure->residual_top, box->height, 1.25 * h, NULL);
-  if (!(step >= 1))
-    step = 1;
-  for (double k = -floor (figure->residual_top / step); k * step <= figure->residual_top; k++)
+  /* Three labels: zero and the roundest number on either side that fits. */
+  step = bt_ticks_step (0, figure->residual_top, 1, 0.4, NULL);
+  for (double k = -1; k <= 1; k++)
     {
       double y = bt_figure_residual_y (figure, k * step);
       g_autofree char *label = g_strdup_printf ("%s%.0f", k < 0 ? "−" : "", fabs (k * step));
 
-      if (y - h / 2 < box->y - 0.6 * h || y + h / 2 > box->y + box->height + 0.6 * h)
-        continue;
       tick_line (cr, box->x, y, -tick, 0);
-      draw_text (figure, cr, label, box->x - tick - 0.25 * font, y, 1, 0.5);
+      /* Zero gives way where the panel is too low for three. */
+      if (fabs (k) > 0.5 || bt_figure_residual_y (figure, -step) - y > 1.05 * h)
+        draw_text (figure, cr, label, box->x - tick - 0.25 * font, y, 1, 0.5);
     }
   cairo_stroke (cr);
   draw_side_title (figure, cr, box, _ ("Residual / u"));

@@ -256,7 +256,7 @@ draw_names (BtFigure *figure, cairo_t *cr)
       x = bt_figure_x_from_ev (figure, crown->centre_ev);
       if (x < box->x || x > box->x + box->width)
         continue;
-      markup = g_strdup_printf ("<b>%.1s<sub>%s</sub></b>", bt_group_name ((BtGroup) g), bt_group_name ((BtGroup) g) + 1);
+      markup = g_strdup_printf ("<b>%s</b>", bt_group_name ((BtGroup) g));
       layout = bt_figure_text (figure, cr, markup, 1);
       bt_layout_size (layout, &w, &h);
       y = fmax (bt_figure_y_from_absorbance (figure, top) - h - 0.3 * figure->view.font_pt, box->y + 1);

@@ -113,8 +113,11 @@ bt_faults_find_saturated (const double *energy_ev, const double *absorbance, con
     }
 }
 
-/* Points on each side that a step is judged by: 20 to 40 nm at usual intervals. */
+/* Points on each side that a step is judged by: 20 to 40 nm at usual intervals, but never so far in energy that a band's own bend could
+ * pass for a step, and never so few that noise could. */
 #define SIDE 20
+#define SIDE_EV 0.05
+#define LEAST_SIDE 8
 #define STEPS_MAX_POINTS 100000
 #define MAX_STEPS 3
 
@@ -151,13 +154,24 @@ extrapolate (const double *x, const double *y, gsize n, double e, double *factor
   return (c0 * t[0] + c1 * t[1] + c2 * t[2]) / det;
 }
 
+/* Points within reach on both sides of the gap behind point i. */
+static gsize
+side_at (const double *x, gsize i)
+{
+  gsize side = SIDE;
+
+  while (side >= LEAST_SIDE && (x[i] - x[i + 1 - side] > SIDE_EV || x[i + side] - x[i + 1] > SIDE_EV))
+    side--;
+  return side;
+}
+
 /* The jump between points i and i + 1, @skip points next to it left out on both sides. */
 static double
-jump_at (const double *x, const double *y, const double *noise, gsize i, gsize skip, double *u)
+jump_at (const double *x, const double *y, const double *noise, gsize i, gsize side, gsize skip, double *u)
 {
   double e = (x[i] + x[i + 1]) / 2, left_factor, right_factor;
-  double left = extrapolate (x + i + 1 - skip - SIDE, y + i + 1 - skip - SIDE, SIDE, e, &left_factor);
-  double right = extrapolate (x + i + 1 + skip, y + i + 1 + skip, SIDE, e, &right_factor);
+  double left = extrapolate (x + i + 1 - skip - side, y + i + 1 - skip - side, side, e, &left_factor);
+  double right = extrapolate (x + i + 1 + skip, y + i + 1 + skip, side, e, &right_factor);
 
   *u = hypot (left_factor * noise[i], right_factor * noise[i + 1]);
   return right - left;
@@ -206,12 +220,13 @@ bt_faults_find_steps (const double *energy_ev, const double *absorbance, const d
   for (gsize i = SIDE + 2; i + SIDE + 4 < n; i++)
     {
       double u, u_skip, jump, skipped, local;
+      gsize side = side_at (energy_ev, i);
 
       /* A step lies between two neighbours; the noise estimate there already tells most places from it. */
-      if (fabs (absorbance[i + 1] - absorbance[i]) < 3 * noise[i] || in_saturated (saturated, energy_ev[i]))
+      if (side < LEAST_SIDE || fabs (absorbance[i + 1] - absorbance[i]) < 3 * noise[i] || in_saturated (saturated, energy_ev[i]))
         continue;
-      jump = jump_at (energy_ev, absorbance, noise, i, 0, &u);
-      skipped = jump_at (energy_ev, absorbance, noise, i, 1, &u_skip);
+      jump = jump_at (energy_ev, absorbance, noise, i, side, 0, &u);
+      skipped = jump_at (energy_ev, absorbance, noise, i, side, 1, &u_skip);
       /* What the slopes on either side do not explain of the difference between the two neighbours. */
       local = absorbance[i + 1] - absorbance[i] - (absorbance[i] - absorbance[i - 3] + absorbance[i + 4] - absorbance[i + 1]) / 6;
       if (fabs (jump) > 6 * u && fabs (jump) > least && skipped * jump > 0 && fabs (skipped) > 0.5 * fabs (jump)
@@ -228,7 +243,7 @@ bt_faults_find_steps (const double *energy_ev, const double *absorbance, const d
           best = i;
       if (!(significance[best] > 0))
         break;
-      step.size = jump_at (energy_ev, absorbance, noise, best, 0, &step.size_u);
+      step.size = jump_at (energy_ev, absorbance, noise, best, side_at (energy_ev, best), 0, &step.size_u);
       step.energy_ev = (energy_ev[best] + energy_ev[best + 1]) / 2;
       g_array_append_val (steps, step);
       for (gsize i = best > SIDE ? best - SIDE : 0; i < MIN (n, best + SIDE); i++)
