@@ -60,16 +60,32 @@ draw_text (BtFigure *figure, cairo_t *cr, const char *markup, double x, double y
   pango_cairo_show_layout (cr, layout);
 }
 
+/* A power of ten in superscript digits: plain characters look the same in every font and renderer. */
+static char *
+superscript (int power)
+{
+  static const char *const digits[] = { "⁰", "¹", "²", "³", "⁴", "⁵", "⁶", "⁷", "⁸", "⁹" };
+  g_autofree char *plain = g_strdup_printf ("%d", power);
+  GString *text = g_string_new (NULL);
+
+  for (const char *p = plain; *p != '\0'; p++)
+    g_string_append (text, *p == '-' ? "⁻" : digits[*p - '0']);
+  return g_string_free (text, FALSE);
+}
+
 static char *
 value_title (const BtFigure *figure)
 {
+  g_autofree char *power = NULL;
+
   if (!figure->is_alpha)
     return bt_spectrum_get_y_unit (bt_film_get_spectrum (figure->film)) == BT_Y_ALPHA_PER_CM
-             ? g_strdup (_ ("Absorbance per cm / cm<sup>−1</sup>"))
+             ? g_strdup (_ ("Absorbance per length / cm⁻¹"))
              : g_strdup (_ ("Absorbance"));
   if (figure->power == 0)
-    return g_strdup (_ ("Absorption coefficient / cm<sup>−1</sup>"));
-  return g_strdup_printf (_ ("Absorption coefficient / 10<sup>%d</sup> cm<sup>−1</sup>"), figure->power);
+    return g_strdup (_ ("Absorption coefficient / cm⁻¹"));
+  power = superscript (figure->power);
+  return g_strdup_printf (_ ("Absorption coefficient / 10%s cm⁻¹"), power);
 }
 
 /* Step of the value axis, and the widest label that it makes. */
