@@ -1,4 +1,4 @@
-/* Language and number formats of the programs. */
+/* Language and number formats of the programs, and where their data are. */
 #include "locale.h"
 
 #include <gio/gio.h>
@@ -30,4 +30,10 @@ app_init_locale (void)
   bindtextdomain (GETTEXT_PACKAGE, runs_from_build () ? BT_BUILD_LOCALE_DIR : BT_LOCALE_DIR);
   bind_textdomain_codeset (GETTEXT_PACKAGE, "UTF-8");
   textdomain (GETTEXT_PACKAGE);
+}
+
+const char *
+app_data_dir (void)
+{
+  return runs_from_build () ? BT_SOURCE_DATA_DIR : BT_DATA_DIR;
 }

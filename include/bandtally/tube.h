@@ -52,6 +52,12 @@ const char *bt_reference_set_source (BtReferenceSet set);
 /* (transfer full) (element-type BtTube): all tubes with low <= diameter <= high, by diameter. Free with g_array_unref(). */
 GArray *bt_tubes_in_diameter (double low_nm, double high_nm);
 
+/* One transition of one tube; @energy_ev with the film's red shift taken off. */
+typedef struct { BtTube tube; BtGroup group; int branch; double energy_ev; } BtTubeLine;
+/* (transfer full) (element-type BtTubeLine): at most @most transitions of tubes with low <= diameter <= high, nearest to @energy_ev
+ * first; by the empirical set. Free with g_array_unref(). */
+GArray *bt_tube_lines_near (double energy_ev, double low_nm, double high_nm, double shift_ev, guint most);
+
 G_END_DECLS
 
 #endif

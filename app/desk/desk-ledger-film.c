@@ -1,0 +1,129 @@
+/* The ledger's sections on the film, its light path, and what it reads at the wavelengths of interest. */
+#include <glib/gi18n.h>
+#include <math.h>
+
+#include "desk-ledger.h"
+#include "desk-text.h"
+
+static void
+text_field (DeskSection *section, DeskFieldId id, const char *text)
+{
+  DeskLine *line = desk_section_field (section, (DeskField){ .id = id });
+  desk_line_set_value (line, "%s", text && *text ? text : _("add"));
+}
+
+void
+desk_ledger_fill_film (DeskSection *section, const DeskAccount *account)
+{
+  BtSpectrum *spectrum = bt_film_get_spectrum (account->film);
+  const char *file = bt_spectrum_get_file (spectrum);
+  const char *sha256 = bt_spectrum_get_sha256 (spectrum);
+  text_field (section, DESK_FIELD_LABEL, bt_film_get_label (account->film));
+  text_field (section, DESK_FIELD_LOT, bt_film_get_lot (account->film));
+  text_field (section, DESK_FIELD_NOTES, bt_film_get_notes (account->film));
+  if (file)
+    {
+      g_autofree char *base = g_path_get_basename (file);
+      DeskLine *line = desk_section_line (section, _("File"), "file");
+      desk_line_set_value (line, "%s", base);
+      desk_line_set_detail (line, bt_spectrum_get_reading (spectrum));
+      gtk_widget_set_tooltip_text (GTK_WIDGET (line), file);
+    }
+  if (sha256)
+    {
+      DeskLine *line = desk_section_line (section, _("SHA-256"), "sha256");
+      desk_line_set_value (line, "%.12s…", sha256);
+      gtk_widget_set_tooltip_text (GTK_WIDGET (line), sha256);
+    }
+}
+
+static void
+fill_blank (DeskSection *section, BtFilm *film)
+{
+  DeskLine *line = desk_section_line (section, _("Blank"), "blank");
+  BtSpectrum *blank = bt_film_get_blank (film);
+  const char *file = blank ? bt_spectrum_get_file (blank) : NULL;
+  g_autofree char *base = file ? g_path_get_basename (file) : NULL;
+  desk_line_set_action (line, "win.set-blank");
+  desk_line_set_value (line, "%s", base ? base : blank ? bt_spectrum_get_title (blank) : _("choose a file…"));
+  desk_line_set_side (line, blank ? "edit-clear-symbolic" : NULL, _("Measure without the blank"), "win.remove-blank");
+}
+
+void
+desk_ledger_fill_path (DeskSection *section, const DeskAccount *account)
+{
+  double thickness = bt_film_get_thickness_nm (account->film);
+  DeskLine *line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_THICKNESS });
+  if (thickness > 0)
+    desk_line_set_value (line, "%g\u00a0nm", thickness);
+  else
+    desk_line_set_value (line, "%s", _("add"));
+  desk_line_set_detail (line, thickness > 0 ? NULL : _("Without it there is no absorption coefficient."));
+
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_THICKNESS_U });
+  if (bt_film_get_thickness_u_nm (account->film) > 0)
+    desk_line_set_value (line, "%g\u00a0nm", bt_film_get_thickness_u_nm (account->film));
+  else
+    desk_line_set_value (line, "%s", _("add"));
+  text_field (section, DESK_FIELD_SUBSTRATE, bt_film_get_substrate (account->film));
+  fill_blank (section, account->film);
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_MAX_ABSORBANCE });
+  desk_line_set_value (line, "%g", account->recipe->max_absorbance);
+  if (account->tally && account->tally->curve && account->tally->curve->path)
+    desk_section_sentence (section, NULL, account->tally->curve->path);
+}
+
+static void
+fill_reading (DeskSection *section, guint i, const BtReading *reading)
+{
+  g_autofree char *name = g_strdup_printf (_("%g nm"), reading->wavelength_nm);
+  g_autofree char *alpha = desk_text_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm, "cm⁻¹");
+  g_autofree char *absorbance = desk_text_uncertain (reading->absorbance, reading->absorbance_u, NULL);
+  g_autofree char *absorptance = desk_text_percent (reading->absorptance, 1);
+  DeskLine *line = desk_section_line (section, name, "reading %u", i);
+  if (isnan (reading->absorbance))
+    {
+      desk_line_set_value (line, "%s", _("out of range"));
+      desk_line_set_detail (line, NULL);
+      return;
+    }
+  g_autofree char *detail = isnan (reading->alpha_per_cm)
+                                ? g_strdup_printf (_("absorptance %s"), absorptance)
+                                : g_strdup_printf (_("absorbance %s, absorptance %s"), absorbance, absorptance);
+  desk_line_set_value (line, "%s", isnan (reading->alpha_per_cm) ? absorbance : alpha);
+  desk_line_set_detail (line, detail);
+}
+
+void
+desk_ledger_fill_readings (DeskSection *section, const DeskAccount *account)
+{
+  const BtRecipe *recipe = account->recipe;
+  const BtTally *tally = account->tally;
+  gboolean has_alpha = bt_film_get_thickness_nm (account->film) > 0;
+  desk_section_subheading (section, has_alpha ? _("Absorption coefficient, base e") : _("Absorbance"));
+  for (guint i = 0; tally && i < tally->readings->len; i++)
+    fill_reading (section, i, &g_array_index (tally->readings, BtReading, i));
+
+  GString *list = g_string_new (NULL);
+  for (guint i = 0; i < recipe->wavelengths_nm->len; i++)
+    g_string_append_printf (list, "%s%g", i ? "; " : "", g_array_index (recipe->wavelengths_nm, double, i));
+  DeskLine *line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_WAVELENGTHS });
+  desk_line_set_value (line, list->len ? "%s\u00a0nm" : "%s", list->len ? list->str : _("add"));
+  g_string_free (list, TRUE);
+
+  if (tally)
+    {
+      g_autofree char *mean = desk_text_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm, "cm⁻¹");
+      line = desk_section_line (section, _("Mean absorption coefficient"), "mean");
+      desk_line_set_value (line, "%s", has_alpha ? mean : _("needs the thickness"));
+      g_autofree char *covered = NULL;
+      if (!isnan (tally->mean_alpha_per_cm))
+        covered = g_strdup_printf (_("over %.0f to %.0f nm, as far as the data go"), bt_nm_from_ev (tally->mean_range.high_ev),
+                                   bt_nm_from_ev (tally->mean_range.low_ev));
+      desk_line_set_detail (line, covered);
+    }
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_MEAN_LOW });
+  desk_line_set_value (line, "%g\u00a0nm", recipe->mean_low_nm);
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_MEAN_HIGH });
+  desk_line_set_value (line, "%g\u00a0nm", recipe->mean_high_nm);
+}
