@@ -205,7 +205,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, GError **error)
 
       prepared->window_proposed = TRUE;
       prepared->window_found = bt_diameter_window_propose (prepared->curve->energy_ev, prepared->curve->absorbance,
-                                                           prepared->curve->n, &proposal);
+                                                           prepared->curve->n, &proposal, &prepared->alternative);
       window.mean_nm = proposal.mean_nm;
       if (!(window.spread_nm > 0))
         window.spread_nm = proposal.spread_nm;

@@ -27,6 +27,7 @@ typedef struct {
   BtRange range;
   BtBandPlan plan;
   gboolean window_proposed, window_found;
+  BtDiameterWindow alternative; /* mean 0: none */
   guint n_in_group[BT_N_GROUPS];
   guint n_over_limit, n_saturated;
 } BtPrepared;

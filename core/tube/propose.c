@@ -13,8 +13,11 @@
 #define HALF_WINDOW 12
 #define FILM_SHIFT_EV 0.04
 /* A spectrum of which even the best window explains less than this shows no nanotube bands. */
-#define LEAST_EXPLAINED 0.15
+#define LEAST_EXPLAINED 0.12
 #define WITHOUT_S11 0.7
+/* Another window is worth telling when it lies this far off and explains this much of what the best explains. */
+#define APART_NM 0.2
+#define NEARLY_AS_GOOD 0.85
 
 /* Groups that are looked for, with the width of one tube's line in a film, eV (common practice). */
 enum { PART_S11, PART_S22, PART_M11, PART_S33, N_PARTS };
@@ -251,10 +254,19 @@ explained (const Pattern *pattern)
   return share / total * (!used[PART_S11] && normal[PART_S11][PART_S11] > 0 ? WITHOUT_S11 : 1);
 }
 
-/* The best of a grid of windows about (mean, spread). */
+/* Films are made of tubes from about 0.7 to 2 nm (common practice): where a short range leaves the pattern ambiguous, the usual one is likelier. */
+static double
+usual (double mean_nm)
+{
+  double z = (mean_nm - 1.25) / 1.0;
+
+  return exp (-z * z / 2);
+}
+
+/* The best of a grid of windows; with @apart (nullable) only those that are clearly others than it. */
 static double
 search (Pattern *pattern, const GArray *tubes, double low_nm, double high_nm, double step_nm, const double *spreads, guint n_spreads,
-        BtDiameterWindow *window)
+        const BtDiameterWindow *apart, BtDiameterWindow *window)
 {
   /* The scaling law runs low for M11 of large tubes, by up to about 0.1 eV in published films. */
   static const double metal_ev[] = { 0, 0.08 };
@@ -266,8 +278,11 @@ search (Pattern *pattern, const GArray *tubes, double low_nm, double high_nm, do
         {
           double share;
 
+          if (apart != NULL && fabs (d - apart->mean_nm) < APART_NM)
+            continue;
+
           pattern_fill (pattern, tubes, d, spreads[s], metal_ev[k]);
-          share = explained (pattern);
+          share = explained (pattern) * usual (d);
           if (share > best)
             {
               best = share;
@@ -278,26 +293,34 @@ search (Pattern *pattern, const GArray *tubes, double low_nm, double high_nm, do
 }
 
 gboolean
-bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window)
+bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window,
+                            BtDiameterWindow *alternative)
 {
   static const double coarse[] = { 0.06, 0.10, 0.16 };
   Curvature curvature = { 0 };
   gboolean found = FALSE;
 
   *window = (BtDiameterWindow){ 1.4, 0.1 };
+  if (alternative != NULL)
+    *alternative = (BtDiameterWindow){ 0, 0 };
   if (n >= 8 && curvature_init (&curvature, energy_ev, absorbance, n))
     {
       g_autoptr (GArray) tubes = bt_tubes_in_diameter (0.5, 2.9);
-      BtDiameterWindow near;
+      BtDiameterWindow near, other;
       Pattern pattern;
+      double best;
 
       pattern_init (&pattern, &curvature);
-      if (search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), &near) > LEAST_EXPLAINED)
+      best = search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), NULL, &near);
+      if (best > LEAST_EXPLAINED)
         {
           const double fine[] = { 0.7 * near.spread_nm, 0.85 * near.spread_nm, near.spread_nm, 1.15 * near.spread_nm, 1.3 * near.spread_nm };
 
-          search (&pattern, tubes, near.mean_nm - 0.03, near.mean_nm + 0.031, 0.01, fine, G_N_ELEMENTS (fine), window);
+          search (&pattern, tubes, near.mean_nm - 0.03, near.mean_nm + 0.031, 0.01, fine, G_N_ELEMENTS (fine), NULL, window);
           found = TRUE;
+          if (alternative != NULL
+              && search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), window, &other) > NEARLY_AS_GOOD * best)
+            *alternative = other;
         }
       pattern_clear (&pattern);
     }

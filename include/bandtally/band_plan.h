@@ -53,12 +53,14 @@ double bt_band_plan_overlap (const BtBandPlan *plan);
  * @energy_ev: (array length=n): ascending
  * @absorbance: (array length=n)
  * @window: (out): the proposal
+ * @alternative: (out) (optional): another window that explains the spectrum nearly as well; mean 0 where there is none
  *
  * Proposes the diameter window that best explains the spectrum's own second-derivative minima.
  *
  * Returns: %FALSE where the data show no band to go by; @window is then 1.4 nm, 0.1 nm
  */
-gboolean bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window);
+gboolean bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window,
+                                     BtDiameterWindow *alternative);
 
 G_END_DECLS
 
