@@ -37,8 +37,8 @@ static void
 result_init (BatchResult *result)
 {
   result->films = g_ptr_array_new_with_free_func (g_object_unref);
-  result->tallies = g_ptr_array_new_with_free_func ((GDestroyNotify)bt_tally_unref);
-  result->failures = g_ptr_array_new_with_free_func ((GDestroyNotify)bt_failure_free);
+  result->tallies = g_ptr_array_new_with_free_func ((GDestroyNotify) bt_tally_unref);
+  result->failures = g_ptr_array_new_with_free_func ((GDestroyNotify) bt_failure_free);
 }
 
 void
@@ -146,7 +146,7 @@ static void
 gather (Job *job, BatchResult *result)
 {
   for (guint i = 0; i < job->result.failures->len && !interrupted; i++)
-    complain (((const BtFailure *)g_ptr_array_index (job->result.failures, i))->reason);
+    complain (((const BtFailure *) g_ptr_array_index (job->result.failures, i))->reason);
   g_ptr_array_extend_and_steal (result->films, g_steal_pointer (&job->result.films));
   g_ptr_array_extend_and_steal (result->tallies, g_steal_pointer (&job->result.tallies));
   g_ptr_array_extend_and_steal (result->failures, g_steal_pointer (&job->result.failures));

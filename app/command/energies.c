@@ -82,7 +82,7 @@ parse_tube (const char *text, BtTube *tube, GError **error)
     return FALSE;
   if (n != floor (n) || m != floor (m) || n < 1 || m > n)
     return bad_value ("--tube", wanted, text, error);
-  *tube = (BtTube){ (int)n, (int)m };
+  *tube = (BtTube){ (int) n, (int) m };
   return TRUE;
 }
 

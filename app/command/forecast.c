@@ -17,7 +17,7 @@ static void
 options_clear (Options *options)
 {
   /* Strings only. */
-  char **strings = (char **)options;
+  char **strings = (char **) options;
 
   for (gsize i = 0; i < sizeof *options / sizeof *strings; i++)
     g_free (strings[i]);

@@ -47,7 +47,7 @@ print_line (const char *name, const char *format, ...)
   va_list arguments;
   char *text;
   /* printf's widths count bytes; names are UTF-8. */
-  int space = MAX (0, 12 - (int)g_utf8_strlen (name, -1));
+  int space = MAX (0, 12 - (int) g_utf8_strlen (name, -1));
 
   va_start (arguments, format);
   text = g_strdup_vprintf (format, arguments);
@@ -145,7 +145,7 @@ print_spectrum (BtSpectrum *spectrum, const char *file)
   if (bt_spectrum_get_sha256 (spectrum) != NULL)
     print_line ("SHA-256", "%s", bt_spectrum_get_sha256 (spectrum));
   for (guint i = 0; flags != NULL && i < flags->len; i++)
-    print_line (_ ("Flag"), "%s", ((const BtFlag *)g_ptr_array_index (flags, i))->text);
+    print_line (_ ("Flag"), "%s", ((const BtFlag *) g_ptr_array_index (flags, i))->text);
   g_free (name);
 }
 
@@ -169,7 +169,7 @@ write_points (BtSpectrum *spectrum, const char *path, GError **error)
       g_free (a);
       g_free (b);
     }
-  written = output_write (path, text->str, (gssize)text->len, error);
+  written = output_write (path, text->str, (gssize) text->len, error);
   g_string_free (text, TRUE);
   return written;
 }
@@ -253,7 +253,7 @@ inspect_command (int argc, char **argv)
         bad_value (number.option, _ (number.wanted), options.spectrum, &error);
       if (error == NULL)
         parse_units (options.x_unit, options.y_unit, &reading, &error);
-      status = error != NULL ? command_usage_error ("inspect", error) : inspect (&options, &reading, (guint)only);
+      status = error != NULL ? command_usage_error ("inspect", error) : inspect (&options, &reading, (guint) only);
     }
   options_clear (&options);
   return status;

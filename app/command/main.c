@@ -86,6 +86,6 @@ main (int argc, char **argv)
       g_free (sentence);
       return STATUS_USAGE;
     }
-  memmove (argv + 1, argv + 2, (size_t)(argc - 1) * sizeof *argv);
+  memmove (argv + 1, argv + 2, (size_t) (argc - 1) * sizeof *argv);
   return command->run (argc - 1, argv);
 }

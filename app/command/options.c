@@ -159,12 +159,12 @@ parse_units (const char *x_unit, const char *y_unit, BtReadOptions *options, GEr
 
   for (gsize i = 0; x_unit != NULL && i < G_N_ELEMENTS (x_units); i++)
     if (same_name (x_unit, bt_x_unit_name (x_units[i])))
-      options->x_unit = (int)x_units[i];
+      options->x_unit = (int) x_units[i];
   if (x_unit != NULL && options->x_unit < 0)
     return bad_value ("--x-unit", _ ("nm, um, 1/cm or eV"), x_unit, error);
   for (gsize i = 0; y_unit != NULL && i < G_N_ELEMENTS (y_units); i++)
     if (same_name (y_unit, bt_y_unit_name (y_units[i])))
-      options->y_unit = (int)y_units[i];
+      options->y_unit = (int) y_units[i];
   if (y_unit != NULL && options->y_unit < 0)
     return bad_value ("--y-unit", _ ("absorbance, transmittance, transmittance%, reflectance, reflectance% or “alpha 1/cm”"),
                       y_unit, error);

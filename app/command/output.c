@@ -88,7 +88,7 @@ write_stream (FILE *stream, const char *text, gsize length, const char *path, GE
 gboolean
 output_write (const char *path, const char *text, gssize length, GError **error)
 {
-  gsize size = length < 0 ? strlen (text) : (gsize)length;
+  gsize size = length < 0 ? strlen (text) : (gsize) length;
   char *real;
   gboolean written;
   GError *reason = NULL;
@@ -108,7 +108,7 @@ output_write (const char *path, const char *text, gssize length, GError **error)
       return written;
     }
   real = resolved (path);
-  written = g_file_set_contents (real, text, (gssize)size, &reason);
+  written = g_file_set_contents (real, text, (gssize) size, &reason);
   if (!written)
     cannot_write (path, reason->message, error);
   g_clear_error (&reason);
@@ -131,7 +131,7 @@ output_write_report (const char *path, BtReport *report, GError **error)
     return FALSE;
   close (file);
   written = bt_report_write_pdf (report, name, error) && g_file_get_contents (name, &contents, &length, error)
-            && output_write (path, contents, (gssize)length, error);
+            && output_write (path, contents, (gssize) length, error);
   g_unlink (name);
   g_free (contents);
   g_free (name);

@@ -19,7 +19,7 @@ decimal_exponent (double value, int digits)
     return 0;
   g_snprintf (format, sizeof format, "%%.%de", CLAMP (digits, 1, 17) - 1);
   g_ascii_formatd (text, sizeof text, format, value);
-  return (int)g_ascii_strtoll (strchr (text, 'e') + 1, NULL, 10);
+  return (int) g_ascii_strtoll (strchr (text, 'e') + 1, NULL, 10);
 }
 
 /* @value with @decimals places after a point. */
@@ -105,7 +105,7 @@ bt_format_uncertain (double value, double u)
       double unit = last > 0 ? pow (10, last) : 1;
 
       mantissa = last > 0 ? fixed (round (value / unit) * unit, 0) : fixed (value, -last);
-      text = g_strdup_printf ("%s(%.0f)", mantissa, (double)u_digits * unit);
+      text = g_strdup_printf ("%s(%.0f)", mantissa, (double) u_digits * unit);
     }
   else
     {

@@ -121,7 +121,7 @@ put_header (GString *out, const GArray *wavelengths_nm)
     put_text (out, first[i]);
   for (int group = 0; group < BT_N_GROUPS; group++)
     {
-      const char *name = bt_group_name ((BtGroup)group);
+      const char *name = bt_group_name ((BtGroup) group);
 
       put_name (out, "%s_area", name);
       put_name (out, "%s_area_u", name);
@@ -157,7 +157,7 @@ put_reading (GString *out, BtFilm *film)
   put_text (out, bt_spectrum_get_sha256 (spectrum));
   put_text (out, bt_film_get_label (film));
   put_text (out, bt_film_get_lot (film));
-  put_number (out, (double)n);
+  put_number (out, (double) n);
   put_number (out, bt_nm_from_ev (energy_ev[n - 1]));
   put_number (out, bt_nm_from_ev (energy_ev[0]));
   put_number (out, bt_film_get_thickness_nm (film) > 0 ? bt_film_get_thickness_nm (film) : NAN);
@@ -214,7 +214,7 @@ put_record (GString *out, BtFilm *film, const BtTally *tally, const GArray *wave
       put_number (out, reading != NULL ? reading->absorptance : NAN);
     }
   for (guint i = 0; i < tally->flags->len; i++)
-    g_string_append_printf (codes, "%s%s", i > 0 ? " " : "", ((const BtFlag *)g_ptr_array_index (tally->flags, i))->code);
+    g_string_append_printf (codes, "%s%s", i > 0 ? " " : "", ((const BtFlag *) g_ptr_array_index (tally->flags, i))->code);
   put_text (out, codes->str);
   g_string_append (out, "\r\n");
   g_string_free (codes, TRUE);

@@ -97,7 +97,7 @@ put_reading (JsonBuilder *builder, BtFilm *film)
   put_string (builder, "film", bt_film_get_label (film));
   put_string (builder, "lot", bt_film_get_lot (film));
   put_string (builder, "reading", bt_spectrum_get_reading (spectrum));
-  put_integer (builder, "points", (gint64)n);
+  put_integer (builder, "points", (gint64) n);
   put_pair (builder, "range_nm", bt_nm_from_ev (energy_ev[n - 1]), bt_nm_from_ev (energy_ev[0]));
   put_number (builder, "thickness_nm", bt_film_get_thickness_nm (film) > 0 ? bt_film_get_thickness_nm (film) : NAN);
   put_number (builder, "thickness_u_nm", bt_film_get_thickness_nm (film) > 0 ? bt_film_get_thickness_u_nm (film) : NAN);
@@ -143,7 +143,7 @@ put_bands (JsonBuilder *builder, const BtTally *tally)
   json_builder_end_array (builder);
 }
 
-/* Every group is there, with nulls where it was not fitted, so that a reader need not ask first. */
+/* S11, S22 and M11 are always there, with nulls where they were not fitted (a flag says why); others where the range reaches them. */
 static void
 put_groups (JsonBuilder *builder, const BtTally *tally)
 {
@@ -153,7 +153,9 @@ put_groups (JsonBuilder *builder, const BtTally *tally)
       const BtGroupTally *sum = &tally->groups[group];
       gboolean fitted = sum->n_bands > 0;
 
-      begin_object (builder, bt_group_name ((BtGroup)group));
+      if (!fitted && group != BT_S11 && group != BT_S22 && group != BT_M11)
+        continue;
+      begin_object (builder, bt_group_name ((BtGroup) group));
       put_integer (builder, "bands", sum->n_bands);
       put_number (builder, "area", fitted ? sum->area : NAN);
       put_number (builder, "area_u", fitted ? sum->area_u : NAN);

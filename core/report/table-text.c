@@ -152,7 +152,7 @@ append_groups (GString *out, BtFilm *film, const BtTally *tally)
 
       if (sum->n_bands == 0)
         continue;
-      bt_columns_take (columns, g_strdup (bt_group_name ((BtGroup)group)));
+      bt_columns_take (columns, g_strdup (bt_group_name ((BtGroup) group)));
       bt_columns_take (columns, g_strdup_printf ("%u", sum->n_bands));
       bt_columns_take (columns, bt_format_uncertain (sum->centre_ev, sum->centre_u_ev));
       bt_columns_take (columns, bt_format_number (bt_nm_from_ev (sum->centre_ev), 4, TRUE));
@@ -271,7 +271,7 @@ append_flags (GString *out, const BtTally *tally, int width)
     return;
   append_heading (out, _ ("Flags"));
   for (guint i = 0; i < tally->flags->len; i++)
-    bt_text_append_wrapped (out, "  - ", ((const BtFlag *)g_ptr_array_index (tally->flags, i))->text, width);
+    bt_text_append_wrapped (out, "  - ", ((const BtFlag *) g_ptr_array_index (tally->flags, i))->text, width);
 }
 
 /* One film: its whole account. */
@@ -310,7 +310,7 @@ most_readings (GPtrArray *tallies)
   guint most = 0;
 
   for (guint i = 0; i < tallies->len; i++)
-    most = MAX (most, ((const BtTally *)g_ptr_array_index (tallies, i))->readings->len);
+    most = MAX (most, ((const BtTally *) g_ptr_array_index (tallies, i))->readings->len);
   return MIN (most, BT_COLUMNS_MAX - 6);
 }
 
@@ -392,7 +392,7 @@ flag_line_free (FlagLine *line)
 static GPtrArray *
 gather_flags (GPtrArray *tallies)
 {
-  GPtrArray *lines = g_ptr_array_new_with_free_func ((GDestroyNotify)flag_line_free);
+  GPtrArray *lines = g_ptr_array_new_with_free_func ((GDestroyNotify) flag_line_free);
   GHashTable *index = g_hash_table_new (g_str_hash, g_str_equal);
 
   for (guint i = 0; i < tallies->len; i++)

@@ -61,8 +61,8 @@ test_uncertain_reads_back (void)
       char *text = bt_format_uncertain (value, u);
       char *bracket = strchr (text, '('), *point = strchr (text, '.');
       double exponent = strchr (text, 'e') != NULL ? g_ascii_strtod (strchr (text, 'e') + 1, NULL) : 0;
-      double places = point != NULL && point < bracket ? (double)(bracket - point - 1) : 0;
-      double last = (double)strcspn (bracket + 1, ")") - 2; /* zeros before the point are not among the two digits */
+      double places = point != NULL && point < bracket ? (double) (bracket - point - 1) : 0;
+      double last = (double) strcspn (bracket + 1, ")") - 2; /* zeros before the point are not among the two digits */
       double unit = pow (10, exponent - places);
 
       g_assert_nonnull (bracket);
