@@ -69,8 +69,9 @@ bt_text_fields (const char *line, char delimiter, BtField *fields, gsize max)
   return count;
 }
 
+/* Number of fields, or 0 where the line is no row. @clean: whether every field is a number or a missing one. */
 static gsize
-row_fields (const char *line, BtDialect dialect)
+row_fields (const char *line, BtDialect dialect, gboolean *clean)
 {
   BtField fields[BT_MAX_COLUMNS];
   gsize n = bt_text_fields (line, dialect.delimiter, fields, BT_MAX_COLUMNS), numbers = 0, missing = 0;
@@ -83,16 +84,20 @@ row_fields (const char *line, BtDialect dialect)
       numbers++;
     else if (bt_text_is_missing (fields[i].text, fields[i].n))
       missing++;
+  *clean = numbers + missing == n - 1;
   return numbers + missing > 0 ? n : 0;
 }
 
 gboolean
 bt_text_is_row (const char *line, BtDialect dialect)
 {
-  return row_fields (line, dialect) > 0;
+  gboolean clean;
+
+  return row_fields (line, dialect, &clean) > 0;
 }
 
-/* How many of the lines are rows with the commonest number of fields. */
+/* How many of the lines are rows with the commonest number of fields. Clean rows count twice: "1000,5 0,1" passes for three fields
+ * between commas too, but then the middle one is no number. */
 static gsize
 score_of (char *const *lines, gsize n, BtDialect dialect)
 {
@@ -100,10 +105,11 @@ score_of (char *const *lines, gsize n, BtDialect dialect)
 
   for (gsize i = 0; i < n; i++)
     {
-      gsize fields = row_fields (lines[i], dialect);
+      gboolean clean;
+      gsize fields = row_fields (lines[i], dialect, &clean);
 
       if (fields > 0)
-        counts[fields]++;
+        counts[fields] += clean ? 2 : 1;
     }
   for (gsize f = 2; f <= BT_MAX_COLUMNS; f++)
     best = MAX (best, counts[f]);

@@ -5,8 +5,10 @@ import io
 import json
 import math
 import os
+import signal
 import stat
 import subprocess
+import time
 
 from whole_program import PROGRAM, Folder, holds, main, run, test
 
@@ -276,6 +278,25 @@ def test_one_bad_file_does_not_stop_the_others():
         assert [film["file"] for film in outcome["films"]] == good
         assert [failure["file"] for failure in outcome["failed"]] == bad
         assert all(failure["reason"] for failure in outcome["failed"])
+
+
+@test
+def test_interrupt_keeps_what_is_done():
+    with Folder() as folder:
+        film = folder.film("film.csv", "--step-nm", "1")
+        films = [folder(f"film-{i}.csv") for i in range(80)]
+        for path in films:
+            os.link(film, path)
+        process = subprocess.Popen([PROGRAM, "grade", *films, "--jobs", "1", "--json", folder("out.json")], stdout=subprocess.PIPE,
+                                   stderr=subprocess.PIPE, text=True)
+        time.sleep(1)
+        process.send_signal(signal.SIGINT)
+        _, errors = process.communicate(timeout=60)
+        assert process.returncode == 1, process.returncode
+        with open(folder("out.json"), encoding="utf-8") as file:
+            outcome = json.load(file)
+        assert outcome["failed"] and len(outcome["films"]) + len(outcome["failed"]) == 80
+        holds(errors, f"Interrupted; {len(outcome['failed'])} file")
 
 
 @test

@@ -3,8 +3,10 @@ import csv
 import hashlib
 import io
 import math
+import os
+import subprocess
 
-from whole_program import Folder, holds, main, run, test
+from whole_program import PROGRAM, SOURCE, Folder, holds, main, run, test
 
 
 def points_of(text):
@@ -45,8 +47,10 @@ def test_inspect_goes_on_after_a_bad_file():
 def test_inspect_gives_back_the_raw_points():
     with Folder() as folder:
         raw = [(1000.5 - 3.25 * i, 0.1 + 0.001 * i) for i in range(120)]
-        film = folder.write("film.txt", "nm;A\n" + "".join(f"{x!r};{y!r}\n".replace(".", ",") for x, y in raw))
-        assert points_of(run("inspect", film, "--points", "-", status=0).stdout) == raw
+        for separator in (";", "\t", "  "):
+            table = "".join(f"{x!r}{separator}{y!r}\n".replace(".", ",") for x, y in raw)
+            film = folder.write("film.txt", f"nm{separator}A\n{table}")
+            assert points_of(run("inspect", film, "--points", "-", status=0).stdout) == raw, separator
         run("inspect", film, "--points", folder("points.csv"), status=0)
         with open(folder("points.csv"), encoding="utf-8") as file:
             assert points_of(file.read()) == raw
@@ -127,6 +131,23 @@ def test_forecast_takes_every_option():
 def test_forecast_range_and_step():
     points = points_of(run("forecast", "--range-nm", "400,1100", "--step-nm", "2", status=0).stdout)
     assert len(points) == 351 and points[0][0] == 400 and points[-1][0] == 1100
+
+
+@test
+def test_demo_lots_are_what_forecast_makes():
+    demo = os.path.join(SOURCE, "data", "demo")
+    with Folder() as folder:
+        subprocess.run([os.path.join(demo, "make-demo"), folder.path], env={**os.environ, "BANDTALLY_CLI": PROGRAM}, check=True)
+        made = sorted(os.listdir(folder.path))
+        assert made == sorted(name for name in os.listdir(demo) if name.endswith(".csv")) and len(made) == 10
+        for name in made:
+            with open(folder(name), encoding="utf-8") as new, open(os.path.join(demo, name), encoding="utf-8") as kept:
+                new, kept = new.read(), kept.read()
+            holds(kept.splitlines()[0], "invented")
+            assert [line for line in new.splitlines() if line[0] == "#"] == [line for line in kept.splitlines() if line[0] == "#"]
+            for a, b in zip(points_of(new), points_of(kept), strict=True):
+                # Another mathematics library may round the last of the five digits otherwise.
+                assert a[0] == b[0] and abs(a[1] - b[1]) < 1.1e-5, (name, a, b)
 
 
 @test
