@@ -130,6 +130,25 @@ flag_fit (BtTally *tally)
                              100 * largest));
 }
 
+/* Wavelengths of interest that the film was not measured at. */
+static void
+flag_readings (BtTally *tally)
+{
+  g_autoptr (GString) names = g_string_new (NULL);
+
+  for (guint i = 0; i < tally->readings->len; i++)
+    {
+      const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+
+      if (isnan (reading->alpha_per_cm) && isnan (reading->absorbance))
+        g_string_append_printf (names, "%s%.6g", names->len > 0 ? ", " : "", reading->wavelength_nm);
+    }
+  if (names->len > 0)
+    add (tally, bt_flag_new ("wavelength-not-measured", _ ("The film was not measured at %s nm, so there is no absorption there. Measure that "
+                                                           "range, or ask for other wavelengths."),
+                             names->str));
+}
+
 void
 bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared)
 {
@@ -140,6 +159,7 @@ bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared)
     add (tally, bt_flag_new ("no-thickness", _ ("No thickness is known, so there is no absorption coefficient; the fraction does not need "
                                                 "it. Type the film's thickness to have both.")));
   flag_range (tally, prepared);
+  flag_readings (tally);
   if (tally->bands->len == 0)
     return;
   flag_fraction (tally);

@@ -144,6 +144,9 @@ def test_no_s22_in_range_gives_no_fraction_but_a_flag():
         assert any("S22" in flag["text"] for flag in film["flags"]), film["flags"]
         assert film["groups"]["S22"]["area"] is None
         assert film["verdict"] == "not judged"
+        assert "wavelength-not-measured" in codes(film)
+        missing = [reading["wavelength_nm"] for reading in film["absorbance"] if reading["value"] is None]
+        assert missing == [980, 1550], film["absorbance"]
 
 
 @test
