@@ -13,7 +13,7 @@
 #define HALF_WINDOW 12
 #define FILM_SHIFT_EV 0.04
 /* A spectrum of which even the best window explains less than this shows no nanotube bands. */
-#define LEAST_EXPLAINED 0.12
+#define LEAST_EXPLAINED 0.3
 #define WITHOUT_S11 0.7
 /* Another window is worth telling when it lies this far off and explains this much of what the best explains. */
 #define APART_NM 0.2
