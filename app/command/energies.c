@@ -147,35 +147,50 @@ is_filled (const GArray *tubes, const Transition *transition, BtReferenceSet set
   return FALSE;
 }
 
+/* Takes the blanks off the end of a line and prints it. */
+static void
+print_line (GString *line)
+{
+  while (line->len > 0 && line->str[line->len - 1] == ' ')
+    g_string_truncate (line, line->len - 1);
+  g_print ("%s\n", line->str);
+  g_string_truncate (line, 0);
+}
+
 static void
 print_text (const GArray *tubes, BtReferenceSet set, double shift_ev, gboolean nm)
 {
-  g_print ("%s\n\n", bt_reference_set_source (set));
-  g_print ("%8s  %11s  %7s  %-8s  %6s", "(n,m)", _ ("diameter nm"), _ ("angle °"), _ ("kind"), "2n+m");
+  GString *line = g_string_new (NULL);
+  char *source = bt_wrap_text ("", bt_reference_set_source (set), output_columns ());
+
+  g_print ("%s\n", source);
+  g_free (source);
+  g_string_append_printf (line, "%8s  %11s  %7s  %-8s  %4s", "(n,m)", _ ("diameter nm"), _ ("angle °"), _ ("kind"), "2n+m");
   for (gsize k = 0; k < G_N_ELEMENTS (transitions); k++)
     if (is_filled (tubes, &transitions[k], set))
-      g_print ("  %7s", transitions[k].name);
-  g_print ("\n");
+      g_string_append_printf (line, "  %7s", transitions[k].name);
+  print_line (line);
   for (guint i = 0; i < tubes->len; i++)
     {
       BtTube tube = g_array_index (tubes, BtTube, i);
       char *name = g_strdup_printf ("(%d,%d)", tube.n, tube.m);
 
-      g_print ("%8s  %11.4f  %7.2f  %-8s  %6d", name, bt_tube_diameter_nm (tube), bt_tube_chiral_angle_deg (tube),
-               kind_name (bt_tube_kind (tube)), bt_tube_family (tube));
+      g_string_append_printf (line, "%8s  %11.4f  %7.2f  %-8s  %4d", name, bt_tube_diameter_nm (tube),
+                              bt_tube_chiral_angle_deg (tube), kind_name (bt_tube_kind (tube)), bt_tube_family (tube));
+      g_free (name);
       for (gsize k = 0; k < G_N_ELEMENTS (transitions); k++)
         if (is_filled (tubes, &transitions[k], set))
           {
             double value = value_of (tube, &transitions[k], set, shift_ev, nm);
 
             if (isnan (value))
-              g_print ("  %7s", "");
+              g_string_append_printf (line, "  %7s", "");
             else
-              g_print ("  %7.*f", nm ? 1 : 4, value);
+              g_string_append_printf (line, "  %7.*f", nm ? 1 : 4, value);
           }
-      g_print ("\n");
-      g_free (name);
+      print_line (line);
     }
+  g_string_free (line, TRUE);
 }
 
 static void

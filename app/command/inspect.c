@@ -45,14 +45,18 @@ static void
 print_line (const char *name, const char *format, ...)
 {
   va_list arguments;
-  char *text;
+  char *text, *lead, *lines;
   /* printf's widths count bytes; names are UTF-8. */
   int space = MAX (0, 12 - (int) g_utf8_strlen (name, -1));
 
   va_start (arguments, format);
   text = g_strdup_vprintf (format, arguments);
   va_end (arguments);
-  g_print ("  %s%*s  %s\n", name, space, "", text);
+  lead = g_strdup_printf ("  %s%*s  ", name, space, "");
+  lines = bt_wrap_text (lead, text, output_columns ());
+  g_print ("%s", lines);
+  g_free (lines);
+  g_free (lead);
   g_free (text);
 }
 
@@ -129,9 +133,12 @@ print_spectrum (BtSpectrum *spectrum, const char *file)
   const GPtrArray *flags = bt_spectrum_get_flags (spectrum);
   const char *title = bt_spectrum_get_title (spectrum);
   char *name = g_filename_display_name (file);
+  char *reading;
 
   bt_spectrum_get_raw_x (spectrum, &n_raw);
-  g_print ("%s\n  %s\n", name, bt_spectrum_get_reading (spectrum));
+  reading = bt_wrap_text ("  ", bt_spectrum_get_reading (spectrum), output_columns ());
+  g_print ("%s\n%s", name, reading);
+  g_free (reading);
   if (title != NULL && title[0] != '\0')
     print_line (_ ("Title"), "%s", title);
   print_line (_ ("Points"), _ ("%zu read, %zu used"), n_raw, n);

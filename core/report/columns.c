@@ -1,6 +1,8 @@
 /* Text in columns for a terminal. */
 #include "columns-private.h"
 
+#include <bandtally/table.h>
+
 #define GAP 2
 
 BtColumns *
@@ -129,4 +131,13 @@ bt_text_append_wrapped (GString *out, const char *lead, const char *text, int co
     }
   g_string_append_c (out, '\n');
   g_strfreev (words);
+}
+
+char *
+bt_wrap_text (const char *lead, const char *text, int columns)
+{
+  GString *out = g_string_new (NULL);
+
+  bt_text_append_wrapped (out, lead, text, columns);
+  return g_string_free (out, FALSE);
 }

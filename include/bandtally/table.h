@@ -31,6 +31,10 @@ char *bt_tallies_to_csv (GPtrArray *films, GPtrArray *tallies);
  * account, several get a line each and their flags below. */
 char *bt_tallies_to_text (GPtrArray *films, GPtrArray *tallies, int columns);
 
+/* (transfer full): a paragraph broken at spaces to lines of at most @columns places (0: unbroken), ending in a line feed; the first
+ * line starts with @lead, the others with as many spaces. */
+char *bt_wrap_text (const char *lead, const char *text, int columns);
+
 /* (transfer full): "0.661(26)", "24560(120)", "1.523(31)e7": a value with its standard uncertainty in brackets, two digits that
  * count in the value's last places; the value alone where @u is 0 or not finite; "-" for NAN. With the locale's decimal mark:
  * for people, never for files. */

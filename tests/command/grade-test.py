@@ -5,12 +5,13 @@ import io
 import json
 import math
 import os
+import re
 import signal
 import stat
 import subprocess
 import time
 
-from whole_program import PROGRAM, Folder, holds, main, run, test
+from whole_program import PROGRAM, SOURCE, Folder, holds, main, run, test
 
 NUMBER = (int, float)
 # Members that every film has, and their types; None: may be null.
@@ -220,6 +221,17 @@ def test_recipe_in_the_outcome_reproduces_the_outcome():
         again = grade_json(film, "--recipe", recipe)["films"][0]
         assert again["semiconducting_fraction"] == first["semiconducting_fraction"]
         assert again["bands"] == first["bands"]
+
+
+@test
+def test_recipe_of_the_readme_is_a_recipe():
+    with open(os.path.join(SOURCE, "README.md"), encoding="utf-8") as file:
+        text = re.search(r'^    \{\n      "name".*?^    \}$', file.read(), re.S | re.M).group()
+    with Folder() as folder:
+        used = grade_json(folder.film(), "--recipe", folder.write("recipe.json", text))["films"][0]["recipe"]
+        for name, value in json.loads(text).items():
+            assert used[name] == value or name == "held", (name, used[name], value)
+        assert len(used["held"]) == 1, used["held"]
 
 
 @test
