@@ -181,8 +181,31 @@ points_near (const BtPrepared *prepared, const BtBandWindow *window)
   return count;
 }
 
+/* The recipe's window, or what the data propose for the parts of it that are 0. */
+static void
+choose_window (BtPrepared *prepared, const BtTally *previous, BtDiameterWindow *window)
+{
+  const BtCurve *curve = prepared->curve;
+  BtDiameterWindow proposal;
+
+  prepared->window_found = TRUE;
+  if (!(window->mean_nm > 0))
+    {
+      prepared->window_proposed = TRUE;
+      if (previous != NULL)
+        proposal = previous->plan.window;
+      else
+        prepared->window_found = bt_diameter_window_propose (curve->energy_ev, curve->absorbance, curve->n, &proposal, &prepared->alternative);
+      window->mean_nm = proposal.mean_nm;
+      if (!(window->spread_nm > 0))
+        window->spread_nm = proposal.spread_nm;
+    }
+  if (!(window->spread_nm > 0))
+    window->spread_nm = 0.08 * window->mean_nm;
+}
+
 BtPrepared *
-bt_prepare (BtFilm *film, const BtRecipe *recipe, GError **error)
+bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GError **error)
 {
   g_autoptr (BtPrepared) prepared = g_new0 (BtPrepared, 1);
   BtDiameterWindow window = recipe->window;
@@ -198,20 +221,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, GError **error)
       return NULL;
     }
   all = (BtRange){ prepared->curve->energy_ev[0], prepared->curve->energy_ev[prepared->curve->n - 1] };
-  prepared->window_found = TRUE;
-  if (!(window.mean_nm > 0))
-    {
-      BtDiameterWindow proposal;
-
-      prepared->window_proposed = TRUE;
-      prepared->window_found = bt_diameter_window_propose (prepared->curve->energy_ev, prepared->curve->absorbance,
-                                                           prepared->curve->n, &proposal, &prepared->alternative);
-      window.mean_nm = proposal.mean_nm;
-      if (!(window.spread_nm > 0))
-        window.spread_nm = proposal.spread_nm;
-    }
-  if (!(window.spread_nm > 0))
-    window.spread_nm = 0.08 * window.mean_nm;
+  choose_window (prepared, previous, &window);
   bt_band_plan_init (&prepared->plan, window, recipe->shift_ev, all);
   prepared->range = choose_range (recipe, &prepared->plan, prepared->curve);
   bt_band_plan_init (&prepared->plan, window, recipe->shift_ev, prepared->range);

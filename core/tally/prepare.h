@@ -32,7 +32,8 @@ typedef struct {
   guint n_over_limit, n_saturated;
 } BtPrepared;
 
-BtPrepared *bt_prepare (BtFilm *film, const BtRecipe *recipe, GError **error);
+/* @previous (nullable): its window is taken where the recipe leaves the window to be proposed. */
+BtPrepared *bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GError **error);
 void bt_prepared_free (BtPrepared *prepared);
 G_DEFINE_AUTOPTR_CLEANUP_FUNC (BtPrepared, bt_prepared_free)
 /* Sets the amplitude of the structure and with it sigma and n_effective:

@@ -316,7 +316,7 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
   g_return_val_if_fail (BT_IS_FILM (film), NULL);
   if (!bt_recipe_check (recipe, error))
     return NULL;
-  prepared = bt_prepare (film, recipe, error);
+  prepared = bt_prepare (film, recipe, effort == BT_EFFORT_QUICK ? previous : NULL, error);
   if (prepared == NULL)
     return NULL;
   tally = tally_new (prepared, recipe);
