@@ -1,4 +1,4 @@
-/* File bytes to UTF-8 lines. */
+/* File bytes to UTF-8 text, and text to lines. */
 #include "text-private.h"
 
 #include <string.h>
@@ -6,59 +6,108 @@
 #include <glib/gi18n-lib.h>
 
 static gboolean
-has_bytes (const guint8 *data, gsize size, const char *mark, gsize n)
+has_bytes (const char *data, gsize size, const char *mark, gsize n)
 {
   return size >= n && memcmp (data, mark, n) == 0;
 }
 
-char *
-bt_text_decode (const guint8 *data, gsize size, const char **encoding, GError **error)
+/* UTF-16 without a mark: every other byte of plain text is 0. */
+static const char *
+bare_utf16 (const char *data, gsize size)
 {
-  if (has_bytes (data, size, "\xff\xfe", 2) || has_bytes (data, size, "\xfe\xff", 2))
-    {
-      char *text = g_convert ((const char *) data + 2, (gssize) (size - 2), "UTF-8", data[0] == 0xff ? "UTF-16LE" : "UTF-16BE", NULL, NULL, NULL);
+  gsize zeros[2] = { 0, 0 };
+  const gsize n = MIN (size, 512) & ~(gsize) 1;
 
-      *encoding = "UTF-16";
-      if (text == NULL)
-        g_set_error_literal (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it begins as UTF-16 text but is damaged; export it again."));
-      return text;
+  for (gsize i = 0; i < n; i++)
+    zeros[i % 2] += data[i] == 0 ? 1 : 0;
+  if (n < 16 || size % 2 != 0)
+    return NULL;
+  if (zeros[0] == 0 && zeros[1] > n * 4 / 10)
+    return "UTF-16LE";
+  return zeros[1] == 0 && zeros[0] > n * 4 / 10 ? "UTF-16BE" : NULL;
+}
+
+static gboolean
+convert (BtText *text, const char *data, gsize size, const char *from, GError **error)
+{
+  gsize written;
+
+  text->owned = g_convert (data, (gssize) size, "UTF-8", from, NULL, &written, NULL);
+  if (text->owned == NULL)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it begins as %s text but is damaged; export it again."),
+                   text->encoding);
+      return FALSE;
     }
+  text->at = text->owned;
+  text->end = text->owned + written;
+  return TRUE;
+}
+
+/* Eight bytes at a time; most files are plain. */
+static gboolean
+is_ascii (const char *data, gsize size)
+{
+  guint64 all = 0, eight;
+
+  for (; size >= 8; data += 8, size -= 8)
+    {
+      memcpy (&eight, data, 8);
+      all |= eight;
+    }
+  for (; size > 0; data++, size--)
+    all |= (guint8) *data;
+  return (all & G_GUINT64_CONSTANT (0x8080808080808080)) == 0;
+}
+
+gboolean
+bt_text_decode (GBytes *bytes, BtText *text, GError **error)
+{
+  gsize size;
+  const char *data = g_bytes_get_data (bytes, &size), *from;
+
+  *text = (BtText){ .encoding = "UTF-16" };
+  if (has_bytes (data, size, "\xff\xfe", 2) || has_bytes (data, size, "\xfe\xff", 2))
+    return convert (text, data + 2, size - 2, *data == '\xff' ? "UTF-16LE" : "UTF-16BE", error);
+  from = bare_utf16 (data, size);
+  if (from != NULL)
+    return convert (text, data, size, from, error);
   if (has_bytes (data, size, "\xef\xbb\xbf", 3))
     {
       data += 3;
       size -= 3;
     }
-  if (memchr (data, 0, MIN (size, 1u << 16)) != NULL)
+  /* Padding, and the end mark of old systems. */
+  while (size > 0 && (data[size - 1] == '\0' || data[size - 1] == '\x1a'))
+    size--;
+  if (size > 0 && memchr (data, 0, size) != NULL)
     {
       g_set_error_literal (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT,
                            _ ("it is a binary file, not text; export the spectrum from the instrument's program as text (CSV)."));
-      return NULL;
+      return FALSE;
     }
-  if (g_utf8_validate ((const char *) data, (gssize) size, NULL))
-    {
-      *encoding = "UTF-8";
-      return g_strndup ((const char *) data, size);
-    }
-  *encoding = "Latin-1";
-  return g_convert ((const char *) data, (gssize) size, "UTF-8", "ISO-8859-1", NULL, NULL, error);
+  text->at = data;
+  text->end = data + size;
+  text->encoding = "UTF-8";
+  if (is_ascii (data, size) || g_utf8_validate_len (data, size, NULL))
+    return TRUE;
+  text->encoding = "Latin-1";
+  return convert (text, data, size, "ISO-8859-1", error);
 }
 
-/* Lines end with LF, CR LF or CR. */
-GArray *
-bt_text_split (char *text)
+void
+bt_text_clear (BtText *text)
 {
-  GArray *lines = g_array_new (FALSE, FALSE, sizeof (char *));
+  g_clear_pointer (&text->owned, g_free);
+}
 
-  while (*text != '\0')
-    {
-      char *end = text + strcspn (text, "\r\n");
-
-      g_array_append_val (lines, text);
-      if (*end == '\r' && end[1] == '\n')
-        *end++ = '\0';
-      if (*end != '\0')
-        *end++ = '\0';
-      text = end;
-    }
-  return lines;
+const char *
+bt_text_line_end (const char *at, const char *end, const char **next)
+{
+  while (at < end && *at != '\n' && *at != '\r')
+    at++;
+  *next = at < end ? at + 1 : end;
+  if (at + 1 < end && at[0] == '\r' && at[1] == '\n')
+    *next = at + 2;
+  return at;
 }

@@ -3,8 +3,11 @@
 
 #include <string.h>
 
-/* Lines about the middle of the file that decide: any preamble is long past by then. */
-#define SNIFFED_LINES 200
+/* Lines that are looked at in each of three places of a long file; short files are looked at whole. */
+#define SNIFFED_LINES 8
+#define SHORT_FILE 2048
+/* The fewest rows among the lines looked at that are taken for an answer. */
+#define SURE_ROWS 8
 
 static gboolean
 is_blank (char c)
@@ -13,126 +16,146 @@ is_blank (char c)
 }
 
 static BtField
-trimmed (const char *text, gsize n)
+trimmed (const char *text, const char *end)
 {
-  while (n > 0 && is_blank (*text))
+  while (text < end && is_blank (*text))
+    text++;
+  while (end > text && is_blank (end[-1]))
+    end--;
+  if (end - text >= 2 && text[0] == '"' && end[-1] == '"')
     {
       text++;
-      n--;
+      end--;
+      while (text < end && is_blank (*text))
+        text++;
+      while (end > text && is_blank (end[-1]))
+        end--;
     }
-  while (n > 0 && is_blank (text[n - 1]))
-    n--;
-  if (n >= 2 && text[0] == '"' && text[n - 1] == '"')
-    {
-      text++;
-      n -= 2;
-    }
-  return (BtField){ text, n };
+  return (BtField){ text, (gsize) (end - text) };
 }
 
 gsize
-bt_text_fields (const char *line, char delimiter, BtField *fields, gsize max)
+bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max)
 {
   gsize count = 0;
 
-  if (delimiter == ' ')
-    {
-      while (count < max)
-        {
-          gsize n;
-
-          line += strspn (line, " \t");
-          if (*line == '\0')
-            break;
-          n = strcspn (line, " \t");
-          fields[count++] = trimmed (line, n);
-          line += n;
-        }
-      return count;
-    }
   while (count < max)
     {
-      const char *start = line;
+      const char *start;
       gboolean quoted = FALSE;
 
-      for (; *line != '\0' && (quoted || *line != delimiter); line++)
+      if (delimiter == ' ')
+        {
+          while (line < end && is_blank (*line))
+            line++;
+          if (line == end)
+            break;
+        }
+      for (start = line; line < end && (quoted || (delimiter == ' ' ? !is_blank (*line) : *line != delimiter)); line++)
         if (*line == '"')
           quoted = !quoted;
-      fields[count++] = trimmed (start, (gsize) (line - start));
-      if (*line == '\0')
+      fields[count++] = trimmed (start, line);
+      if (line == end)
         break;
       line++;
     }
-  /* A delimiter at the end of every line makes no column. */
-  while (count > 0 && fields[count - 1].n == 0)
-    count--;
   return count;
 }
 
-/* Number of fields, or 0 where the line is no row. @clean: whether every field is a number or a missing one. */
-static gsize
-row_fields (const char *line, BtDialect dialect, gboolean *clean)
+BtRowKind
+bt_text_row (const char *line, const char *end, BtDialect dialect, BtField *fields, gsize *n)
 {
-  BtField fields[BT_MAX_COLUMNS];
-  gsize n = bt_text_fields (line, dialect.delimiter, fields, BT_MAX_COLUMNS), numbers = 0, missing = 0;
+  gsize numbers = 0, missing = 0, text = 0;
   double value;
 
-  if (n < 2 || !bt_text_number (fields[0].text, fields[0].n, dialect.decimal, &value))
-    return 0;
-  for (gsize i = 1; i < n; i++)
+  *n = bt_text_fields (line, end, dialect.delimiter, fields, BT_MAX_COLUMNS);
+  if (*n < 2)
+    return BT_ROW_NONE;
+  for (gsize i = 0; i < *n; i++)
     if (bt_text_number (fields[i].text, fields[i].n, dialect.decimal, &value))
       numbers++;
+    else if (numbers == 0 && fields[i].n > 0)
+      return BT_ROW_NONE;
     else if (bt_text_is_missing (fields[i].text, fields[i].n))
-      missing++;
-  *clean = numbers + missing == n - 1;
-  return numbers + missing > 0 ? n : 0;
+      missing += numbers > 0 ? 1 : 0;
+    else
+      text++;
+  if (numbers == 0 || numbers + missing < 2)
+    return BT_ROW_NONE;
+  return text > 0 ? BT_ROW_WITH_TEXT : BT_ROW_STRICT;
 }
 
-gboolean
-bt_text_is_row (const char *line, BtDialect dialect)
+/* Where several fit equally the earlier one wins: blanks come last because they occur inside others. Decimal commas between commas are
+ * possible in quotes. */
+static const BtDialect dialects[] = { { '\t', '.' }, { ';', '.' }, { '|', '.' }, { ',', '.' }, { ';', ',' }, { '\t', ',' }, { '|', ',' },
+                                      { ' ', '.' },  { ' ', ',' }, { ',', ',' } };
+
+typedef struct { BtDialect dialect; gsize lines, strict, with_text, fields; gboolean even; } Score;
+
+static void
+score_lines (const char *at, const char *end, gsize max_lines, Score *score, BtField *fields)
 {
-  gboolean clean;
-
-  return row_fields (line, dialect, &clean) > 0;
-}
-
-/* How many of the lines are rows with the commonest number of fields. Clean rows count twice: "1000,5 0,1" passes for three fields
- * between commas too, but then the middle one is no number. */
-static gsize
-score_of (char *const *lines, gsize n, BtDialect dialect)
-{
-  gsize counts[BT_MAX_COLUMNS + 1] = { 0 }, best = 0;
-
-  for (gsize i = 0; i < n; i++)
+  for (gsize i = 0; at < end && i < max_lines; i++)
     {
-      gboolean clean;
-      gsize fields = row_fields (lines[i], dialect, &clean);
+      const char *next, *line_end = bt_text_line_end (at, end, &next);
+      gsize n;
+      BtRowKind kind = bt_text_row (at, line_end, score->dialect, fields, &n);
 
-      if (fields > 0)
-        counts[fields] += clean ? 2 : 1;
+      if (line_end > at)
+        score->lines++;
+      if (kind == BT_ROW_STRICT)
+        {
+          score->even = score->even && (score->strict == 0 || score->fields == n);
+          score->strict++;
+          score->fields = n;
+        }
+      else if (kind == BT_ROW_WITH_TEXT)
+        score->with_text++;
+      at = next;
     }
-  for (gsize f = 2; f <= BT_MAX_COLUMNS; f++)
-    best = MAX (best, counts[f]);
-  return best;
+}
+
+static void
+score_text (const BtText *text, gboolean all, Score *score, BtField *fields)
+{
+  const gsize size = (gsize) (text->end - text->at);
+
+  if (all || size < SHORT_FILE)
+    {
+      score_lines (text->at, text->end, G_MAXSIZE, score, fields);
+      return;
+    }
+  for (gsize k = 1; k < 4; k++)
+    {
+      const char *next;
+
+      bt_text_line_end (text->at + size * k / 4, text->end, &next);
+      score_lines (next, text->end, SNIFFED_LINES, score, fields);
+    }
 }
 
 gboolean
-bt_text_sniff (char *const *lines, gsize n, BtDialect *dialect)
+bt_text_sniff (const BtText *text, gboolean all, BtDialect *dialect)
 {
-  /* Where two fit equally the earlier one wins: "1;2" before a decimal comma, and blanks last because they occur inside others. */
-  static const BtDialect dialects[] = { { '\t', '.' }, { ';', '.' }, { ',', '.' }, { ';', ',' }, { '\t', ',' }, { ' ', '.' }, { ' ', ',' } };
-  const gsize start = n > SNIFFED_LINES ? (n - SNIFFED_LINES) / 2 : 0, length = MIN (n, SNIFFED_LINES);
+  g_autofree BtField *fields = g_new (BtField, BT_MAX_COLUMNS);
   gsize best = 0;
 
   for (gsize d = 0; d < G_N_ELEMENTS (dialects); d++)
     {
-      gsize score = score_of (lines + start, length, dialects[d]);
+      Score score = { .dialect = dialects[d], .even = TRUE };
+      gsize points;
 
-      if (score > best)
+      score_text (text, all, &score, fields);
+      /* Rows with words among the numbers count half, so that "400;0,5" is not taken for the columns 400 and 5 of a comma. */
+      points = 4 * score.strict + 2 * score.with_text + (score.even ? score.strict : 0);
+      if (points > best)
         {
-          best = score;
+          best = points;
           *dialect = dialects[d];
         }
+      /* Every line a row of the same form: nothing behind can fit better. */
+      if (score.even && score.strict == score.lines && score.strict >= SURE_ROWS)
+        return TRUE;
     }
-  return best > 0;
+  return all || (gsize) (text->end - text->at) < SHORT_FILE ? best > 0 : best >= 4 * SURE_ROWS;
 }

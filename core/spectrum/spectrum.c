@@ -20,10 +20,11 @@ struct _BtSpectrum
   BtYUnit y_unit;
   gsize n;
   double *energy_ev, *absorbance, *noise;
-  char *title, *file, *sha256, *reading;
-  GHashTable *notes;
+  char *title, *reading;
+  BtSource *source;             /* NULL where made from arrays */
   GPtrArray *flags;
   GArray *steps, *saturated;
+  gsize judged;                 /* noise, steps, saturation and their flags are there */
 };
 
 G_DEFINE_FINAL_TYPE (BtSpectrum, bt_spectrum, G_TYPE_OBJECT)
@@ -40,10 +41,8 @@ bt_spectrum_finalize (GObject *object)
   g_free (self->absorbance);
   g_free (self->noise);
   g_free (self->title);
-  g_free (self->file);
-  g_free (self->sha256);
   g_free (self->reading);
-  g_hash_table_unref (self->notes);
+  g_clear_pointer (&self->source, bt_source_unref);
   g_ptr_array_unref (self->flags);
   g_array_unref (self->steps);
   g_array_unref (self->saturated);
@@ -59,11 +58,13 @@ bt_spectrum_class_init (BtSpectrumClass *klass)
 static void
 bt_spectrum_init (BtSpectrum *self)
 {
-  self->notes = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free);
   self->flags = bt_flags_new ();
   self->steps = g_array_new (FALSE, TRUE, sizeof (BtStep));
   self->saturated = g_array_new (FALSE, TRUE, sizeof (BtRange));
 }
+
+/* Absorbances beyond this on most points are another unit. */
+#define MOST_ABSORBANCE 12
 
 typedef struct { double energy, absorbance; } Point;
 
@@ -73,6 +74,29 @@ by_energy (const void *a, const void *b)
   const Point *p = a, *q = b;
 
   return p->energy < q->energy ? -1 : p->energy > q->energy;
+}
+
+/* Most files are in order already, one way or the other. */
+static void
+sort_points (Point *points, gsize n)
+{
+  gboolean ascends = TRUE, descends = TRUE;
+
+  for (gsize i = 1; i < n; i++)
+    {
+      ascends = ascends && points[i].energy >= points[i - 1].energy;
+      descends = descends && points[i].energy <= points[i - 1].energy;
+    }
+  if (descends)
+    for (gsize i = 0; i < n / 2; i++)
+      {
+        Point point = points[i];
+
+        points[i] = points[n - 1 - i];
+        points[n - 1 - i] = point;
+      }
+  else if (!ascends)
+    qsort (points, n, sizeof *points, by_energy);
 }
 
 /* FALSE where the reading has no absorbance (a transmittance of 0 or less). */
@@ -142,8 +166,13 @@ merge_equal (Point *points, gsize n, guint *n_merged)
 }
 
 static void
-flag_counts (BtSpectrum *self, guint n_missing, guint n_dark, guint n_merged)
+flag_counts (BtSpectrum *self, guint n_missing, guint n_dark, guint n_bad_x, guint n_merged)
 {
+  if (n_bad_x > 0)
+    bt_spectrum_add_flag (self, bt_flag_new ("bad-x", g_dngettext (GETTEXT_PACKAGE, "%u point has a wavelength or energy of 0 or less and was left out; "
+                                                                   "look at the file if you expected another.",
+                                                                   "%u points have a wavelength or energy of 0 or less and were left out; look at the "
+                                                                   "file if you expected others.", n_bad_x), n_bad_x));
   if (n_missing > 0)
     bt_spectrum_add_flag (self, bt_flag_new ("missing-values", g_dngettext (GETTEXT_PACKAGE, "%u point has no value and was left out; look at the "
                                                                             "file if you expected one.",
@@ -174,12 +203,32 @@ fill_axes (BtSpectrum *self, GError **error)
   g_autofree Point *points = g_new (Point, MAX (self->n_raw, 1));
   guint n_missing = 0, n_dark = 0, n_bad_x = 0, n_merged = 0;
   gsize n = usable_points (self, points, &n_missing, &n_dark, &n_bad_x);
+  gsize n_beyond = 0;
   double low = INFINITY, high = -INFINITY;
 
-  if (n_bad_x > 0)
-    return refuse (error, BT_SPECTRUM_ERROR_UNITS, _ ("wavelengths and energies have to be above 0; state which column is which, or the unit."));
-  qsort (points, n, sizeof *points, by_energy);
+  /* A few rows of zeros pad some files. */
+  if (n_bad_x * 20 > n)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
+                   g_dngettext (GETTEXT_PACKAGE,
+                                "%u point has a wavelength or energy of 0 or less, which cannot be; export the spectrum against wavelength or energy.",
+                                "%u points have a wavelength or energy of 0 or less, which cannot be; export the spectrum against wavelength or "
+                                "energy.", n_bad_x),
+                   n_bad_x);
+      return FALSE;
+    }
+  sort_points (points, n);
   n = merge_equal (points, n, &n_merged);
+  if (n < BT_SPECTRUM_MIN_POINTS && n_merged > n)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
+                   g_dngettext (GETTEXT_PACKAGE, "its first column holds only %u value, again and again; a spectrum needs a wavelength for each reading.",
+                                "its first column holds only %u values, again and again; a spectrum needs a wavelength for each reading.", (gulong) n),
+                   (guint) n);
+      return FALSE;
+    }
+  if (n == 0 && n_missing > 0)
+    return refuse (error, BT_SPECTRUM_ERROR_VALUES, _ ("every reading in it is missing (NaN or the like); export the spectrum again."));
   if (n < BT_SPECTRUM_MIN_POINTS)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
@@ -191,7 +240,9 @@ fill_axes (BtSpectrum *self, GError **error)
   if (points[0].energy < 0.01 || points[n - 1].energy > 30)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
-                   _ ("in %s the data would reach from %.3g to %.3g eV, which no spectrophotometer measures; state another unit."),
+                   _ ("%.4g to %.4g %s would be %.3g to %.3g eV, which no spectrophotometer measures; state another unit."),
+                   fmin (bt_x_from_energy_ev (points[0].energy, self->x_unit), bt_x_from_energy_ev (points[n - 1].energy, self->x_unit)),
+                   fmax (bt_x_from_energy_ev (points[0].energy, self->x_unit), bt_x_from_energy_ev (points[n - 1].energy, self->x_unit)),
                    bt_x_unit_name (self->x_unit), points[0].energy, points[n - 1].energy);
       return FALSE;
     }
@@ -204,10 +255,22 @@ fill_axes (BtSpectrum *self, GError **error)
       self->absorbance[i] = points[i].absorbance;
       low = fmin (low, points[i].absorbance);
       high = fmax (high, points[i].absorbance);
+      n_beyond += points[i].absorbance > MOST_ABSORBANCE ? 1 : 0;
     }
   if (!(high > low))
-    return refuse (error, BT_SPECTRUM_ERROR_VALUES, _ ("every reading has the same value; this is no measurement of a film."));
-  flag_counts (self, n_missing, n_dark, n_merged);
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
+                   _ ("every reading has the same value, %.6g; this is no measurement of a film. Choose the column or file of the reading."),
+                   self->raw_y[0]);
+      return FALSE;
+    }
+  if (2 * n_beyond > n && self->y_unit == BT_Y_ABSORBANCE)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
+                   _ ("an absorbance of up to %.4g is beyond every instrument; if it is a transmittance in per cent, state the unit."), high);
+      return FALSE;
+    }
+  flag_counts (self, n_missing, n_dark, n_bad_x, n_merged);
   return TRUE;
 }
 
@@ -243,6 +306,17 @@ find_faults (BtSpectrum *self)
     }
 }
 
+/* Judging takes longer than reading, so it waits until somebody asks; from outside the spectrum never changes. */
+static void
+judge (BtSpectrum *self)
+{
+  if (g_once_init_enter (&self->judged))
+    {
+      find_faults (self);
+      g_once_init_leave (&self->judged, 1);
+    }
+}
+
 BtSpectrum *
 bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit x_unit, BtYUnit y_unit, const char *title, GError **error)
 {
@@ -256,40 +330,15 @@ bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit x_unit, BtYU
   self->title = g_strdup (title != NULL ? title : "");
   if (!fill_axes (self, error))
     return NULL;
-  find_faults (self);
   return g_steal_pointer (&self);
 }
 
 void
-bt_spectrum_set_origin (BtSpectrum *self, const char *file, const char *sha256, const char *reading)
+bt_spectrum_set_origin (BtSpectrum *self, BtSource *source, const char *reading)
 {
-  g_free (self->file);
-  g_free (self->sha256);
+  self->source = bt_source_ref (source);
   g_free (self->reading);
-  self->file = g_strdup (file);
-  self->sha256 = g_strdup (sha256);
   self->reading = g_strdup (reading);
-}
-
-/* Keys compare without case, and an underscore is a space. */
-static char *
-fold_key (const char *key)
-{
-  char *folded = g_ascii_strdown (key, -1);
-
-  g_strdelimit (folded, "_", ' ');
-  return g_strstrip (folded);
-}
-
-void
-bt_spectrum_add_note (BtSpectrum *self, const char *key, const char *value)
-{
-  char *folded = fold_key (key);
-
-  if (g_hash_table_contains (self->notes, folded))
-    g_free (folded);
-  else
-    g_hash_table_insert (self->notes, folded, g_strstrip (g_strdup (value)));
 }
 
 void
@@ -301,9 +350,9 @@ bt_spectrum_add_flag (BtSpectrum *self, BtFlag *flag)
 const char *
 bt_spectrum_get_note (BtSpectrum *self, const char *key)
 {
-  g_autofree char *folded = fold_key (key);
+  g_autofree char *folded = bt_source_fold_key (key);
 
-  return g_hash_table_lookup (self->notes, folded);
+  return self->source != NULL ? g_hash_table_lookup (bt_source_get_notes (self->source), folded) : NULL;
 }
 
 gsize
@@ -333,6 +382,7 @@ bt_spectrum_get_noise (BtSpectrum *self, gsize *n)
 {
   if (n != NULL)
     *n = self->n;
+  judge (self);
   return self->noise;
 }
 
@@ -394,13 +444,13 @@ bt_spectrum_get_title (BtSpectrum *self)
 const char *
 bt_spectrum_get_file (BtSpectrum *self)
 {
-  return self->file;
+  return self->source != NULL ? bt_source_get_name (self->source) : NULL;
 }
 
 const char *
 bt_spectrum_get_sha256 (BtSpectrum *self)
 {
-  return self->sha256;
+  return self->source != NULL ? bt_source_get_sha256 (self->source) : NULL;
 }
 
 const char *
@@ -412,12 +462,14 @@ bt_spectrum_get_reading (BtSpectrum *self)
 const GPtrArray *
 bt_spectrum_get_flags (BtSpectrum *self)
 {
+  judge (self);
   return self->flags;
 }
 
 const BtStep *
 bt_spectrum_get_steps (BtSpectrum *self, gsize *n)
 {
+  judge (self);
   *n = self->steps->len;
   return (const BtStep *) (void *) self->steps->data;
 }
@@ -425,6 +477,7 @@ bt_spectrum_get_steps (BtSpectrum *self, gsize *n)
 const BtRange *
 bt_spectrum_get_saturated (BtSpectrum *self, gsize *n)
 {
+  judge (self);
   *n = self->saturated->len;
   return (const BtRange *) (void *) self->saturated->data;
 }

@@ -1,37 +1,96 @@
-/* Delimited text: decoding, numbers, dialects, headers. Private to core/spectrum. */
+/* Delimited text: decoding, numbers, dialects, tables, headers. Private to core/spectrum. */
 #ifndef BANDTALLY_TEXT_PRIVATE_H
 #define BANDTALLY_TEXT_PRIVATE_H
 
+#include <math.h>
+
 #include <bandtally/spectrum.h>
 
-/* (transfer full): UTF-8 text of a file; @encoding is set to a static name. NULL with @error set for what is no text. */
-char *bt_text_decode (const guint8 *data, gsize size, const char **encoding, GError **error);
-/* (transfer full) (element-type utf8): the lines of @text, which is cut up in place and must outlive them. */
-GArray *bt_text_split (char *text);
+/* A file's text in UTF-8: from @at up to, not including, @end; not terminated. @encoding is a static name. */
+typedef struct { const char *at, *end, *encoding; char *owned; } BtText;
+/* Points into @bytes where these are UTF-8 already, so they must outlive @text. FALSE with @error set for what is no text. */
+gboolean bt_text_decode (GBytes *bytes, BtText *text, GError **error);
+void bt_text_clear (BtText *text);
+/* The end of the line that begins at @at (LF, CR LF or CR); @next is set to the beginning of the line behind it. */
+const char *bt_text_line_end (const char *at, const char *end, const char **next);
 
-/* A finite number in exactly @n characters, with this decimal sign. */
+/* The number at the very beginning of @at, with this decimal sign: returns where it ends, NULL where there is none that is finite. */
+const char *bt_text_scan_number (const char *at, const char *end, char decimal, double *value);
+/* A number in exactly @n characters; also takes what only whole fields may have: a true minus sign, a per cent sign behind. */
 gboolean bt_text_number (const char *text, gsize n, char decimal, double *value);
 /* Empty, "-", "NaN", "OVER", "****" and their like: a reading that is not there. */
 gboolean bt_text_is_missing (const char *text, gsize n);
 
-#define BT_MAX_COLUMNS 512
+/* Columns beyond these are passed over. */
+#define BT_MAX_COLUMNS 4096
 /* A field of a line: not terminated, blanks and quotes around it taken off. */
 typedef struct { const char *text; gsize n; } BtField;
-/* @delimiter: ',', ';', tab, or ' ' for runs of blanks; @decimal: '.' or ','. */
+/* @delimiter: ',', ';', '|', tab, or ' ' for runs of blanks; @decimal: '.' or ','. */
 typedef struct { char delimiter, decimal; } BtDialect;
+typedef enum { BT_ROW_NONE, BT_ROW_WITH_TEXT, BT_ROW_STRICT } BtRowKind;
 
-/* Splits a line (RFC 4180 quotes); at most @max fields; returns their number. */
-gsize bt_text_fields (const char *line, char delimiter, BtField *fields, gsize max);
-/* Whether the line is a row of the table: its first field a number and another one a number or missing. */
-gboolean bt_text_is_row (const char *line, BtDialect dialect);
-/* The dialect in which most lines about the middle of the file are rows with one number of fields. FALSE where none is. */
-gboolean bt_text_sniff (char *const *lines, gsize n, BtDialect *dialect);
+/* Splits a line (RFC 4180 quotes); at most @max fields; returns their number. An empty last field counts. */
+gsize bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max);
+/* Splits a line and judges it as a row of a table: its first field that is not empty is a number, another one a number or missing. */
+BtRowKind bt_text_row (const char *line, const char *end, BtDialect dialect, BtField *fields, gsize *n);
+/* The dialect in which most lines are rows with one number of fields: judged by some lines, or by all where @all. FALSE where none is. */
+gboolean bt_text_sniff (const BtText *text, gboolean all, BtDialect *dialect);
+
+/* A run of rows that belong together. Lines count from 1. */
+typedef struct {
+  const char *above, *top;      /* text between the table before it and its first row */
+  gsize first_row, n_rows;      /* in BtRows.rows */
+  guint first_line, last_line;
+  guint n_skipped;              /* lines among its rows that are no rows */
+} BtTable;
+typedef struct { gsize start; guint32 n, line; } BtRow;
+typedef struct {
+  GArray *values;               /* of double, row behind row; NAN for missing */
+  GArray *rows;                 /* of BtRow */
+  GArray *tables;               /* of BtTable: those with enough rows, or else the longest one */
+  const char *below;            /* text behind the last row */
+  BtDialect dialect;
+  gboolean percent;             /* readings carry a per cent sign */
+} BtRows;
+/* FALSE where there is not a single row. Free with bt_rows_clear() in both cases. */
+gboolean bt_text_rows (const BtText *text, BtRows *rows);
+void bt_rows_clear (BtRows *rows);
+static inline double
+bt_rows_value (const BtRows *rows, gsize row, gsize column)
+{
+  const BtRow *r = &((const BtRow *) (void *) rows->rows->data)[row];
+
+  return column < r->n ? ((const double *) (void *) rows->values->data)[r->start + column] : (double) NAN;
+}
+
+typedef enum { BT_ORIGIN_SAID, BT_ORIGIN_HEADER, BT_ORIGIN_VALUES } BtOrigin;
+/* Columns of a table that make one spectrum, and how their units are known. @title is owned, and "" where there is none. */
+typedef struct { gsize x, y; BtXUnit x_unit; BtYUnit y_unit; BtOrigin x_origin, y_origin; char *title; } BtChoice;
+typedef struct {
+  gsize n_columns;
+  char **headers;               /* n_columns, never NULL: the words over each column */
+  char **parts[3];              /* (nullable) the same line by line, the nearest to the table first */
+  GArray *choices;              /* of BtChoice */
+  char *caption;                /* (nullable) the first line above the table that is no header */
+  char *left_out;               /* (nullable) the columns that were left out, by number and header */
+} BtColumns;
+/* Which columns of a table are spectra. FALSE with @error set where none can be. Free with bt_columns_clear() in both cases. */
+gboolean bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, const BtReadOptions *options,
+                          BtColumns *columns, GError **error);
+void bt_columns_clear (BtColumns *columns);
+/* Fills in the words over each of a table's columns; columns->n_columns is set. */
+void bt_text_headers (const BtRows *rows, const BtTable *table, BtColumns *columns);
 
 /* What a header's words say; FALSE where they say nothing known. */
 gboolean bt_text_x_unit (const char *words, BtXUnit *unit);
 gboolean bt_text_y_unit (const char *words, BtYUnit *unit);
-/* What the values say. @y (nullable). */
-BtXUnit bt_values_x_unit (const double *x, const double *y, gsize n);
+gboolean bt_text_is_wavelength (const char *words);
+/* (nullable): the unit or quantity, in a header, that is known but cannot be graded ("meV", "counts"). */
+const char *bt_text_foreign (const char *words);
+/* Whether the words name no quantity at all beside units and quantities that are read: then they are no title. */
+gboolean bt_text_is_only_unit (const char *words);
+/* What the values say. */
+BtXUnit bt_values_x_unit (const double *x, const double *y, gsize n, gboolean wavelength);
 BtYUnit bt_values_y_unit (const double *x, const double *y, gsize n, BtXUnit x_unit);
 
 #endif

@@ -1,0 +1,249 @@
+/* The tables in a text: which lines are rows, and which rows belong together. */
+#include "text-private.h"
+
+#include <string.h>
+
+typedef struct {
+  const BtText *text;
+  BtRows *rows;
+  BtTable run;              /* rows with nothing between them but comments */
+  GArray *runs;             /* of BtTable */
+  BtField *fields;
+  double *numbers;          /* BT_MAX_COLUMNS */
+  const char *run_end;      /* text behind the last row */
+  guint line, n_text;       /* lines that are no rows since the last row */
+  gboolean in_run;
+} Scan;
+
+static gboolean
+is_comment (const char *line, const char *end)
+{
+  while (line < end && (*line == ' ' || *line == '\t' || *line == '"'))
+    line++;
+  return line == end || *line == '#' || *line == '%' || *line == ';' || *line == '!' || (*line == '/' && line + 1 < end && line[1] == '/');
+}
+
+/* Most lines are plain numbers between delimiters; they are read in one pass. Returns where the line ends, NULL where it is anything else. */
+static const char *
+scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numbers, gsize *n)
+{
+  gsize count = 0;
+
+  for (;;)
+    {
+      const char *behind;
+
+      while (at < end && (*at == ' ' || (*at == '\t' && dialect.delimiter == ' ')))
+        at++;
+      if (count == BT_MAX_COLUMNS)
+        return NULL;
+      behind = at = bt_text_scan_number (at, end, dialect.decimal, &numbers[count]);
+      if (at == NULL)
+        return NULL;
+      count++;
+      while (at < end && (*at == ' ' || (*at == '\t' && dialect.delimiter == ' ')))
+        at++;
+      if (at == end || *at == '\n' || *at == '\r')
+        {
+          *n = count;
+          return count >= 2 ? at : NULL;
+        }
+      if (dialect.delimiter == ' ' ? at == behind : *at != dialect.delimiter)
+        return NULL;
+      if (dialect.delimiter != ' ')
+        at++;
+    }
+}
+
+static gboolean
+scan_row (Scan *scan, const char *at, const char *line_end, gsize *n)
+{
+  const BtDialect dialect = scan->rows->dialect;
+
+  if (bt_text_row (at, line_end, dialect, scan->fields, n) == BT_ROW_NONE)
+    return FALSE;
+  for (gsize i = 0; i < *n; i++)
+    if (!bt_text_number (scan->fields[i].text, scan->fields[i].n, dialect.decimal, &scan->numbers[i]))
+      scan->numbers[i] = (double) NAN;
+    else if (i > 0 && scan->fields[i].text[scan->fields[i].n - 1] == '%')
+      scan->rows->percent = TRUE;
+  return TRUE;
+}
+
+static void
+end_run (Scan *scan)
+{
+  if (scan->in_run)
+    g_array_append_val (scan->runs, scan->run);
+  scan->in_run = FALSE;
+}
+
+static void
+add_row (Scan *scan, const char *at, gsize n)
+{
+  const BtRow row = { scan->rows->values->len, (guint32) n, scan->line };
+
+  if (!scan->in_run)
+    {
+      scan->run = (BtTable){ .above = scan->run_end, .top = at, .first_row = scan->rows->rows->len, .first_line = scan->line,
+                             .n_skipped = scan->n_text };
+      scan->in_run = TRUE;
+    }
+  scan->n_text = 0;
+  scan->run.n_rows++;
+  scan->run.last_line = scan->line;
+  g_array_append_vals (scan->rows->values, scan->numbers, (guint) n);
+  g_array_append_vals (scan->rows->rows, &row, 1);
+}
+
+static void
+scan_lines (Scan *scan)
+{
+  const BtText *text = scan->text;
+  const char *at = text->at, *next;
+
+  for (scan->line = 1; at < text->end; at = next, scan->line++)
+    {
+      gsize n;
+      const char *line_end = scan_plain_row (at, text->end, scan->rows->dialect, scan->numbers, &n);
+
+      if (line_end != NULL)
+        {
+          next = line_end == text->end ? text->end : line_end + (line_end + 1 < text->end && line_end[0] == '\r' && line_end[1] == '\n' ? 2 : 1);
+          add_row (scan, at, n);
+          scan->run_end = next;
+          continue;
+        }
+      line_end = bt_text_line_end (at, text->end, &next);
+      if (scan_row (scan, at, line_end, &n))
+        {
+          add_row (scan, at, n);
+          scan->run_end = next;
+        }
+      else if (at == line_end)
+        end_run (scan);
+      else if (!is_comment (at, line_end))
+        {
+          end_run (scan);
+          scan->n_text++;
+        }
+    }
+  end_run (scan);
+}
+
+/* The first number of a row. */
+static double
+x_of (const BtRows *rows, gsize row)
+{
+  const BtRow *r = &g_array_index (rows->rows, BtRow, row);
+
+  for (gsize c = 0; c < r->n; c++)
+    if (!isnan (bt_rows_value (rows, row, c)))
+      return bt_rows_value (rows, row, c);
+  return (double) NAN;
+}
+
+/* Whether @run goes on where @table stopped: a line of text among the rows makes no new table. */
+static gboolean
+continues (const BtRows *rows, const BtTable *table, const BtTable *run)
+{
+  double first, last;
+
+  if (table->n_rows < 3)
+    return FALSE;
+  first = x_of (rows, table->first_row);
+  last = x_of (rows, table->first_row + table->n_rows - 1);
+  return (x_of (rows, run->first_row) - last) * (last - first) > 0;
+}
+
+/* Joins runs to tables; short ones that stand alone are numbers in a preamble or footer. */
+static void
+join_runs (BtRows *rows, const GArray *runs)
+{
+  BtTable table = { .n_rows = 0 }, longest = { .n_rows = 0 };
+
+  for (guint i = 0; i < runs->len; i++)
+    {
+      const BtTable *run = &g_array_index (runs, BtTable, i);
+
+      if (table.n_rows > 0 && continues (rows, &table, run))
+        {
+          /* Short runs between the two were blanked. */
+          table.n_rows = run->first_row + run->n_rows - table.first_row;
+          table.last_line = run->last_line;
+          table.n_skipped += run->n_skipped;
+        }
+      else if (table.n_rows >= BT_SPECTRUM_MIN_POINTS && run->n_rows < BT_SPECTRUM_MIN_POINTS)
+        {
+          for (gsize r = 0; r < run->n_rows; r++)
+            g_array_index (rows->rows, BtRow, run->first_row + r).n = 0;
+          continue;
+        }
+      else
+        {
+          if (table.n_rows >= BT_SPECTRUM_MIN_POINTS)
+            g_array_append_val (rows->tables, table);
+          table = *run;
+          table.n_skipped = 0;
+        }
+      if (table.n_rows > longest.n_rows)
+        longest = table;
+    }
+  if (table.n_rows >= BT_SPECTRUM_MIN_POINTS)
+    g_array_append_val (rows->tables, table);
+  else if (rows->tables->len == 0)
+    g_array_append_val (rows->tables, longest);
+}
+
+static void
+read_rows (const BtText *text, BtRows *rows)
+{
+  Scan scan = { .text = text, .rows = rows, .runs = g_array_new (FALSE, FALSE, sizeof (BtTable)), .run_end = text->at };
+
+  bt_rows_clear (rows);
+  rows->values = g_array_sized_new (FALSE, FALSE, sizeof (double), (guint) ((text->end - text->at) / 8));
+  rows->rows = g_array_sized_new (FALSE, FALSE, sizeof (BtRow), (guint) ((text->end - text->at) / 16));
+  rows->tables = g_array_new (FALSE, TRUE, sizeof (BtTable));
+  rows->percent = FALSE;
+  scan.fields = g_new (BtField, BT_MAX_COLUMNS);
+  scan.numbers = g_new (double, BT_MAX_COLUMNS);
+  scan_lines (&scan);
+  rows->below = scan.run_end;
+  if (rows->rows->len > 0)
+    join_runs (rows, scan.runs);
+  g_free (scan.fields);
+  g_free (scan.numbers);
+  g_array_unref (scan.runs);
+}
+
+gboolean
+bt_text_rows (const BtText *text, BtRows *rows)
+{
+  gsize lines = 0;
+
+  if (bt_text_sniff (text, FALSE, &rows->dialect))
+    {
+      read_rows (text, rows);
+      if (rows->rows->len > 0)
+        {
+          for (guint i = 0; i < rows->tables->len; i++)
+            lines += g_array_index (rows->tables, BtTable, i).n_rows;
+          /* The lines looked at may have held no decimals: what is left over tells. */
+          if (lines >= BT_SPECTRUM_MIN_POINTS && lines * 10 >= (gsize) g_array_index (rows->rows, BtRow, rows->rows->len - 1).line * 9
+                                                                 - g_array_index (rows->tables, BtTable, 0).first_line * 9)
+            return TRUE;
+        }
+    }
+  if (!bt_text_sniff (text, TRUE, &rows->dialect))
+    return FALSE;
+  read_rows (text, rows);
+  return rows->rows->len > 0;
+}
+
+void
+bt_rows_clear (BtRows *rows)
+{
+  g_clear_pointer (&rows->values, g_array_unref);
+  g_clear_pointer (&rows->rows, g_array_unref);
+  g_clear_pointer (&rows->tables, g_array_unref);
+}
