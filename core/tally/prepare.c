@@ -212,7 +212,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
   BtRange all;
   double level = 0;
 
-  prepared->curve = bt_film_light_path (film);
+  prepared->curve = bt_film_light_path (film, &recipe->light_path);
   if (prepared->curve == NULL || prepared->curve->n < BT_SPECTRUM_MIN_POINTS)
     {
       g_set_error (error, BT_TALLY_ERROR, BT_TALLY_ERROR_DATA,

@@ -216,9 +216,28 @@ read_held (BtRecipe *recipe, JsonObject *object, GError **error)
 }
 
 static gboolean
+read_light_path (BtRecipe *recipe, JsonObject *object, GError **error)
+{
+  const char *name;
+
+  if (json_object_has_member (object, "light_path"))
+    {
+      if (!node_text (json_object_get_member (object, "light_path"), "light_path", &name, error))
+        return FALSE;
+      if (!bt_light_path_from_name (name, &recipe->light_path.kind))
+        return refuse (error, "light_path", _ ("blank ratio, reflection or thin film"));
+    }
+  if (json_object_has_member (object, "reflectance") && JSON_NODE_HOLDS_NULL (json_object_get_member (object, "reflectance")))
+    recipe->light_path.reflectance = NAN;
+  else if (!read_number (object, "reflectance", &recipe->light_path.reflectance, error))
+    return FALSE;
+  return read_number (object, "substrate_index", &recipe->light_path.substrate_index, error);
+}
+
+static gboolean
 known_members (JsonObject *object, GError **error)
 {
-  static const char *const known[] = { "name", "range_ev", "tails", "diameter_nm", "diameter_spread_nm", "shift_ev", "max_bands",
+  static const char *const known[] = { "name", "light_path", "reflectance", "substrate_index", "range_ev", "tails", "diameter_nm", "diameter_spread_nm", "shift_ev", "max_bands",
                                        "strength_ratio", "strength_ratio_u", "strength_ratio_source", "level", "limit",
                                        "wavelengths_nm", "mean_range_nm", "max_absorbance", "excluded_ev", "held", NULL };
   g_autoptr (GList) members = json_object_get_members (object);
@@ -244,6 +263,7 @@ read_object (BtRecipe *recipe, JsonObject *object, GError **error)
   else if (!read_number (object, "limit", &recipe->limit, error))
     return FALSE;
   return known_members (object, error) && read_text (object, "name", &recipe->name, error)
+         && read_light_path (recipe, object, error)
          && read_pair (object, "range_ev", &recipe->range.low_ev, &recipe->range.high_ev, error)
          && read_tails (recipe, object, error) && read_number (object, "diameter_nm", &recipe->window.mean_nm, error)
          && read_number (object, "diameter_spread_nm", &recipe->window.spread_nm, error)
@@ -352,6 +372,9 @@ bt_recipe_to_json (const BtRecipe *recipe)
 
   json_builder_begin_object (builder);
   add_text (builder, "name", recipe->name);
+  add_text (builder, "light_path", bt_light_path_name (recipe->light_path.kind));
+  add_number (builder, "reflectance", recipe->light_path.reflectance);
+  add_number (builder, "substrate_index", recipe->light_path.substrate_index);
   json_builder_set_member_name (builder, "range_ev");
   add_pair (builder, recipe->range.low_ev, recipe->range.high_ev);
   json_builder_set_member_name (builder, "tails");

@@ -17,6 +17,7 @@ bt_recipe_new (void)
   BtRecipe *recipe = g_new0 (BtRecipe, 1);
 
   recipe->name = g_strdup ("standard");
+  recipe->light_path = (BtLightPath) BT_LIGHT_PATH_INIT;
   recipe->tails = (1u << BT_N_TAILS) - 1;
   /* The middle of the 20 to 60 meV by which bands of films lie below those of single tubes (common practice). */
   recipe->shift_ev = 0.04;
@@ -93,7 +94,9 @@ same_held (const BtRecipe *a, const BtRecipe *b)
 gboolean
 bt_recipe_equal (const BtRecipe *a, const BtRecipe *b)
 {
-  return g_strcmp0 (a->name, b->name) == 0 && same_number (a->range.low_ev, b->range.low_ev)
+  return g_strcmp0 (a->name, b->name) == 0 && a->light_path.kind == b->light_path.kind
+         && same_number (a->light_path.reflectance, b->light_path.reflectance)
+         && same_number (a->light_path.substrate_index, b->light_path.substrate_index) && same_number (a->range.low_ev, b->range.low_ev)
          && same_number (a->range.high_ev, b->range.high_ev) && a->tails == b->tails
          && same_number (a->window.mean_nm, b->window.mean_nm) && same_number (a->window.spread_nm, b->window.spread_nm)
          && same_number (a->shift_ev, b->shift_ev) && memcmp (a->max_bands, b->max_bands, sizeof a->max_bands) == 0
@@ -168,6 +171,11 @@ bt_recipe_get_held (const BtRecipe *recipe, BtGroup group, guint index, BtBandFi
 gboolean
 bt_recipe_check (const BtRecipe *recipe, GError **error)
 {
+  if (!isnan (recipe->light_path.reflectance) && !(recipe->light_path.reflectance >= 0 && recipe->light_path.reflectance < 0.9))
+    REFUSE (_ ("reflectance: the reflectance of one face has to lie between 0 and 0.9; leave it out to take it from the substrate."));
+  if (!(recipe->light_path.substrate_index >= 0) || (recipe->light_path.substrate_index > 0 && recipe->light_path.substrate_index < 1)
+      || recipe->light_path.substrate_index > 6)
+    REFUSE (_ ("substrate_index: a refractive index has to lie between 1 and 6; 0 takes it from the substrate's name."));
   if (!(recipe->range.low_ev >= 0) || !(recipe->range.high_ev >= 0)
       || (recipe->range.high_ev > 0 && recipe->range.high_ev <= recipe->range.low_ev))
     REFUSE (_ ("range_ev: the fitted range has to go from a lower to a higher energy above 0 eV; 0 leaves an end to the data."));

@@ -2,6 +2,7 @@
 #ifndef BANDTALLY_RECIPE_H
 #define BANDTALLY_RECIPE_H
 
+#include <bandtally/film.h>
 #include <bandtally/model.h>
 
 G_BEGIN_DECLS
@@ -26,6 +27,7 @@ typedef struct { BtGroup group; guint index; BtBandField field; double value; } 
 /**
  * BtRecipe:
  * @name: what it is called
+ * @light_path: how the reading became the film's own absorbance
  * @range: energies fitted, eV; 0 for an end means: as far as the data and the band plan go
  * @tails: one bit a #BtTailKind: the tails to be fitted
  * @window: diameters; mean 0 means: propose from the data
@@ -44,6 +46,7 @@ typedef struct { BtGroup group; guint index; BtBandField field; double value; } 
  */
 typedef struct {
   char *name;
+  BtLightPath light_path;
   BtRange range;
   guint tails;
   BtDiameterWindow window;

@@ -12,6 +12,7 @@ test_round_trip (void)
   g_autofree char *text = NULL;
   g_autoptr (GError) error = NULL;
 
+  recipe->light_path = (BtLightPath){ BT_LIGHT_PATH_REFLECTION, 0.042, 1.5 };
   recipe->tails = 1u << BT_TAIL_POWER;
   recipe->window = (BtDiameterWindow){ 1.37, 0.09 };
   recipe->limit = 0.98;
@@ -74,6 +75,9 @@ test_refused (void)
     { "{\"held\": [{\"group\": \"S22\", \"band\": 7, \"centre_ev\": 1}]}", "held" },
     { "{\"held\": [{\"group\": \"S22\", \"band\": 1, \"fwhm_ev\": -1}]}", "held" },
     { "{\"shift_ev\": 3}", "shift_ev" },
+    { "{\"light_path\": \"mirror\"}", "light_path" },
+    { "{\"reflectance\": 1.2}", "reflectance" },
+    { "{\"substrate_index\": 0.5}", "substrate_index" },
     { "{\"mean_range_nm\": [1100, 600]}", "mean_range_nm" },
   };
 
