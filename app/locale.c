@@ -3,6 +3,7 @@
 
 #include <gio/gio.h>
 #include <glib/gi18n.h>
+#include <langinfo.h>
 #include <locale.h>
 #include <string.h>
 
@@ -27,6 +28,9 @@ void
 app_init_locale (void)
 {
   setlocale (LC_ALL, "");
+  /* Without a locale, as on a bare machine, the terminal still shows UTF-8: better than "?" for every sign beyond ASCII. */
+  if (g_str_equal (nl_langinfo (CODESET), "ANSI_X3.4-1968"))
+    setlocale (LC_CTYPE, "C.UTF-8");
   bindtextdomain (GETTEXT_PACKAGE, runs_from_build () ? BT_BUILD_LOCALE_DIR : BT_LOCALE_DIR);
   bind_textdomain_codeset (GETTEXT_PACKAGE, "UTF-8");
   textdomain (GETTEXT_PACKAGE);
