@@ -3,6 +3,9 @@
 
 #include "desk-bench-private.h"
 
+/* The band in the hand is drawn this many widths to either side. */
+#define OUTLINE_WIDTHS 1.3
+
 static void
 set_ink (DeskBench *self, cairo_t *cr, double alpha)
 {
@@ -81,15 +84,13 @@ draw_moved_band (DeskBench *self, cairo_t *cr)
   cairo_save (cr);
   cairo_rectangle (cr, px, py, width, height);
   cairo_clip (cr);
-  for (double x = px; x <= px + width; x += 2)
+  double from = bt_figure_x_from_ev (self->figure, band->centre_ev - OUTLINE_WIDTHS * band->fwhm_ev);
+  double to = bt_figure_x_from_ev (self->figure, band->centre_ev + OUTLINE_WIDTHS * band->fwhm_ev);
+  for (double x = MAX (px, from); x <= MIN (px + width, to); x += 2)
     {
       double energy = bt_figure_ev_from_x (self->figure, x), value;
       bt_band_eval (band, &energy, 1, &value);
-      double y = bt_figure_y_from_absorbance (self->figure, desk_bench_foot (self, energy) + value);
-      if (isfinite (y))
-        cairo_line_to (cr, x, y);
-      else
-        cairo_new_sub_path (cr);
+      cairo_line_to (cr, x, bt_figure_y_from_absorbance (self->figure, desk_bench_hand_foot (self, energy) + value));
     }
   set_ink (self, cr, 0.9);
   cairo_set_line_width (cr, 2);

@@ -20,11 +20,43 @@
 #define LEAST_FWHM_EV 0.005
 #define LEAST_SPREAD_NM 0.01
 
-double
-desk_bench_foot (DeskBench *self, double energy_ev)
+static double
+foot_of (BtFigure *figure, double energy_ev)
 {
-  double foot = bt_figure_tail_at (self->figure, energy_ev);
+  double foot = bt_figure_tail_at (figure, energy_ev);
   return isnan (foot) ? 0 : foot;
+}
+
+double
+desk_bench_hand_foot (DeskBench *self, double energy_ev)
+{
+  /* Beyond the fitted range there is no tail: its end stands for it. */
+  BtTally *tally = desk_film_get_tally (self->film);
+  double inside = tally ? CLAMP (energy_ev, tally->range.low_ev + 1e-6, tally->range.high_ev - 1e-6) : energy_ev;
+  return foot_of (self->drag.figure, inside);
+}
+
+static double
+value_at (const BtBand *band, double energy_ev)
+{
+  double value;
+  bt_band_eval (band, &energy_ev, 1, &value);
+  return value;
+}
+
+double
+desk_band_peak (const BtBand *band)
+{
+  return value_at (band, band->centre_ev);
+}
+
+/* The height that puts a band's top there. */
+static double
+height_for_peak (const BtBand *band, double peak)
+{
+  BtBand unit = *band;
+  unit.height = 1;
+  return peak / desk_band_peak (&unit);
 }
 
 const BtBand *
@@ -116,7 +148,7 @@ place_band (DeskBench *self, GPtrArray *old, const BtBand *band, gboolean lit)
   desk_handle_set_held (crown, held_centre || held_height);
   desk_handle_set_shown (crown, TRUE);
   place (self, crown, BT_PANEL_SPECTRUM, bt_figure_x_from_ev (self->figure, band->centre_ev),
-         bt_figure_y_from_absorbance (self->figure, desk_bench_foot (self, band->centre_ev) + band->height));
+         bt_figure_y_from_absorbance (self->figure, foot_of (self->figure, band->centre_ev) + desk_band_peak (band)));
   for (guint i = 0; i < G_N_ELEMENTS (flanks); i++)
     {
       double energy = band->centre_ev + (i ? 0.5 : -0.5) * band->fwhm_ev;
@@ -126,7 +158,7 @@ place_band (DeskBench *self, GPtrArray *old, const BtBand *band, gboolean lit)
       desk_handle_set_held (flank, held_fwhm);
       desk_handle_set_shown (flank, lit);
       place (self, flank, BT_PANEL_SPECTRUM, bt_figure_x_from_ev (self->figure, energy),
-             bt_figure_y_from_absorbance (self->figure, desk_bench_foot (self, energy) + band->height / 2));
+             bt_figure_y_from_absorbance (self->figure, foot_of (self->figure, energy) + value_at (band, energy)));
     }
 }
 
@@ -215,8 +247,7 @@ desk_bench_band_at (DeskBench *self, double x, double y)
   for (guint i = 0; i < tally->bands->len; i++)
     {
       const BtBand *band = &g_array_index (tally->bands, BtBand, i);
-      double value;
-      bt_band_eval (band, &energy, 1, &value);
+      double value = value_at (band, energy);
       if (value > best && value > 0.05 * band->height)
         {
           best = value;
@@ -258,6 +289,8 @@ desk_bench_begin_edit (DeskBench *self, DeskHandle *handle)
   self->drag.kind = DESK_DRAG_HANDLE;
   self->drag.handle = handle;
   self->drag.recipe = own_recipe (self);
+  g_clear_pointer (&self->drag.figure, bt_figure_free);
+  self->drag.figure = desk_bench_dup_figure (self);
   self->drag.moved = FALSE;
   if (band)
     {
@@ -290,7 +323,9 @@ desk_bench_move_to (DeskBench *self, double x, double y)
     {
     case DESK_HANDLE_CROWN:
       band->centre_ev = energy;
-      band->height = MAX (bt_figure_absorbance_from_y (self->figure, y) - desk_bench_foot (self, energy), least_height (band));
+      band->height
+          = height_for_peak (band, bt_figure_absorbance_from_y (self->figure, y) - desk_bench_hand_foot (self, energy));
+      band->height = MAX (band->height, least_height (band));
       hold (self, BT_BAND_CENTRE);
       hold (self, BT_BAND_HEIGHT);
       break;
@@ -338,6 +373,7 @@ end_edit (DeskBench *self)
   self->drag.kind = DESK_DRAG_NONE;
   self->drag.handle = NULL;
   g_clear_pointer (&self->drag.recipe, bt_recipe_free);
+  g_clear_pointer (&self->drag.figure, bt_figure_free);
 }
 
 void

@@ -101,8 +101,8 @@ desk_bench_update_legend (DeskBench *self)
   else
     {
       gtk_label_set_text (GTK_LABEL (self->values), 
-                          _("Point at the figure to read it; drag a crown, a flank or the beam to correct it."));
+                          _("Point to read. Drag a crown, a flank or the beam to correct."));
       gtk_label_set_text (GTK_LABEL (self->tubes), 
-                          _("Wheel: zoom. Shift and drag: zoom to a rectangle. Alt and drag: leave a range out."));
+                          _("Wheel: zoom. Shift and drag: zoom in. Alt and drag: leave out."));
     }
 }

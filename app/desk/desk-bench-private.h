@@ -15,6 +15,7 @@ typedef struct {
   DeskHandle *handle;
   BtBand band;                   /* the band as the hand has it */
   BtRecipe *recipe;              /* being edited */
+  BtFigure *figure;              /* as it was at the start: a tail that moves with every refit would carry the hand along */
   BtFigureView view;             /* at the start, for panning */
 } DeskDrag;
 
@@ -57,8 +58,10 @@ DeskHandle *desk_bench_handle_at (DeskBench *self, double x, double y);
 const BtBand *desk_bench_band_at (DeskBench *self, double x, double y);
 const BtBand *desk_bench_band_of (DeskBench *self, DeskHandle *handle);
 void desk_bench_select_band (DeskBench *self, BtGroup group, guint index);
-/* Absorbance under a band's foot at an energy. */
-double desk_bench_foot (DeskBench *self, double energy_ev);
+/* Absorbance under the foot of the band in the hand, at an energy. */
+double desk_bench_hand_foot (DeskBench *self, double energy_ev);
+/* Absorbance of the band's top above its foot: less than its height where it has a sideband. */
+double desk_band_peak (const BtBand *band);
 void desk_bench_begin_edit (DeskBench *self, DeskHandle *handle);
 void desk_bench_move_to (DeskBench *self, double x, double y);
 void desk_bench_commit_edit (DeskBench *self);

@@ -32,6 +32,7 @@ void
 desk_bench_view_changed (DeskBench *self)
 {
   self->view.theme = desk_theme_of (GTK_WIDGET (self));
+  self->view.font_pt = desk_theme_figure_font_pt (GTK_WIDGET (self));
   lay_out (self);
   desk_bench_sync_handles (self);
   desk_bench_redraw (self);
@@ -280,12 +281,9 @@ on_size_allocate (GtkWidget *area, GdkRectangle *place, DeskBench *self)
 static void
 on_style_updated (GtkWidget *area, DeskBench *self)
 {
-  BtTheme theme = desk_theme_of (GTK_WIDGET (self));
-  if (theme != self->view.theme)
-    {
-      self->view.theme = theme;
-      desk_bench_redraw (self);
-    }
+  if (desk_theme_of (GTK_WIDGET (self)) != self->view.theme
+      || desk_theme_figure_font_pt (GTK_WIDGET (self)) != self->view.font_pt)
+    desk_bench_view_changed (self);
 }
 
 static void
@@ -307,6 +305,7 @@ desk_bench_dispose (GObject *object)
   g_clear_handle_id (&self->refresh_idle, g_source_remove);
   g_clear_handle_id (&self->commit_timer, g_source_remove);
   g_clear_pointer (&self->drag.recipe, bt_recipe_free);
+  g_clear_pointer (&self->drag.figure, bt_figure_free);
   self->drag.kind = DESK_DRAG_NONE;
   if (self->film)
     g_signal_handlers_disconnect_by_data (self->film, self);

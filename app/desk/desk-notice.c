@@ -4,7 +4,7 @@
 
 /* More lines than this scroll. */
 #define LINES_SEEN 4
-#define LINES_SEEN_PX 100
+#define LINES_SEEN_PX 90 /* half a line more, which tells that there are more */
 
 struct _DeskNotice {
   GtkInfoBar parent;

@@ -187,7 +187,7 @@ desk_rack_init (DeskRack *self)
 GtkWidget *
 desk_rack_new (GListStore *films, DeskFitter *fitter)
 {
-  DeskRack *self = g_object_new (DESK_TYPE_RACK, "width-request", 190, NULL);
+  DeskRack *self = g_object_new (DESK_TYPE_RACK, "width-request", 184, NULL);
   self->films = g_object_ref (films);
   self->fitter = g_object_ref (fitter);
   atk_object_set_name (gtk_widget_get_accessible (GTK_WIDGET (self)), _("Rack"));

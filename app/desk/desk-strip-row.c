@@ -75,6 +75,8 @@ update (DeskStripRow *self)
   gtk_widget_set_opacity (self->spinner, state == DESK_FILM_FITTING ? 1 : 0);
   gtk_widget_set_tooltip_text (GTK_WIDGET (self), desk_film_get_error (self->film) ? desk_film_get_error (self->film) : answer);
   atk_object_set_name (gtk_widget_get_accessible (GTK_WIDGET (self)), name);
+  atk_object_set_description (gtk_widget_get_accessible (GTK_WIDGET (self)),
+                              state == DESK_FILM_FITTING ? _("The fit is under way") : "");
   gtk_widget_queue_draw (GTK_WIDGET (self));
   gtk_list_box_row_changed (GTK_LIST_BOX_ROW (self));
 }

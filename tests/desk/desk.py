@@ -126,10 +126,10 @@ class Desk:
 
     def settled(self):
         """Waits until no fit is under way."""
-        until(lambda: self.answer() and not self.find(name="Fitting…") and not self.spinning(), "the fits")
+        until(lambda: self.rows() and not self.spinning() and self.answer(), "the fits")
 
     def spinning(self):
-        return [row for row in self.rows() if row.getState().contains(self.atspi.STATE_BUSY)]
+        return [row for row in self.rows() if row.description]
 
     def rows(self):
         rack = self.find(name="Films on the rack")
@@ -181,6 +181,21 @@ class Desk:
     def key(self, *names):
         for name in names:
             xdo("key", name)
+
+    def drawn(self):
+        """Waits until two pictures in a row are the same: transitions are over."""
+        import hashlib
+
+        def picture():
+            raw = subprocess.run(["import", "-window", "root", "rgb:-"], capture_output=True).stdout
+            return hashlib.sha256(raw).digest()
+        last = [picture()]
+
+        def still():
+            now = picture()
+            same_as_last, last[0] = now == last[0], now
+            return same_as_last
+        until(still, "a still picture")
 
     def shot(self, path):
         if shutil.which("import"):

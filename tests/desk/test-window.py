@@ -125,7 +125,7 @@ def beam_by_value(desk):
 def range_is_left_out(desk):
     figure = desk.wait(name="Figure")
     box = figure.queryComponent().getExtents(desk.atspi.DESKTOP_COORDS)
-    desk.press(desk.wait(role="toggle button", name="Leave a range out"))
+    desk.press(desk.wait(role="toggle button", name="Leave out"))
     y = box.y + box.height // 5
     desk.drag((box.x + box.width * 2 // 5, y), (box.x + box.width * 2 // 5 + 40, y))
     d.until(lambda: desk.value("Left out"), "the range in the ledger")
