@@ -280,6 +280,33 @@ hold (DeskBench *self, BtBandField field)
   bt_recipe_hold (self->drag.recipe, band->group, band->index, field, value);
 }
 
+/* The axes stand still while something is in the hand, whatever the refit would make of them. */
+static void
+hold_axes (DeskBench *self)
+{
+  BtFigureView shown;
+  self->drag.view = self->view;
+  bt_figure_get_shown (self->figure, &shown);
+  self->view.low_ev = shown.low_ev;
+  self->view.high_ev = shown.high_ev;
+  self->view.low_value = shown.low_value;
+  self->view.high_value = shown.high_value;
+  self->view.low_nm = shown.low_nm;
+  self->view.high_nm = shown.high_nm;
+}
+
+static void
+free_axes (DeskBench *self)
+{
+  const BtFigureView *chosen = &self->drag.view;
+  self->view.low_ev = chosen->low_ev;
+  self->view.high_ev = chosen->high_ev;
+  self->view.low_value = chosen->low_value;
+  self->view.high_value = chosen->high_value;
+  self->view.low_nm = chosen->low_nm;
+  self->view.high_nm = chosen->high_nm;
+}
+
 void
 desk_bench_begin_edit (DeskBench *self, DeskHandle *handle)
 {
@@ -292,6 +319,7 @@ desk_bench_begin_edit (DeskBench *self, DeskHandle *handle)
   g_clear_pointer (&self->drag.figure, bt_figure_free);
   self->drag.figure = desk_bench_dup_figure (self);
   self->drag.moved = FALSE;
+  hold_axes (self);
   if (band)
     {
       self->drag.band = *band;
@@ -370,6 +398,7 @@ edit_name (DeskHandle *handle)
 static void
 end_edit (DeskBench *self)
 {
+  free_axes (self);
   self->drag.kind = DESK_DRAG_NONE;
   self->drag.handle = NULL;
   g_clear_pointer (&self->drag.recipe, bt_recipe_free);

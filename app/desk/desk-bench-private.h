@@ -16,7 +16,7 @@ typedef struct {
   BtBand band;                   /* the band as the hand has it */
   BtRecipe *recipe;              /* being edited */
   BtFigure *figure;              /* as it was at the start: a tail that moves with every refit would carry the hand along */
-  BtFigureView view;             /* at the start, for panning */
+  BtFigureView view;             /* for panning: what was shown at the start; for a handle: what the user had chosen to see */
 } DeskDrag;
 
 struct _DeskBench {

@@ -62,7 +62,8 @@ desk_ledger_fill_tail (DeskSection *section, const DeskAccount *account)
       else
         {
           desk_line_set_value (line, "%s", wanted ? "–" : _("not used"));
-          desk_line_set_detail (line, NULL);
+          /* A quick fit is of one tail; the others' lines keep their place. */
+          desk_line_set_detail (line, wanted && tally ? _("waits for the whole fit") : NULL);
         }
     }
   if (tally)

@@ -69,8 +69,10 @@ desk_ledger_fill_fraction (DeskSection *section, const DeskAccount *account)
   desk_line_set_detail (line, recipe->strength_ratio_source);
   line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_LEVEL });
   desk_line_set_value (line, "%g\u00a0%%", recipe->level * 100);
-  if (account->tally)
+  if (account->tally && account->tally->budget->len)
     fill_budget (section, account->tally);
+  else if (desk_film_is_previewing (account->desk_film))
+    desk_section_keep_rest (section);
 }
 
 void

@@ -1,5 +1,8 @@
 #include "desk-section.h"
 
+/* How lines look whose numbers are of an earlier fit. */
+#define AWAITED_OPACITY 0.45
+
 struct _DeskSection {
   GtkBox parent;
   GtkWidget *title, *box;
@@ -85,6 +88,7 @@ desk_section_line (DeskSection *self, const char *name, const char *key_format, 
       g_signal_emit (self, line_added, 0, line);
     }
   desk_line_set_name (line, name);
+  gtk_widget_set_opacity (GTK_WIDGET (line), 1);
   place (self, GTK_WIDGET (line));
   return line;
 }
@@ -120,7 +124,20 @@ desk_section_subheading (DeskSection *self, const char *text)
       gtk_widget_show (label);
       g_hash_table_insert (self->lines, g_steal_pointer (&key), label);
     }
+  gtk_widget_set_opacity (label, 1);
   place (self, label);
+}
+
+void
+desk_section_keep_rest (DeskSection *self)
+{
+  g_autoptr (GList) children = gtk_container_get_children (GTK_CONTAINER (self->box));
+  for (GList *l = children; l; l = l->next)
+    if (!g_hash_table_contains (self->touched, l->data))
+      {
+        gtk_widget_set_opacity (l->data, AWAITED_OPACITY);
+        place (self, l->data);
+      }
 }
 
 void

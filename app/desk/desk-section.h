@@ -20,6 +20,8 @@ DeskLine *desk_section_field (DeskSection *self, DeskField field);
 void desk_section_sentence (DeskSection *self, const char *icon, const char *sentence);
 /* A heading of lesser rank. */
 void desk_section_subheading (DeskSection *self, const char *text);
+/* Keeps the lines that were not asked for, as they were: their numbers are on the way. */
+void desk_section_keep_rest (DeskSection *self);
 /* Drops the lines that were not asked for since desk_section_begin(). */
 void desk_section_end (DeskSection *self);
 void desk_section_close_lines (DeskSection *self);
