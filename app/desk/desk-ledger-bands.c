@@ -56,7 +56,10 @@ desk_ledger_fill_tail (DeskSection *section, const DeskAccount *account)
           g_autofree char *weight = desk_text_percent (tail->weight, tail->weight > 0.0005 && tail->weight < 0.9995 ? 1 : 0);
           g_autofree char *fraction = desk_text_uncertain (tail->fraction, tail->fraction_u, NULL);
           g_autofree char *detail = g_strdup_printf (_("fraction %s, misfit %.2f × noise"), fraction, tail->misfit);
-          desk_line_set_value (line, _("weight %s"), weight);
+          if (tally->n_tails == 1 && desk_film_is_previewing (account->desk_film))
+            desk_line_set_value (line, "%s", _("followed now"));
+          else
+            desk_line_set_value (line, _("weight %s"), weight);
           desk_line_set_detail (line, detail);
         }
       else

@@ -88,7 +88,8 @@ read_number (const char **text, double *value, double *last_place)
     return FALSE;
   char *end;
   *value = g_ascii_strtod (start, &end);
-  if (end == start || !isfinite (*value))
+  /* Hexadecimal is for programs. */
+  if (end == start || !isfinite (*value) || strspn (start, "0123456789.+-eE") < (gsize) (end - start))
     return FALSE;
   int decimals = 0, exponent = 0;
   gboolean after_point = FALSE;
@@ -151,7 +152,8 @@ convert (DeskUnit unit, const char *name, double *value, double *u)
     {
       if (strcmp (entry->name, lower) != 0)
         continue;
-      double x = *value * entry->factor;
+      /* Divided, so that 95 % is 0.95 to the last digit. */
+      double x = entry->factor < 1 ? *value / round (1 / entry->factor) : *value * entry->factor;
       *u *= entry->factor;
       if (entry->x_unit >= 0)
         {
