@@ -13,8 +13,8 @@
 
 /* Area per carbon against M11's, times the strength ratio for semiconducting groups. Invented, in the published order
  * S11 > S22 > S33 per carbon. */
-static const double strengths[BT_N_GROUPS] = { [BT_S11] = 1.6, [BT_S22] = 1.0, [BT_M11] = 1.0, [BT_S33] = 0.6, [BT_S44] = 0.5,
-                                               [BT_M22] = 0.5 };
+static const double strengths[BT_N_GROUPS]
+    = { [BT_S11] = 1.6, [BT_S22] = 1.0, [BT_M11] = 1.0, [BT_S33] = 0.6, [BT_S44] = 0.5, [BT_M22] = 0.5 };
 /* S22 loses this share of what S11 loses to doping. */
 #define BLEACH_OF_S22 0.1
 /* Thickness to which s22_absorbance and the tail refer. */
@@ -24,18 +24,33 @@ void
 bt_forecast_init (BtForecast *forecast)
 {
   *forecast = (BtForecast){
-    .window = { 1.4, 0.1 }, .fraction = 2.0 / 3, .strength_ratio = 1, .shift_ev = 0.04,
+    .window = { 1.4, 0.1 },
+    .fraction = 2.0 / 3,
+    .strength_ratio = 1,
+    .shift_ev = 0.04,
     .fwhm_ev = { [BT_S11] = 0.07, [BT_S22] = 0.10, [BT_M11] = 0.14, [BT_S33] = 0.17, [BT_S44] = 0.19, [BT_M22] = 0.19 },
-    .lorentzian = 0.2, .sideband = 0.06, .s22_absorbance = 0.25,
+    .lorentzian = 0.2,
+    .sideband = 0.06,
+    .s22_absorbance = 0.25,
     .tail = { BT_TAIL_PLASMON, 0.9, { 4.6, 1.3 }, 0.01 },
-    .low_nm = 300, .high_nm = 2500, .step_nm = 1, .noise = 5e-4, .thickness_nm = REFERENCE_THICKNESS_NM, .thickness_u_nm = 4,
-    .seed = 1 };
+    .low_nm = 300,
+    .high_nm = 2500,
+    .step_nm = 1,
+    .noise = 5e-4,
+    .thickness_nm = REFERENCE_THICKNESS_NM,
+    .thickness_u_nm = 4,
+    .seed = 1
+  };
 }
 
 gsize
 bt_forecast_n_points (const BtForecast *forecast)
 {
-  return (gsize) floor ((forecast->high_nm - forecast->low_nm) / forecast->step_nm + 1.5);
+  /* Also for numbers that make no axis: bt_forecast_compute() is the one to complain. */
+  if (!(forecast->high_nm >= forecast->low_nm && forecast->step_nm > 0
+        && (forecast->high_nm - forecast->low_nm) / forecast->step_nm <= 1e6))
+    return 0;
+  return (gsize)floor ((forecast->high_nm - forecast->low_nm) / forecast->step_nm + 1.5);
 }
 
 static gboolean
@@ -43,6 +58,68 @@ refuse (GError **error, const char *field, const char *wanted)
 {
   g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES, _ ("Forecast: %s has to be %s."), field, wanted);
   return FALSE;
+}
+
+/* Widths and the tail: arrays, so that their names are made here. */
+static gboolean
+check_shapes (const BtForecast *f, GError **error)
+{
+  for (guint g = 0; g < BT_N_GROUPS; g++)
+    if (!(f->fwhm_ev[g] >= 0.005 && f->fwhm_ev[g] <= 2))
+      {
+        g_autofree char *field = g_strdup_printf (_ ("the width of %s"), bt_group_name ((BtGroup)g));
+
+        return refuse (error, field, _ ("between 0.005 and 2 eV"));
+      }
+  if (!(f->tail.kind < BT_N_TAILS))
+    return refuse (error, _ ("the tail"), _ ("plasmon, power or exponential"));
+  if (!(f->tail.height >= 0 && f->tail.height <= 20))
+    return refuse (error, _ ("the tail's height"), _ ("between 0 and 20"));
+  if (!(fabs (f->tail.offset) <= 5))
+    return refuse (error, _ ("the tail's offset"), _ ("between -5 and 5"));
+  switch (f->tail.kind)
+    {
+    case BT_TAIL_PLASMON:
+      if (!(f->tail.shape[0] >= 2 && f->tail.shape[0] <= 10))
+        return refuse (error, _ ("the energy of the tail's pi-plasmon"), _ ("between 2 and 10 eV"));
+      if (!(f->tail.shape[1] >= 0.05 && f->tail.shape[1] <= 20))
+        return refuse (error, _ ("the half width of the tail's pi-plasmon"), _ ("between 0.05 and 20 eV"));
+      break;
+    case BT_TAIL_POWER:
+      if (!(f->tail.shape[0] >= 0 && f->tail.shape[0] <= 8))
+        return refuse (error, _ ("the tail's power"), _ ("between 0 and 8"));
+      break;
+    case BT_TAIL_EXPONENTIAL:
+    case BT_N_TAILS:
+    default:
+      if (!(f->tail.shape[0] >= 0 && f->tail.shape[0] <= 0.05))
+        return refuse (error, _ ("the tail's decay"), _ ("between 0 and 0.05 per nm"));
+    }
+  return TRUE;
+}
+
+static gboolean
+check_instrument (const BtForecast *f, GError **error)
+{
+  if (!(f->low_nm >= 100 && f->high_nm > f->low_nm && f->high_nm <= 20000))
+    return refuse (error, _ ("the range"), _ ("from a shorter to a longer wavelength within 100 to 20000 nm"));
+  if (!(f->step_nm > 0) || (f->high_nm - f->low_nm) / f->step_nm > 1e6)
+    return refuse (error, _ ("the step"), _ ("above 0 nm and at least a millionth of the range"));
+  if (bt_forecast_n_points (f) < BT_SPECTRUM_MIN_POINTS)
+    return refuse (error, _ ("the step"), _ ("small enough for at least 8 points"));
+  if (!(f->noise >= 0 && f->noise < 1))
+    return refuse (error, _ ("the noise"), _ ("between 0 and 1"));
+  if (!(f->step_at_nm >= 0 && f->step_at_nm <= 20000))
+    return refuse (error, _ ("the wavelength of the detector step"), _ ("between 0 and 20000 nm"));
+  if (!(fabs (f->step_size) <= 5))
+    return refuse (error, _ ("the size of the detector step"), _ ("between -5 and 5"));
+  if (!(f->ceiling >= 0 && f->ceiling <= 10))
+    return refuse (error, _ ("the ceiling"), _ ("between 0 and 10"));
+  if (!(f->thickness_nm > 0 && f->thickness_nm <= 1e5))
+    return refuse (error, _ ("the thickness"), _ ("above 0 nm and at most 100 um"));
+  if (!(f->thickness_u_nm >= 0 && f->thickness_u_nm <= 1e5))
+    return refuse (error, _ ("the uncertainty of the thickness"), _ ("between 0 nm and 100 um"));
+  return TRUE;
 }
 
 static gboolean
@@ -68,26 +145,13 @@ check (const BtForecast *f, GError **error)
     return refuse (error, _ ("the sideband's share"), _ ("between 0 and 0.5"));
   if (!(f->s22_absorbance > 0 && f->s22_absorbance <= 10))
     return refuse (error, _ ("the absorbance of S22"), _ ("above 0 and at most 10"));
-  if (!(f->tail.height >= 0 && f->tail.height <= 20))
-    return refuse (error, _ ("the tail's height"), _ ("between 0 and 20"));
-  if (!(f->low_nm >= 100 && f->high_nm > f->low_nm && f->high_nm <= 20000))
-    return refuse (error, _ ("the range"), _ ("from a shorter to a longer wavelength within 100 to 20000 nm"));
-  if (!(f->step_nm > 0) || (f->high_nm - f->low_nm) / f->step_nm > 1e6)
-    return refuse (error, _ ("the step"), _ ("above 0 nm and at least a millionth of the range"));
-  if (bt_forecast_n_points (f) < BT_SPECTRUM_MIN_POINTS)
-    return refuse (error, _ ("the step"), _ ("small enough for at least 8 points"));
-  if (!(f->noise >= 0 && f->noise < 1))
-    return refuse (error, _ ("the noise"), _ ("between 0 and 1"));
   if (!(f->bleach >= 0 && f->bleach <= 1))
     return refuse (error, _ ("the bleached share"), _ ("between 0 and 1"));
-  if (!(f->ceiling >= 0 && f->ceiling <= 10))
-    return refuse (error, _ ("the ceiling"), _ ("between 0 and 10"));
-  if (!(f->thickness_nm > 0 && f->thickness_nm <= 1e5))
-    return refuse (error, _ ("the thickness"), _ ("above 0 nm and at most 100 um"));
-  return TRUE;
+  return check_shapes (f, error) && check_instrument (f, error);
 }
 
-/* Carbon mass share of every tube: normal in diameter, scattered, each kind normalised to its part. */
+/* Carbon mass share of every tube: normal in diameter, scattered, each kind normalised to its part. Every window
+ * that check() lets pass holds tubes of both kinds. */
 static double *
 mass_shares (const BtForecast *f, const GArray *tubes, gsl_rng *rng)
 {
@@ -114,9 +178,11 @@ mass_shares (const BtForecast *f, const GArray *tubes, gsl_rng *rng)
 
 /* Adds a line of this area; both shapes have the same FWHM. */
 static void
-add_line (const BtForecast *f, const double *energy_ev, gsize n, double centre, double fwhm, double area, double *out, double *scratch)
+add_line (const BtForecast *f, const double *energy_ev, gsize n, double centre, double fwhm, double area, double *out,
+          double *scratch)
 {
-  const double gaussian = area * (1 - f->lorentzian) / (BT_GAUSSIAN_AREA * fwhm), lorentzian = area * f->lorentzian / (G_PI / 2 * fwhm);
+  const double gaussian = area * (1 - f->lorentzian) / (BT_GAUSSIAN_AREA * fwhm),
+               lorentzian = area * f->lorentzian / (G_PI / 2 * fwhm);
 
   bt_gaussian_eval (energy_ev, n, centre, fwhm, scratch);
   for (gsize i = 0; i < n; i++)
@@ -142,17 +208,18 @@ group_strength (const BtForecast *f, BtGroup group)
 
 /* Adds every line of a tube. Random numbers are drawn in a fixed order whatever the options. */
 static void
-add_tube (const BtForecast *f, BtTube tube, double share, gsl_rng *rng, const double *energy_ev, gsize n, double *out, double *scratch)
+add_tube (const BtForecast *f, BtTube tube, double share, gsl_rng *rng, const double *energy_ev, gsize n, double *out,
+          double *scratch)
 {
   for (guint g = 0; g < BT_N_GROUPS; g++)
     {
-      const gboolean two = !isnan (bt_tube_energy_ev (tube, (BtGroup) g, 1, BT_REFERENCE_EMPIRICAL));
+      const gboolean two = !isnan (bt_tube_energy_ev (tube, (BtGroup)g, 1, BT_REFERENCE_EMPIRICAL));
 
       for (int branch = 0; branch < 2; branch++)
         {
-          double centre = bt_tube_energy_ev (tube, (BtGroup) g, branch, BT_REFERENCE_EMPIRICAL);
+          double centre = bt_tube_energy_ev (tube, (BtGroup)g, branch, BT_REFERENCE_EMPIRICAL);
           double jitter = gsl_ran_gaussian (rng, 1) * f->jitter_ev;
-          double area = share * group_strength (f, (BtGroup) g) / (two ? 2 : 1);
+          double area = share * group_strength (f, (BtGroup)g) / (two ? 2 : 1);
           double side = g == BT_S11 || g == BT_S22 ? f->sideband : 0;
 
           if (isnan (centre) || !(area > 0))
@@ -223,15 +290,16 @@ add_instrument (const BtForecast *f, const double *wavelength_nm, double *absorb
 gboolean
 bt_forecast_compute (const BtForecast *f, double *wavelength_nm, double *absorbance, GError **error)
 {
-  const gsize n = bt_forecast_n_points (f);
   const double reach = 4 * f->window.spread_nm, scale = f->thickness_nm / REFERENCE_THICKNESS_NM;
   g_autoptr (GArray) tubes = NULL;
   g_autofree double *energy = NULL, *scratch = NULL, *tail = NULL, *share = NULL;
   double crown;
+  gsize n;
   gsl_rng *rng;
 
   if (!check (f, error))
     return FALSE;
+  n = bt_forecast_n_points (f);
   tubes = bt_tubes_in_diameter (fmax (0.35, f->window.mean_nm - reach), f->window.mean_nm + reach);
   crown = s22_crown (f, tubes);
   if (!(crown > 0))
@@ -241,12 +309,12 @@ bt_forecast_compute (const BtForecast *f, double *wavelength_nm, double *absorba
   tail = g_new (double, n);
   for (gsize i = 0; i < n; i++)
     {
-      wavelength_nm[i] = f->low_nm + f->step_nm * (double) i;
+      wavelength_nm[i] = f->low_nm + f->step_nm * (double)i;
       energy[i] = bt_ev_from_nm (wavelength_nm[i]);
       absorbance[i] = 0;
     }
   rng = gsl_rng_alloc (gsl_rng_mt19937);
-  gsl_rng_set (rng, (unsigned long) f->seed);
+  gsl_rng_set (rng, (unsigned long)f->seed);
   share = mass_shares (f, tubes, rng);
   for (guint i = 0; i < tubes->len; i++)
     add_tube (f, g_array_index (tubes, BtTube, i), share[i], rng, energy, n, absorbance, scratch);
@@ -266,6 +334,62 @@ note (GString *text, const char *key, double value)
   g_string_append_printf (text, "# %s = %s\n", key, g_ascii_formatd (buffer, sizeof buffer, "%.6g", value));
 }
 
+/* A name that stays on its line of the preamble. */
+static void
+note_name (GString *text, const char *key, const char *name)
+{
+  g_autofree char *line = g_strdelimit (g_strdup (name != NULL ? name : "forecast"), "\r\n\v\f", ' ');
+
+  g_string_append_printf (text, "# %s = %s\n", key, line);
+}
+
+static void
+note_population (GString *text, const BtForecast *f)
+{
+  note (text, "made with semiconducting fraction", f->fraction);
+  note (text, "made with strength ratio", f->strength_ratio);
+  note (text, "made with diameter nm", f->window.mean_nm);
+  note (text, "made with diameter spread nm", f->window.spread_nm);
+  note (text, "made with abundance scatter", f->abundance_scatter);
+  note (text, "made with energy jitter eV", f->jitter_ev);
+  note (text, "made with red shift eV", f->shift_ev);
+  for (guint g = 0; g < BT_N_GROUPS; g++)
+    {
+      g_autofree char *key = g_strdup_printf ("made with %s FWHM eV", bt_group_name ((BtGroup)g));
+
+      note (text, key, f->fwhm_ev[g]);
+    }
+  note (text, "made with Lorentzian share", f->lorentzian);
+  note (text, "made with sideband share", f->sideband);
+  note (text, "made with S22 absorbance at 100 nm", f->s22_absorbance);
+  if (f->bleach > 0)
+    note (text, "made with share of S11 bleached", f->bleach);
+}
+
+static void
+note_tail_and_instrument (GString *text, const BtForecast *f)
+{
+  static const char *const shape_names[BT_N_TAILS][2]
+      = { [BT_TAIL_PLASMON] = { "made with tail centre eV", "made with tail half width eV" },
+          [BT_TAIL_POWER] = { "made with tail power", NULL },
+          [BT_TAIL_EXPONENTIAL] = { "made with tail decay per nm", NULL } };
+
+  g_string_append_printf (text, "# made with tail = %s\n", bt_tail_name (f->tail.kind));
+  note (text, "made with tail height", f->tail.height);
+  for (guint k = 0; k < 2 && shape_names[f->tail.kind][k] != NULL; k++)
+    note (text, shape_names[f->tail.kind][k], f->tail.shape[k]);
+  note (text, "made with tail offset", f->tail.offset);
+  note (text, "made with noise", f->noise);
+  if (f->step_at_nm > 0)
+    {
+      note (text, "made with detector step at nm", f->step_at_nm);
+      note (text, "made with detector step of", f->step_size);
+    }
+  if (f->ceiling > 0)
+    note (text, "made with instrument ceiling", f->ceiling);
+  g_string_append_printf (text, "# made with seed = %" G_GUINT64_FORMAT "\n", f->seed);
+}
+
 char *
 bt_forecast_to_text (const BtForecast *f, const char *film, const char *lot, GError **error)
 {
@@ -277,30 +401,13 @@ bt_forecast_to_text (const BtForecast *f, const char *film, const char *lot, GEr
   if (!bt_forecast_compute (f, wavelength_nm, absorbance, error))
     return NULL;
   text = g_string_new ("# Invented data: made by bandtally-cli forecast, not measured on any film.\n");
-  g_string_append_printf (text, "# film = %s\n# lot = %s\n# substrate = fused silica\n", film != NULL ? film : "forecast",
-                          lot != NULL ? lot : "forecast");
+  note_name (text, "film", film);
+  note_name (text, "lot", lot);
+  g_string_append (text, "# substrate = fused silica\n");
   note (text, "thickness nm", f->thickness_nm);
   note (text, "thickness u nm", f->thickness_u_nm);
-  note (text, "made with semiconducting fraction", f->fraction);
-  note (text, "made with strength ratio", f->strength_ratio);
-  note (text, "made with diameter nm", f->window.mean_nm);
-  note (text, "made with diameter spread nm", f->window.spread_nm);
-  note (text, "made with abundance scatter", f->abundance_scatter);
-  note (text, "made with energy jitter eV", f->jitter_ev);
-  note (text, "made with red shift eV", f->shift_ev);
-  g_string_append_printf (text, "# made with tail = %s\n", bt_tail_name (f->tail.kind));
-  note (text, "made with tail height", f->tail.height);
-  note (text, "made with noise", f->noise);
-  if (f->step_at_nm > 0)
-    {
-      note (text, "made with detector step at nm", f->step_at_nm);
-      note (text, "made with detector step of", f->step_size);
-    }
-  if (f->bleach > 0)
-    note (text, "made with share of S11 bleached", f->bleach);
-  if (f->ceiling > 0)
-    note (text, "made with instrument ceiling", f->ceiling);
-  note (text, "made with seed", (double) f->seed);
+  note_population (text, f);
+  note_tail_and_instrument (text, f);
   g_string_append (text, "wavelength_nm,absorbance\n");
   for (gsize i = 0; i < n; i++)
     g_string_append_printf (text, "%s,%s\n", g_ascii_formatd (x, sizeof x, "%.8g", wavelength_nm[i]),
