@@ -8,25 +8,18 @@
 
 #include "bt-reference-resource.h"
 
-/* Scaling law, Araujo et al., Phys. Rev. Lett. 98, 067401 (2007): constants common to all transitions, stated in scaling.csv too. */
-#define LAW_A 1.049
-#define LAW_B 0.456
-#define LAW_C 0.812
-#define LAW_EXTRA 0.305
-/* Simple tight binding: 2 p a_cc g0 / d with g0 in eV (optics) and a_cc in nm. */
-#define TIGHT_BINDING_G0 2.9
-#define CARBON_BOND_NM 0.144
-
 typedef struct { double a, b, mod1, mod2; } Empirical;
 typedef struct { double p, lower, upper; } Scaling;
 
 static Empirical empirical[BT_N_GROUPS];
 static Scaling scaling[BT_N_GROUPS];
+static struct { double scaling_a, scaling_b, scaling_c, scaling_extra, tight_binding_g0, tight_binding_a_cc; } constants;
 
-/* Numbers of each row of a table whose first column is a group: row (group, numbers). */
+/* Hands each row of a table to @row: the name in its first column and the numbers after it. */
 static void
-read_table (const char *path, void (*row) (BtGroup group, const double *numbers))
+read_table (const char *file, void (*row) (const char *name, const double *numbers))
 {
+  g_autofree char *path = g_build_path ("/", "/org/bandtally/reference", file, NULL);
   g_autoptr (GBytes) bytes = g_resource_lookup_data (bt_reference_get_resource (), path, G_RESOURCE_LOOKUP_FLAGS_NONE, NULL);
   g_auto (GStrv) lines = NULL;
 
@@ -36,26 +29,48 @@ read_table (const char *path, void (*row) (BtGroup group, const double *numbers)
     {
       g_auto (GStrv) fields = g_strsplit (lines[i], ",", 6);
       double numbers[5] = { 0 };
-      BtGroup group;
 
-      if (fields[0] == NULL || !bt_group_from_name (fields[0], &group))
+      if (fields[0] == NULL || fields[0][0] == '#')
         continue;
       for (gsize k = 1; fields[k] != NULL && k <= 5; k++)
         numbers[k - 1] = g_ascii_strtod (fields[k], NULL);
-      row (group, numbers);
+      row (fields[0], numbers);
     }
 }
 
 static void
-empirical_row (BtGroup group, const double *numbers)
+empirical_row (const char *name, const double *numbers)
 {
-  empirical[group] = (Empirical){ numbers[0], numbers[1], numbers[2], numbers[3] };
+  BtGroup group;
+
+  if (bt_group_from_name (name, &group))
+    empirical[group] = (Empirical){ numbers[0], numbers[1], numbers[2], numbers[3] };
 }
 
 static void
-scaling_row (BtGroup group, const double *numbers)
+scaling_row (const char *name, const double *numbers)
 {
-  scaling[group] = (Scaling){ numbers[0], numbers[1], numbers[2] };
+  BtGroup group;
+
+  if (bt_group_from_name (name, &group))
+    scaling[group] = (Scaling){ numbers[0], numbers[1], numbers[2] };
+}
+
+static void
+constants_row (const char *name, const double *numbers)
+{
+  const struct { const char *name; double *value; } known[] = {
+    { "scaling_a", &constants.scaling_a },
+    { "scaling_b", &constants.scaling_b },
+    { "scaling_c", &constants.scaling_c },
+    { "scaling_extra", &constants.scaling_extra },
+    { "tight_binding_g0", &constants.tight_binding_g0 },
+    { "tight_binding_a_cc", &constants.tight_binding_a_cc },
+  };
+
+  for (gsize i = 0; i < G_N_ELEMENTS (known); i++)
+    if (g_str_equal (name, known[i].name))
+      *known[i].value = numbers[0];
 }
 
 static void
@@ -65,8 +80,9 @@ read_tables (void)
 
   if (g_once_init_enter (&done))
     {
-      read_table ("/org/bandtally/reference/empirical.csv", empirical_row);
-      read_table ("/org/bandtally/reference/scaling.csv", scaling_row);
+      read_table ("constants.csv", constants_row);
+      read_table ("empirical.csv", empirical_row);
+      read_table ("scaling.csv", scaling_row);
       g_once_init_leave (&done, 1);
     }
 }
@@ -77,12 +93,14 @@ per_cm_to_ev (double per_cm)
   return bt_energy_ev_from_x (per_cm, BT_X_PER_CM);
 }
 
+/* Araujo et al., Phys. Rev. Lett. 98, 067401 (2007), without the chirality term; p = 6 (M22) extrapolates it. */
 static double
 law (double diameter_nm, double p)
 {
   double k = p / diameter_nm;
 
-  return LAW_A * k * (1 + LAW_B * log10 (LAW_C / k)) + (p > 3 ? LAW_EXTRA / diameter_nm : 0);
+  return constants.scaling_a * k * (1 + constants.scaling_b * log10 (constants.scaling_c / k))
+         + (p > 3 ? constants.scaling_extra / diameter_nm : 0);
 }
 
 double
@@ -91,7 +109,7 @@ bt_group_energy_ev (double diameter_nm, BtGroup group, BtReferenceSet set)
   g_return_val_if_fail (group < BT_N_GROUPS && diameter_nm > 0, NAN);
   read_tables ();
   if (set == BT_REFERENCE_TIGHT_BINDING)
-    return 2 * scaling[group].p * CARBON_BOND_NM * TIGHT_BINDING_G0 / diameter_nm;
+    return 2 * scaling[group].p * constants.tight_binding_a_cc * constants.tight_binding_g0 / diameter_nm;
   if (set == BT_REFERENCE_EMPIRICAL && empirical[group].b > 0)
     return per_cm_to_ev (1e7 / (empirical[group].a + empirical[group].b * diameter_nm));
   return law (diameter_nm, scaling[group].p);

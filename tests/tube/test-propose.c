@@ -29,8 +29,8 @@ propose (BtSpectrum *spectrum, BtDiameterWindow *window)
 }
 
 /* The measured, unsorted film of Ermolaev et al., Appl. Phys. Lett. 116, 231103 (2020) (CC0 1.0). Its curve's own minima of the
- * second derivative, S11 0.616, S22 1.046 and M11 1.616 eV, have to lie in the windows of the plan that is proposed for it; tubes
- * from floating-catalyst growth are 1.5 to 2.1 nm wide (from memory). */
+ * second derivative, S11 0.616, S22 1.046 and M11 1.616 eV, have to lie in the windows of the plan that is proposed for it;
+ * tubes from floating-catalyst growth are 1.5 to 2.1 nm wide (from memory). */
 static void
 test_measured_film (void)
 {
@@ -54,8 +54,8 @@ test_measured_film (void)
     }
 }
 
-/* Acid can bleach nearly all of S11: still within 0.06 nm, as for an undoped film. Instruments that end at 1100 nm see M11 and at
- * best S22, whose pattern alone tells less: within 0.1 nm. */
+/* Acid can bleach nearly all of S11: still within 0.06 nm, as for an undoped film. Instruments that end at 1100 nm see M11 and
+ * at best S22, whose pattern alone tells less: within 0.1 nm. */
 static void
 test_short_and_doped (void)
 {
