@@ -105,6 +105,8 @@ grade_file (Job *job, const BatchSettings *settings, GCancellable *cancellable)
 
       set_thickness (film, settings);
       bt_film_set_blank (film, settings->blank);
+      if (settings->substrate != NULL)
+        bt_film_set_substrate (film, settings->substrate);
       tally = bt_tally_film (film, settings->recipe, BT_EFFORT_FULL, NULL, NULL, NULL, cancellable, &error);
       if (tally != NULL)
         {

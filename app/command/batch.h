@@ -11,6 +11,7 @@ G_BEGIN_DECLS
  * @recipe: for all films
  * @reading: what the user states about the files
  * @blank: (nullable): for all films
+ * @substrate: (nullable): for all films; NULL: as the files say
  * @thickness_nm: for all films; NAN: as the files say
  * @thickness_u_nm: NAN: as the files say, or unknown with a thickness of the user's
  * @jobs: threads
@@ -20,6 +21,7 @@ typedef struct
   const BtRecipe *recipe;
   BtReadOptions reading;
   BtSpectrum *blank;
+  const char *substrate;
   double thickness_nm, thickness_u_nm;
   int jobs;
 } BatchSettings;

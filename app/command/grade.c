@@ -16,6 +16,7 @@ typedef struct
   char *blank, *recipe, *json, *csv, *report;
   char *thickness_nm, *thickness_u_nm, *diameter_nm, *diameter_spread_nm;
   char *strength_ratio, *strength_ratio_u, *limit, *level, *wavelengths_nm;
+  char *light_path, *reflectance, *substrate, *substrate_index;
   char *x_unit, *y_unit, *jobs, *paper;
 } Options;
 
@@ -39,7 +40,11 @@ options_clear (Options *options)
                        &options->x_unit,
                        &options->y_unit,
                        &options->jobs,
-                       &options->paper };
+                       &options->paper,
+                       &options->light_path,
+                       &options->reflectance,
+                       &options->substrate,
+                       &options->substrate_index };
 
   for (gsize i = 0; i < G_N_ELEMENTS (strings); i++)
     g_clear_pointer (strings[i], g_free);
@@ -55,6 +60,13 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
     { "thickness-u-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_u_nm, N_ ("its standard uncertainty"), "X" },
     { "blank", 0, 0, G_OPTION_ARG_FILENAME, &options->blank, N_ ("spectrum of the substrate alone, taken off every film"),
       "FILE" },
+    { "substrate", 0, 0, G_OPTION_ARG_STRING, &options->substrate, N_ ("what the films lie on; without it the files' own"),
+      N_ ("NAME") },
+    { "light-path", 0, 0, G_OPTION_ARG_STRING, &options->light_path, N_ ("blank-ratio (default), reflection or thin-film"),
+      N_ ("PATH") },
+    { "reflectance", 0, 0, G_OPTION_ARG_STRING, &options->reflectance, N_ ("of one face, for the light path reflection"), "X" },
+    { "substrate-index", 0, 0, G_OPTION_ARG_STRING, &options->substrate_index,
+      N_ ("refractive index of a substrate without a known one"), "X" },
     { "diameter-nm", 0, 0, G_OPTION_ARG_STRING, &options->diameter_nm, N_ ("mean diameter; without it proposed from the data"),
       "X" },
     { "diameter-spread-nm", 0, 0, G_OPTION_ARG_STRING, &options->diameter_spread_nm,
@@ -143,6 +155,8 @@ parse_recipe_numbers (const Options *options, BtRecipe *recipe, GError **error)
       N_ ("a number from 0.005 to 2 (nm)") },
     { "--strength-ratio", options->strength_ratio, &recipe->strength_ratio, 0.01, 100, N_ ("a number from 0.01 to 100") },
     { "--strength-ratio-u", options->strength_ratio_u, &recipe->strength_ratio_u, 0, 100, N_ ("a number from 0 to 100") },
+    { "--reflectance", options->reflectance, &recipe->light_path.reflectance, 0, 0.9, N_ ("a reflectance from 0 to 0.9") },
+    { "--substrate-index", options->substrate_index, &recipe->light_path.substrate_index, 1, 6, N_ ("an index from 1 to 6") },
     { "--limit", options->limit, &recipe->limit, 0, 1, N_ ("a share from 0 to 1 (0.9 for 90 %)") },
     { "--level", options->level, &recipe->level, 0.5, 0.9999, N_ ("a level from 0.5 to 0.9999 (0.95 for 95 %)") },
   };
@@ -159,6 +173,21 @@ parse_recipe_numbers (const Options *options, BtRecipe *recipe, GError **error)
       recipe->strength_ratio_source = g_strdup (_ ("stated on the command line"));
     }
   return TRUE;
+}
+
+static gboolean
+parse_light_path (const char *text, BtRecipe *recipe, GError **error)
+{
+  char *name;
+  gboolean known;
+
+  if (text == NULL)
+    return TRUE;
+  /* "thin film" in files, "thin-film" where a blank would have to be quoted. */
+  name = g_strdelimit (g_ascii_strdown (text, -1), "-", ' ');
+  known = bt_light_path_from_name (name, &recipe->light_path.kind);
+  g_free (name);
+  return known || bad_value ("--light-path", _ ("blank-ratio, reflection or thin-film"), text, error);
 }
 
 /* (transfer full): the recipe of the file, or the default one, with the options' own values. */
@@ -182,7 +211,8 @@ make_recipe (const Options *options, GError **error)
       g_array_unref (recipe->wavelengths_nm);
       recipe->wavelengths_nm = wavelengths_nm;
     }
-  if (!parse_recipe_numbers (options, recipe, error) || !bt_recipe_check (recipe, error))
+  if (!parse_recipe_numbers (options, recipe, error) || !parse_light_path (options->light_path, recipe, error)
+      || !bt_recipe_check (recipe, error))
     {
       bt_recipe_free (recipe);
       return NULL;
@@ -201,6 +231,7 @@ make_settings (const Options *options, BatchSettings *settings, GError **error)
   };
 
   settings->thickness_nm = settings->thickness_u_nm = NAN;
+  settings->substrate = options->substrate;
   settings->reading = (BtReadOptions)BT_READ_OPTIONS_INIT;
   if (!parse_numbers (numbers, G_N_ELEMENTS (numbers), error)
       || !parse_units (options->x_unit, options->y_unit, &settings->reading, error))

@@ -176,6 +176,28 @@ def test_blank_is_taken_off():
 
 
 @test
+def test_light_path_is_taken():
+    """A slab's transmittance T = (1-R)^2 e^-x / (1 - R^2 e^-2x) must give back its own depth x by the light path "reflection"."""
+    with Folder() as folder:
+        points = read_film(folder.film("film.csv", "--noise", "0"))
+        reflectance = 0.04
+        slab = []
+        for x, y in points:
+            e = 10 ** -y
+            slab.append((x, -math.log10((1 - reflectance) ** 2 * e / (1 - reflectance ** 2 * e * e))))
+        path = folder.write("slab.csv", "wavelength_nm,absorbance\n" + "".join(f"{x},{y!r}\n" for x, y in slab))
+        graded = grade_json(path, "--light-path", "reflection", "--reflectance", str(reflectance), "--wavelengths-nm",
+                            "552,980,1552")["films"][0]
+        assert graded["recipe"]["light_path"] == "reflection" and graded["recipe"]["reflectance"] == reflectance
+        for reading in graded["absorbance"]:
+            assert abs(reading["value"] - interpolate(points, reading["wavelength_nm"])) < 1e-6, reading
+        thin = grade_json(path, "--light-path", "thin-film", "--substrate-index", "1.46", "--thickness-nm", "30")["films"][0]
+        assert thin["recipe"]["light_path"] == "thin film" and thin["light_path"] != graded["light_path"]
+        named = grade_json(path, "--light-path", "thin-film", "--substrate", "sapphire", "--thickness-nm", "30")["films"][0]
+        holds(named["light_path"], "sapphire")
+
+
+@test
 def test_without_a_thickness_there_is_a_fraction_but_no_alpha():
     with Folder() as folder:
         points = read_film(folder.film())

@@ -3,7 +3,7 @@ from whole_program import Folder, holds, main, run, test
 
 OPTIONS = {
     "grade": ["thickness-nm", "thickness-u-nm", "blank", "diameter-nm", "diameter-spread-nm", "strength-ratio", "strength-ratio-u",
-              "limit", "level", "wavelengths-nm", "recipe", "x-unit", "y-unit", "json", "csv", "report", "paper", "jobs"],
+              "limit", "level", "wavelengths-nm", "recipe", "substrate", "light-path", "reflectance", "substrate-index", "x-unit", "y-unit", "json", "csv", "report", "paper", "jobs"],
     "inspect": ["points", "spectrum", "x-unit", "y-unit"],
     "energies": ["tube", "diameter-nm", "diameter-spread-nm", "set", "shift-mev", "nm", "csv"],
     "forecast": ["film", "lot", "fraction", "diameter-nm", "diameter-spread-nm", "thickness-nm", "thickness-u-nm", "tail",
@@ -31,6 +31,9 @@ WRONG = [
     (["grade", "--wavelengths-nm", "550;650", "film.csv"], ["--wavelengths-nm", "550;650"]),
     (["grade", "--wavelengths-nm", "550,,650", "film.csv"], ["--wavelengths-nm"]),
     (["grade", "--wavelengths-nm", "0", "film.csv"], ["--wavelengths-nm"]),
+    (["grade", "--light-path", "mirror", "film.csv"], ["--light-path", "thin-film"]),
+    (["grade", "--reflectance", "1", "film.csv"], ["--reflectance", "0.9"]),
+    (["grade", "--substrate-index", "0.5", "film.csv"], ["--substrate-index"]),
     (["grade", "--jobs", "0", "film.csv"], ["--jobs"]),
     (["grade", "--jobs", "1.5", "film.csv"], ["--jobs", "1.5"]),
     (["grade", "--paper", "a3", "film.csv"], ["--paper", "a3"]),
