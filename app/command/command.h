@@ -20,6 +20,7 @@ int grade_command (int argc, char **argv);
 int inspect_command (int argc, char **argv);
 int energies_command (int argc, char **argv);
 int forecast_command (int argc, char **argv);
+int check_command (int argc, char **argv);
 
 /**
  * command_parse:
