@@ -134,8 +134,8 @@ count_numbers (const BtRows *rows, const BtTable *table, gsize n_columns)
 
   for (gsize r = table->first_row; r < table->first_row + table->n_rows; r++)
     {
-      const BtRow row = g_array_index (rows->rows, BtRow, r);
-      const double *values = &g_array_index (rows->values, double, row.start);
+      const BtRow row = rows->rows[r];
+      const double *values = rows->values + row.start;
 
       for (gsize c = 0; c < row.n; c++)
         counts[c] += isnan (values[c]) ? 0 : 1;
@@ -370,7 +370,7 @@ bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, co
 
   columns->choices = g_array_new (FALSE, TRUE, sizeof (BtChoice));
   for (gsize r = table->first_row; r < table->first_row + table->n_rows; r++)
-    columns->n_columns = MAX (columns->n_columns, g_array_index (rows->rows, BtRow, r).n);
+    columns->n_columns = MAX (columns->n_columns, rows->rows[r].n);
   counts = count_numbers (rows, table, columns->n_columns);
   bt_text_headers (rows, table, columns);
   while (x + 1 < columns->n_columns && counts[x] < enough)

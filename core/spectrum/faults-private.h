@@ -5,11 +5,11 @@
 #include <bandtally/spectrum.h>
 
 /* (transfer full): standard uncertainty of each of @n points. */
-double *bt_faults_noise (const double *energy_ev, const double *absorbance, gsize n);
+G_GNUC_INTERNAL double *bt_faults_noise (const double *energy_ev, const double *absorbance, gsize n);
 /* Appends BtRange. */
-void bt_faults_find_saturated (const double *energy_ev, const double *absorbance, const double *noise, gsize n, GArray *saturated);
+G_GNUC_INTERNAL void bt_faults_find_saturated (const double *energy_ev, const double *absorbance, const double *noise, gsize n, GArray *saturated);
 /* Appends BtStep, by energy. */
-void bt_faults_find_steps (const double *energy_ev, const double *absorbance, const double *noise, gsize n, const GArray *saturated,
+G_GNUC_INTERNAL void bt_faults_find_steps (const double *energy_ev, const double *absorbance, const double *noise, gsize n, const GArray *saturated,
                            GArray *steps);
 
 #endif

@@ -32,7 +32,10 @@ convert_slowly (const char *text, gsize n, char decimal, double *value)
   whole = end == copy + n;
   if (copy != buffer)
     g_free (copy);
-  return whole && isfinite (*value);
+  /* Beyond every double: no reading. */
+  if (!isfinite (*value))
+    *value = (double) NAN;
+  return whole;
 }
 
 /* The exponent behind a mantissa, E or (Fortran) D: returns where it ends, NULL where the letter has no digits behind it. */

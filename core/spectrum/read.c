@@ -181,17 +181,17 @@ static BtSpectrum *
 make_spectrum (const BtText *text, const BtRows *rows, const BtTable *table, const BtColumns *columns, const BtChoice *choice,
                const char *title, BtSource *source, GError **error)
 {
-  g_autofree double *x = g_new (double, table->n_rows + 1), *y = g_new (double, table->n_rows + 1);
+  double *x = g_new (double, table->n_rows + 1), *y = g_new (double, table->n_rows + 1), high = -INFINITY;
   g_autofree char *reading = describe (text, rows, table, columns, choice);
   const gsize n = take_points (rows, table, choice, x, y);
-  BtSpectrum *spectrum = bt_spectrum_new (x, y, n, choice->x_unit, choice->y_unit, title, error);
-  double high = -INFINITY;
+  BtSpectrum *spectrum;
 
+  for (gsize i = 0; i < n; i++)
+    high = y[i] > high ? y[i] : high;
+  spectrum = bt_spectrum_new_take (x, y, n, choice->x_unit, choice->y_unit, title, error);
   if (spectrum == NULL)
     return NULL;
   bt_spectrum_set_origin (spectrum, source, reading);
-  for (gsize i = 0; i < n; i++)
-    high = y[i] > high ? y[i] : high;
   flag_reading (spectrum, table, choice, high);
   return spectrum;
 }
@@ -317,7 +317,7 @@ bt_spectrum_read_file (const char *path, const BtReadOptions *options, GError **
   if (!g_file_get_contents (path, &text, &size, &reason))
     {
       if (g_error_matches (reason, G_FILE_ERROR, G_FILE_ERROR_NOENT))
-        g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_OPEN, _ ("%s: there is no such file; was it moved or renamed?"), name);
+        g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_OPEN, _ ("%s: there is no such file; look whether it was moved or renamed."), name);
       else if (g_error_matches (reason, G_FILE_ERROR, G_FILE_ERROR_ACCES))
         g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_OPEN, _ ("%s: you may not read this file; ask its owner for permission."), name);
       else

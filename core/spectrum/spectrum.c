@@ -127,6 +127,8 @@ absorbance_of (double y, BtYUnit unit, double *absorbance)
 static gsize
 usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark, guint *n_bad_x)
 {
+  const gboolean inverse = self->x_unit == BT_X_NM || self->x_unit == BT_X_UM;
+  const double factor = bt_energy_ev_from_x (1, self->x_unit);
   gsize n = 0;
 
   for (gsize i = 0; i < self->n_raw; i++)
@@ -140,7 +142,7 @@ usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark,
       else if (!absorbance_of (self->raw_y[i], self->y_unit, &a))
         (*n_dark)++;
       else
-        points[n++] = (Point){ bt_energy_ev_from_x (x, self->x_unit), a };
+        points[n++] = (Point){ inverse ? factor / x : factor * x, a };
     }
   return n;
 }
@@ -253,8 +255,8 @@ fill_axes (BtSpectrum *self, GError **error)
     {
       self->energy_ev[i] = points[i].energy;
       self->absorbance[i] = points[i].absorbance;
-      low = fmin (low, points[i].absorbance);
-      high = fmax (high, points[i].absorbance);
+      low = points[i].absorbance < low ? points[i].absorbance : low;
+      high = points[i].absorbance > high ? points[i].absorbance : high;
       n_beyond += points[i].absorbance > MOST_ABSORBANCE ? 1 : 0;
     }
   if (!(high > low))
@@ -318,19 +320,23 @@ judge (BtSpectrum *self)
 }
 
 BtSpectrum *
-bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit x_unit, BtYUnit y_unit, const char *title, GError **error)
+bt_spectrum_new_take (double *x, double *y, gsize n, BtXUnit x_unit, BtYUnit y_unit, const char *title, GError **error)
 {
   g_autoptr (BtSpectrum) self = g_object_new (BT_TYPE_SPECTRUM, NULL);
 
   self->n_raw = n;
-  self->raw_x = g_memdup2 (x, sizeof (double) * n);
-  self->raw_y = g_memdup2 (y, sizeof (double) * n);
+  self->raw_x = x;
+  self->raw_y = y;
   self->x_unit = x_unit;
   self->y_unit = y_unit;
   self->title = g_strdup (title != NULL ? title : "");
-  if (!fill_axes (self, error))
-    return NULL;
-  return g_steal_pointer (&self);
+  return fill_axes (self, error) ? g_steal_pointer (&self) : NULL;
+}
+
+BtSpectrum *
+bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit x_unit, BtYUnit y_unit, const char *title, GError **error)
+{
+  return bt_spectrum_new_take (g_memdup2 (x, sizeof (double) * n), g_memdup2 (y, sizeof (double) * n), n, x_unit, y_unit, title, error);
 }
 
 void

@@ -37,7 +37,10 @@ scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numb
         at++;
       if (count == BT_MAX_COLUMNS)
         return NULL;
-      behind = at = bt_text_scan_number (at, end, dialect.decimal, &numbers[count]);
+      behind = bt_text_scan_plain (at, end, dialect.decimal, &numbers[count]);
+      if (behind == NULL)
+        behind = bt_text_scan_number (at, end, dialect.decimal, &numbers[count]);
+      at = behind;
       if (at == NULL)
         return NULL;
       count++;
@@ -81,19 +84,30 @@ end_run (Scan *scan)
 static void
 add_row (Scan *scan, const char *at, gsize n)
 {
-  const BtRow row = { scan->rows->values->len, (guint32) n, scan->line };
+  BtRows *rows = scan->rows;
 
   if (!scan->in_run)
     {
-      scan->run = (BtTable){ .above = scan->run_end, .top = at, .first_row = scan->rows->rows->len, .first_line = scan->line,
+      scan->run = (BtTable){ .above = scan->run_end, .top = at, .first_row = rows->n_rows, .first_line = scan->line,
                              .n_skipped = scan->n_text };
       scan->in_run = TRUE;
     }
   scan->n_text = 0;
   scan->run.n_rows++;
   scan->run.last_line = scan->line;
-  g_array_append_vals (scan->rows->values, scan->numbers, (guint) n);
-  g_array_append_vals (scan->rows->rows, &row, 1);
+  if (rows->n_rows == rows->rows_room)
+    {
+      rows->rows_room = MAX (2 * rows->rows_room, 256);
+      rows->rows = g_renew (BtRow, rows->rows, rows->rows_room);
+    }
+  if (rows->n_values + n > rows->values_room)
+    {
+      rows->values_room = MAX (2 * rows->values_room, rows->n_values + n + 512);
+      rows->values = g_renew (double, rows->values, rows->values_room);
+    }
+  rows->rows[rows->n_rows++] = (BtRow){ rows->n_values, (guint32) n, scan->line };
+  for (gsize i = 0; i < n; i++)
+    rows->values[rows->n_values++] = scan->numbers[i];
 }
 
 static void
@@ -135,9 +149,7 @@ scan_lines (Scan *scan)
 static double
 x_of (const BtRows *rows, gsize row)
 {
-  const BtRow *r = &g_array_index (rows->rows, BtRow, row);
-
-  for (gsize c = 0; c < r->n; c++)
+  for (gsize c = 0; c < rows->rows[row].n; c++)
     if (!isnan (bt_rows_value (rows, row, c)))
       return bt_rows_value (rows, row, c);
   return (double) NAN;
@@ -149,8 +161,11 @@ continues (const BtRows *rows, const BtTable *table, const BtTable *run)
 {
   double first, last;
 
-  if (table->n_rows < 3)
+  /* Behind one or two rows and a text the table proper begins; an empty line is no text. */
+  if (table->n_rows < 3 && run->n_skipped > 0)
     return FALSE;
+  if (table->n_rows < 2)
+    return TRUE;
   first = x_of (rows, table->first_row);
   last = x_of (rows, table->first_row + table->n_rows - 1);
   return (x_of (rows, run->first_row) - last) * (last - first) > 0;
@@ -176,7 +191,7 @@ join_runs (BtRows *rows, const GArray *runs)
       else if (table.n_rows >= BT_SPECTRUM_MIN_POINTS && run->n_rows < BT_SPECTRUM_MIN_POINTS)
         {
           for (gsize r = 0; r < run->n_rows; r++)
-            g_array_index (rows->rows, BtRow, run->first_row + r).n = 0;
+            rows->rows[run->first_row + r].n = 0;
           continue;
         }
       else
@@ -201,15 +216,18 @@ read_rows (const BtText *text, BtRows *rows)
   Scan scan = { .text = text, .rows = rows, .runs = g_array_new (FALSE, FALSE, sizeof (BtTable)), .run_end = text->at };
 
   bt_rows_clear (rows);
-  rows->values = g_array_sized_new (FALSE, FALSE, sizeof (double), (guint) ((text->end - text->at) / 8));
-  rows->rows = g_array_sized_new (FALSE, FALSE, sizeof (BtRow), (guint) ((text->end - text->at) / 16));
+  /* A guess that spares most files from growing; memory that is not used is not touched. */
+  rows->rows_room = (gsize) (text->end - text->at) / 12 + 16;
+  rows->values_room = 2 * rows->rows_room;
+  rows->rows = g_new (BtRow, rows->rows_room);
+  rows->values = g_new (double, rows->values_room);
   rows->tables = g_array_new (FALSE, TRUE, sizeof (BtTable));
   rows->percent = FALSE;
   scan.fields = g_new (BtField, BT_MAX_COLUMNS);
   scan.numbers = g_new (double, BT_MAX_COLUMNS);
   scan_lines (&scan);
   rows->below = scan.run_end;
-  if (rows->rows->len > 0)
+  if (rows->n_rows > 0)
     join_runs (rows, scan.runs);
   g_free (scan.fields);
   g_free (scan.numbers);
@@ -224,12 +242,12 @@ bt_text_rows (const BtText *text, BtRows *rows)
   if (bt_text_sniff (text, FALSE, &rows->dialect))
     {
       read_rows (text, rows);
-      if (rows->rows->len > 0)
+      if (rows->n_rows > 0)
         {
           for (guint i = 0; i < rows->tables->len; i++)
             lines += g_array_index (rows->tables, BtTable, i).n_rows;
           /* The lines looked at may have held no decimals: what is left over tells. */
-          if (lines >= BT_SPECTRUM_MIN_POINTS && lines * 10 >= (gsize) g_array_index (rows->rows, BtRow, rows->rows->len - 1).line * 9
+          if (lines >= BT_SPECTRUM_MIN_POINTS && lines * 10 >= (gsize) rows->rows[rows->n_rows - 1].line * 9
                                                                  - g_array_index (rows->tables, BtTable, 0).first_line * 9)
             return TRUE;
         }
@@ -237,13 +255,14 @@ bt_text_rows (const BtText *text, BtRows *rows)
   if (!bt_text_sniff (text, TRUE, &rows->dialect))
     return FALSE;
   read_rows (text, rows);
-  return rows->rows->len > 0;
+  return rows->n_rows > 0;
 }
 
 void
 bt_rows_clear (BtRows *rows)
 {
-  g_clear_pointer (&rows->values, g_array_unref);
-  g_clear_pointer (&rows->rows, g_array_unref);
+  g_clear_pointer (&rows->values, g_free);
+  g_clear_pointer (&rows->rows, g_free);
+  rows->n_values = rows->n_rows = rows->values_room = rows->rows_room = 0;
   g_clear_pointer (&rows->tables, g_array_unref);
 }

@@ -9,17 +9,43 @@
 /* A file's text in UTF-8: from @at up to, not including, @end; not terminated. @encoding is a static name. */
 typedef struct { const char *at, *end, *encoding; char *owned; } BtText;
 /* Points into @bytes where these are UTF-8 already, so they must outlive @text. FALSE with @error set for what is no text. */
-gboolean bt_text_decode (GBytes *bytes, BtText *text, GError **error);
-void bt_text_clear (BtText *text);
+G_GNUC_INTERNAL gboolean bt_text_decode (GBytes *bytes, BtText *text, GError **error);
+G_GNUC_INTERNAL void bt_text_clear (BtText *text);
 /* The end of the line that begins at @at (LF, CR LF or CR); @next is set to the beginning of the line behind it. */
-const char *bt_text_line_end (const char *at, const char *end, const char **next);
+G_GNUC_INTERNAL const char *bt_text_line_end (const char *at, const char *end, const char **next);
 
-/* The number at the very beginning of @at, with this decimal sign: returns where it ends, NULL where there is none that is finite. */
-const char *bt_text_scan_number (const char *at, const char *end, char decimal, double *value);
+/* The number at the very beginning of @at, with this decimal sign: returns where it ends, NULL where there is none.
+ * NAN where it is too large for a double. */
+G_GNUC_INTERNAL const char *bt_text_scan_number (const char *at, const char *end, char decimal, double *value);
+/* The same, made for the commonest numbers: a sign, a few digits with or without a decimal sign. Returns NULL where it is anything else. */
+static inline const char *
+bt_text_scan_plain (const char *at, const char *end, char decimal, double *value)
+{
+  static const double powers[] = { 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15 };
+  const gboolean negative = at < end && *at == '-';
+  const char *start = at += negative, *point;
+  guint64 digits = 0;
+
+  for (; at < end && (guint8) (*at - '0') < 10; at++)
+    digits = digits * 10 + (guint64) (*at - '0');
+  point = at;
+  if (at == start)
+    return NULL;
+  if (at < end && *at == decimal)
+    for (point = ++at; at < end && (guint8) (*at - '0') < 10; at++)
+      digits = digits * 10 + (guint64) (*at - '0');
+  /* Up to 15 digits are an exact integer below 2^53. */
+  if (at - start > 15 || (at < end && (*at | 0x20) >= 'a') || (at == point && point[-1] == decimal))
+    return NULL;
+  *value = (double) digits / powers[at - point];
+  if (negative)
+    *value = -*value;
+  return at;
+}
 /* A number in exactly @n characters; also takes what only whole fields may have: a true minus sign, a per cent sign behind. */
-gboolean bt_text_number (const char *text, gsize n, char decimal, double *value);
+G_GNUC_INTERNAL gboolean bt_text_number (const char *text, gsize n, char decimal, double *value);
 /* Empty, "-", "NaN", "OVER", "****" and their like: a reading that is not there. */
-gboolean bt_text_is_missing (const char *text, gsize n);
+G_GNUC_INTERNAL gboolean bt_text_is_missing (const char *text, gsize n);
 
 /* Columns beyond these are passed over. */
 #define BT_MAX_COLUMNS 4096
@@ -30,11 +56,11 @@ typedef struct { char delimiter, decimal; } BtDialect;
 typedef enum { BT_ROW_NONE, BT_ROW_WITH_TEXT, BT_ROW_STRICT } BtRowKind;
 
 /* Splits a line (RFC 4180 quotes); at most @max fields; returns their number. An empty last field counts. */
-gsize bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max);
+G_GNUC_INTERNAL gsize bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max);
 /* Splits a line and judges it as a row of a table: its first field that is not empty is a number, another one a number or missing. */
-BtRowKind bt_text_row (const char *line, const char *end, BtDialect dialect, BtField *fields, gsize *n);
+G_GNUC_INTERNAL BtRowKind bt_text_row (const char *line, const char *end, BtDialect dialect, BtField *fields, gsize *n);
 /* The dialect in which most lines are rows with one number of fields: judged by some lines, or by all where @all. FALSE where none is. */
-gboolean bt_text_sniff (const BtText *text, gboolean all, BtDialect *dialect);
+G_GNUC_INTERNAL gboolean bt_text_sniff (const BtText *text, gboolean all, BtDialect *dialect);
 
 /* A run of rows that belong together. Lines count from 1. */
 typedef struct {
@@ -45,22 +71,23 @@ typedef struct {
 } BtTable;
 typedef struct { gsize start; guint32 n, line; } BtRow;
 typedef struct {
-  GArray *values;               /* of double, row behind row; NAN for missing */
-  GArray *rows;                 /* of BtRow */
+  double *values;               /* row behind row; NAN for missing */
+  BtRow *rows;
+  gsize n_values, n_rows, values_room, rows_room;
   GArray *tables;               /* of BtTable: those with enough rows, or else the longest one */
   const char *below;            /* text behind the last row */
   BtDialect dialect;
   gboolean percent;             /* readings carry a per cent sign */
 } BtRows;
 /* FALSE where there is not a single row. Free with bt_rows_clear() in both cases. */
-gboolean bt_text_rows (const BtText *text, BtRows *rows);
-void bt_rows_clear (BtRows *rows);
+G_GNUC_INTERNAL gboolean bt_text_rows (const BtText *text, BtRows *rows);
+G_GNUC_INTERNAL void bt_rows_clear (BtRows *rows);
 static inline double
 bt_rows_value (const BtRows *rows, gsize row, gsize column)
 {
-  const BtRow *r = &((const BtRow *) (void *) rows->rows->data)[row];
+  const BtRow *r = &rows->rows[row];
 
-  return column < r->n ? ((const double *) (void *) rows->values->data)[r->start + column] : (double) NAN;
+  return column < r->n ? rows->values[r->start + column] : (double) NAN;
 }
 
 typedef enum { BT_ORIGIN_SAID, BT_ORIGIN_HEADER, BT_ORIGIN_VALUES } BtOrigin;
@@ -75,22 +102,22 @@ typedef struct {
   char *left_out;               /* (nullable) the columns that were left out, by number and header */
 } BtColumns;
 /* Which columns of a table are spectra. FALSE with @error set where none can be. Free with bt_columns_clear() in both cases. */
-gboolean bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, const BtReadOptions *options,
+G_GNUC_INTERNAL gboolean bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, const BtReadOptions *options,
                           BtColumns *columns, GError **error);
-void bt_columns_clear (BtColumns *columns);
+G_GNUC_INTERNAL void bt_columns_clear (BtColumns *columns);
 /* Fills in the words over each of a table's columns; columns->n_columns is set. */
-void bt_text_headers (const BtRows *rows, const BtTable *table, BtColumns *columns);
+G_GNUC_INTERNAL void bt_text_headers (const BtRows *rows, const BtTable *table, BtColumns *columns);
 
 /* What a header's words say; FALSE where they say nothing known. */
-gboolean bt_text_x_unit (const char *words, BtXUnit *unit);
-gboolean bt_text_y_unit (const char *words, BtYUnit *unit);
-gboolean bt_text_is_wavelength (const char *words);
+G_GNUC_INTERNAL gboolean bt_text_x_unit (const char *words, BtXUnit *unit);
+G_GNUC_INTERNAL gboolean bt_text_y_unit (const char *words, BtYUnit *unit);
+G_GNUC_INTERNAL gboolean bt_text_is_wavelength (const char *words);
 /* (nullable): the unit or quantity, in a header, that is known but cannot be graded ("meV", "counts"). */
-const char *bt_text_foreign (const char *words);
+G_GNUC_INTERNAL const char *bt_text_foreign (const char *words);
 /* Whether the words name no quantity at all beside units and quantities that are read: then they are no title. */
-gboolean bt_text_is_only_unit (const char *words);
+G_GNUC_INTERNAL gboolean bt_text_is_only_unit (const char *words);
 /* What the values say. */
-BtXUnit bt_values_x_unit (const double *x, const double *y, gsize n, gboolean wavelength);
-BtYUnit bt_values_y_unit (const double *x, const double *y, gsize n, BtXUnit x_unit);
+G_GNUC_INTERNAL BtXUnit bt_values_x_unit (const double *x, const double *y, gsize n, gboolean wavelength);
+G_GNUC_INTERNAL BtYUnit bt_values_y_unit (const double *x, const double *y, gsize n, BtXUnit x_unit);
 
 #endif
