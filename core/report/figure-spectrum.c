@@ -225,6 +225,22 @@ draw_expected (BtFigure *figure, cairo_t *cr)
     }
 }
 
+/* The highest point of reading and fit between two places. */
+static double
+highest_between (BtFigure *figure, double x0, double x1)
+{
+  double top = -INFINITY;
+
+  for (double x = x0; x <= x1; x += 2)
+    {
+      double e = bt_figure_ev_from_x (figure, x);
+
+      /* fmax passes over NAN, which stands for "not there". */
+      top = fmax (top, fmax (bt_figure_fit_at (figure, e), bt_figure_film_at (figure, e)));
+    }
+  return top;
+}
+
 /* Each group's name over its highest crown; a name that would cover another moves up. */
 static void
 draw_names (BtFigure *figure, cairo_t *cr)
@@ -249,18 +265,17 @@ draw_names (BtFigure *figure, cairo_t *cr)
         }
       if (crown == NULL)
         continue;
-      top = bt_figure_fit_at (figure, crown->centre_ev);
-      if (isnan (top))
+      if (isnan (bt_figure_fit_at (figure, crown->centre_ev)))
         continue;
-      top = fmax (top, bt_figure_film_at (figure, crown->centre_ev));
       x = bt_figure_x_from_ev (figure, crown->centre_ev);
       if (x < box->x || x > box->x + box->width)
         continue;
       markup = g_strdup_printf ("<b>%s</b>", bt_group_name ((BtGroup) g));
       layout = bt_figure_text (figure, cr, markup, 1);
       bt_layout_size (layout, &w, &h);
-      y = fmax (bt_figure_y_from_absorbance (figure, top) - h - 0.3 * figure->view.font_pt, box->y + 1);
       x = CLAMP (x - w / 2, box->x + 2, box->x + box->width - w - 2);
+      top = highest_between (figure, x - 2, x + w + 2);
+      y = fmax (bt_figure_y_from_absorbance (figure, top) - h - 0.3 * figure->view.font_pt, box->y + 1);
       for (guint k = 0; k < n_taken; k++)
         if (x < taken[k].x + taken[k].width + 3 && x + w + 3 > taken[k].x && y < taken[k].y + taken[k].height && y + h > taken[k].y)
           y = fmax (box->y + 1, taken[k].y - h);

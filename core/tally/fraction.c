@@ -444,6 +444,9 @@ bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const
   fraction->value = CLAMP (mean, 0, 1);
   /* Far from the ends both agree; near them the drawn spread knows that a fraction ends at 1. */
   fraction->u = sqrt (fmin (variance, fmax (1e-12, square_draw - mean_draw * mean_draw)));
+  /* The lines are shares of what is stated: first order gives their proportions, the draws their sum. */
+  for (guint b = 0; b < tally->budget->len && variance > 0; b++)
+    g_array_index (tally->budget, BtBudgetLine, b).u *= fraction->u / sqrt (variance);
   if (area_m < tally->m11_decision)
     {
       fraction->bound = BT_BOUND_LOWER;

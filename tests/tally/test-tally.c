@@ -183,7 +183,7 @@ test_adds_up (void)
       g_assert_cmpfloat_with_epsilon (weight, 1, 1e-12);
       for (guint b = 0; b < tally->budget->len; b++)
         variance += pow (g_array_index (tally->budget, BtBudgetLine, b).u, 2);
-      g_assert_cmpfloat (tally->fraction.u, <=, sqrt (variance) * (1 + 1e-9));
+      g_assert_cmpfloat_with_epsilon (tally->fraction.u, sqrt (variance), 1e-9);
       for (guint b = 0; b < tally->bands->len; b++)
         {
           const BtBand *band = &g_array_index (tally->bands, BtBand, b);
