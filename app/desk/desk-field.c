@@ -32,6 +32,10 @@ static const FieldInfo infos[] = {
   { DESK_FIELD_MEAN_LOW, DESK_UNIT_WAVELENGTH, N_ ("Mean from"), N_ ("Set range of the mean"), NULL },
   { DESK_FIELD_MEAN_HIGH, DESK_UNIT_WAVELENGTH, N_ ("Mean to"), N_ ("Set range of the mean"), NULL },
   { DESK_FIELD_MAX_ABSORBANCE, DESK_UNIT_NONE, N_ ("Highest absorbance trusted"), N_ ("Set photometric limit"), NULL },
+  { DESK_FIELD_REFLECTANCE, DESK_UNIT_SHARE, N_ ("Reflectance of a face"), N_ ("Set reflectance"),
+    N_ ("from the substrate's index") },
+  { DESK_FIELD_SUBSTRATE_INDEX, DESK_UNIT_NONE, N_ ("Index of the substrate"), N_ ("Set index of the substrate"),
+    N_ ("from the substrate's name") },
   { DESK_FIELD_RATIO, DESK_UNIT_NONE, N_ ("Strength ratio S22 : M11"), N_ ("Set strength ratio"), NULL },
   { DESK_FIELD_RATIO_U, DESK_UNIT_NONE, N_ ("Strength ratio, uncertainty"), N_ ("Set uncertainty of strength ratio"), NULL },
   { DESK_FIELD_RATIO_SOURCE, DESK_UNIT_NONE, N_ ("Source of the ratio"), N_ ("Set source of strength ratio"),
@@ -147,6 +151,10 @@ number_of (const DeskField *field, const DeskSubject *subject)
       return recipe->mean_high_nm;
     case DESK_FIELD_MAX_ABSORBANCE:
       return recipe->max_absorbance;
+    case DESK_FIELD_REFLECTANCE:
+      return recipe->light_path.reflectance;
+    case DESK_FIELD_SUBSTRATE_INDEX:
+      return recipe->light_path.substrate_index > 0 ? recipe->light_path.substrate_index : NAN;
     case DESK_FIELD_RATIO:
       return recipe->strength_ratio;
     case DESK_FIELD_RATIO_U:
@@ -279,6 +287,12 @@ apply_empty (const DeskField *field, DeskSubject *subject, GError **error)
     case DESK_FIELD_LIMIT:
       recipe->limit = NAN;
       return TRUE;
+    case DESK_FIELD_REFLECTANCE:
+      recipe->light_path.reflectance = NAN;
+      return TRUE;
+    case DESK_FIELD_SUBSTRATE_INDEX:
+      recipe->light_path.substrate_index = 0;
+      return TRUE;
     case DESK_FIELD_WAVELENGTHS:
       g_array_set_size (recipe->wavelengths_nm, 0);
       return TRUE;
@@ -350,6 +364,16 @@ apply_number (const DeskField *field, double value, double u, DeskSubject *subje
       break;
     case DESK_FIELD_MAX_ABSORBANCE:
       recipe->max_absorbance = value;
+      break;
+    case DESK_FIELD_REFLECTANCE:
+      if (value < 0 || value >= 1)
+        return refuse (error, _("A reflectance lies between 0 and 1, or 0 and 100 %."));
+      recipe->light_path.reflectance = value;
+      break;
+    case DESK_FIELD_SUBSTRATE_INDEX:
+      if (value < 1)
+        return refuse (error, _("A refractive index is at least 1."));
+      recipe->light_path.substrate_index = value;
       break;
     case DESK_FIELD_RATIO:
       recipe->strength_ratio = value;

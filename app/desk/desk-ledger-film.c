@@ -49,6 +49,51 @@ fill_blank (DeskSection *section, BtFilm *film)
   desk_line_set_side (line, blank ? "edit-clear-symbolic" : NULL, _("Measure without the blank"), "win.remove-blank");
 }
 
+static const char *
+light_path_title (BtLightPathKind kind)
+{
+  switch (kind)
+    {
+    case BT_LIGHT_PATH_BLANK_RATIO:
+      return _("against the blank");
+    case BT_LIGHT_PATH_REFLECTION:
+      return _("reflection of a slab taken off");
+    case BT_LIGHT_PATH_THIN_FILM:
+    case BT_N_LIGHT_PATHS:
+      break;
+    }
+  return _("thin conducting film");
+}
+
+static void
+fill_light_path (DeskSection *section, const BtRecipe *recipe)
+{
+  g_autoptr (GMenu) choices = g_menu_new ();
+  for (BtLightPathKind kind = 0; kind < BT_N_LIGHT_PATHS; kind++)
+    {
+      g_autoptr (GMenuItem) item = g_menu_item_new (light_path_title (kind), NULL);
+      g_menu_item_set_action_and_target (item, "win.light-path", "s", bt_light_path_name (kind));
+      g_menu_append_item (choices, item);
+    }
+  DeskLine *line = desk_section_line (section, _("Taken"), "light path");
+  desk_line_set_choices (line, G_MENU_MODEL (choices));
+  desk_line_set_value (line, "%s", light_path_title (recipe->light_path.kind));
+  if (recipe->light_path.kind == BT_LIGHT_PATH_BLANK_RATIO)
+    return;
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_SUBSTRATE_INDEX });
+  if (recipe->light_path.substrate_index > 0)
+    desk_line_set_value (line, "%g", recipe->light_path.substrate_index);
+  else
+    desk_line_set_value (line, "%s", _("published"));
+  if (recipe->light_path.kind != BT_LIGHT_PATH_REFLECTION)
+    return;
+  line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_REFLECTANCE });
+  if (isnan (recipe->light_path.reflectance))
+    desk_line_set_value (line, "%s", _("from the index"));
+  else
+    desk_line_set_value (line, "%g", recipe->light_path.reflectance);
+}
+
 void
 desk_ledger_fill_path (DeskSection *section, const DeskAccount *account)
 {
@@ -67,6 +112,7 @@ desk_ledger_fill_path (DeskSection *section, const DeskAccount *account)
     desk_line_set_value (line, "%s", _("add"));
   text_field (section, DESK_FIELD_SUBSTRATE, bt_film_get_substrate (account->film));
   fill_blank (section, account->film);
+  fill_light_path (section, account->recipe);
   line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_MAX_ABSORBANCE });
   desk_line_set_value (line, "%g", account->recipe->max_absorbance);
   if (account->tally && account->tally->curve && account->tally->curve->path)

@@ -9,6 +9,7 @@ struct _DeskLine {
   GtkWidget *icon, *check, *name, *stack, *label, *button, *button_label, *entry, *side, *side_image, *bar, *detail, *error;
   DeskField field;
   char *action, *check_action;
+  GMenuModel *choices;
   gulong toggled_handler;
 };
 
@@ -57,7 +58,7 @@ void
 desk_line_open (DeskLine *self)
 {
   g_autofree char *text = NULL;
-  if (self->action || self->field.id == DESK_FIELD_NONE || desk_line_is_open (self))
+  if (self->action || self->choices || self->field.id == DESK_FIELD_NONE || desk_line_is_open (self))
     return;
   g_signal_emit (self, signals[OPEN], 0, &text);
   gtk_entry_set_text (GTK_ENTRY (self->entry), text ? text : "");
@@ -95,10 +96,30 @@ run_action (DeskLine *self, const char *detailed)
     g_action_group_activate_action (G_ACTION_GROUP (top), strchr (name, '.') + 1, target);
 }
 
+static gboolean
+destroy_now (gpointer widget)
+{
+  gtk_widget_destroy (widget);
+  return G_SOURCE_REMOVE;
+}
+
+/* The choice made in a popover is acted on after it has closed. */
+static void
+destroy_soon (GtkWidget *popover, gpointer data)
+{
+  g_idle_add_full (G_PRIORITY_LOW, destroy_now, g_object_ref (popover), g_object_unref);
+}
+
 static void
 on_clicked (GtkButton *button, DeskLine *self)
 {
-  if (self->action)
+  if (self->choices)
+    {
+      GtkWidget *popover = gtk_popover_new_from_model (GTK_WIDGET (button), self->choices);
+      g_signal_connect (popover, "closed", G_CALLBACK (destroy_soon), NULL);
+      gtk_popover_popup (GTK_POPOVER (popover));
+    }
+  else if (self->action)
     run_action (self, self->action);
   else
     desk_line_open (self);
@@ -149,6 +170,7 @@ desk_line_finalize (GObject *object)
   DeskLine *self = DESK_LINE (object);
   g_free (self->action);
   g_free (self->check_action);
+  g_clear_object (&self->choices);
   G_OBJECT_CLASS (desk_line_parent_class)->finalize (object);
 }
 
@@ -301,7 +323,7 @@ desk_line_set_detail (DeskLine *self, const char *detail)
 static void
 make_pressable (DeskLine *self)
 {
-  gtk_widget_set_tooltip_text (self->button, self->action ? NULL : _("Press to edit"));
+  gtk_widget_set_tooltip_text (self->button, self->action || self->choices ? NULL : _("Press to edit"));
   if (!desk_line_is_open (self))
     gtk_stack_set_visible_child (GTK_STACK (self->stack), self->button);
 }
@@ -326,6 +348,13 @@ desk_line_set_action (DeskLine *self, const char *detailed_action)
 {
   g_free (self->action);
   self->action = g_strdup (detailed_action);
+  make_pressable (self);
+}
+
+void
+desk_line_set_choices (DeskLine *self, GMenuModel *choices)
+{
+  g_set_object (&self->choices, choices);
   make_pressable (self);
 }
 

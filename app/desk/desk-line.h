@@ -23,6 +23,8 @@ void desk_line_set_field (DeskLine *self, DeskField field);
 const DeskField *desk_line_get_field (DeskLine *self);
 /* (nullable): a press on the value runs this action ("win.set-blank"). */
 void desk_line_set_action (DeskLine *self, const char *detailed_action);
+/* A press on the value opens a menu of choices (win.* actions). */
+void desk_line_set_choices (DeskLine *self, GMenuModel *choices);
 /* (nullable): a small button beside the value. */
 void desk_line_set_side (DeskLine *self, const char *icon, const char *name, const char *detailed_action);
 /* A bar instead of nothing, 0 to 1; NAN: none. */

@@ -133,6 +133,18 @@ act_propose_window (GSimpleAction *action, GVariant *parameter, gpointer window)
 }
 
 static void
+act_light_path (GSimpleAction *action, GVariant *parameter, gpointer window)
+{
+  DeskWindow *self = window;
+  BtLightPathKind kind;
+  if (!self->film || !bt_light_path_from_name (g_variant_get_string (parameter, NULL), &kind))
+    return;
+  g_autoptr (BtRecipe) recipe = own_recipe (self);
+  recipe->light_path.kind = kind;
+  edit_recipe (self, _("Choose light path"), recipe);
+}
+
+static void
 act_toggle_tail (GSimpleAction *action, GVariant *parameter, gpointer window)
 {
   DeskWindow *self = window;
@@ -216,6 +228,7 @@ desk_window_add_edit_actions (DeskWindow *self)
     { .name = "include-range", .parameter_type = "u", .activate = act_include_range },
     { .name = "include-all", .activate = act_include_all },
     { .name = "propose-window", .activate = act_propose_window },
+    { .name = "light-path", .parameter_type = "s", .activate = act_light_path },
     { .name = "toggle-tail", .parameter_type = "s", .activate = act_toggle_tail },
     { .name = "set-thickness", .activate = act_set_thickness },
     { .name = "set-limit", .activate = act_set_limit },

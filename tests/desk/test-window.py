@@ -154,6 +154,18 @@ def range_is_typed(desk):
     desk.settled()
 
 
+def light_path_is_chosen(desk):
+    before = desk.value("1550 nm")
+    desk.press(desk.line("Taken"))
+    desk.press(desk.wait(name="thin conducting film"))
+    d.until(lambda: desk.value("Taken") == "thin conducting film", "the light path in the ledger")
+    d.until(lambda: desk.value("1550 nm") != before, "another absorption coefficient")
+    desk.settled()
+    desk.shot(os.path.join(shots, "light-path.png"))
+    desk.press(desk.wait(role="push button", name="Undo: Choose light path"))
+    d.until(lambda: desk.value("1550 nm") == before, f"the absorption coefficient before, {before}")
+
+
 def menu_holds_band(desk):
     desk.settled()
     x, y = desk.middle(desk.handle("S22 band 1, crown"))
@@ -310,12 +322,12 @@ def main():
         desk = d.Desk(program, first, wrong, second, cwd=folder, environment={"HOME": folder})
         for function in (opens_and_answers, says_what_is_wrong, bad_number_keeps_value, thickness_gives_alpha, undo_and_redo,
                          crown_is_dragged, beam_by_keyboard, beam_by_value, range_is_left_out, range_is_typed,
-                         tail_is_left_out, menu_holds_band, width_is_typed, zooms_and_shows_all, limit_gives_verdict,
+                         tail_is_left_out, light_path_is_chosen, menu_holds_band, width_is_typed, zooms_and_shows_all, limit_gives_verdict,
                          wrong_unit_is_refused, quantity_switches, next_film_by_key, every_control_is_named):
             tap.test(function.__name__.replace("_", " "), function, desk)
             desk.shot(os.path.join(shots, f"last-{function.__name__}.png"))
         tap.test("previews report", previews_report, desk)
-        for function in ():
+        for function in (saves_report, prints_same_pages):
             tap.test(function.__name__.replace("_", " "), function, desk, folder)
             desk.shot(os.path.join(shots, f"last-{function.__name__}.png"))
         tap.test("takes film off and back", takes_film_off_and_back, desk)
