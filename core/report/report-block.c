@@ -8,7 +8,14 @@
 static const double greys[] = { [BT_SHADE_INK] = 0.0, [BT_SHADE_GREY] = 0.33, [BT_SHADE_HAIR] = 0.72 };
 
 /* Sizes in pt; letter spacing in pt. */
-static const struct { const char *family; double size; PangoWeight weight; double spacing; BtShade shade; } faces[BT_N_FACES] = {
+static const struct
+{
+  const char *family;
+  double size;
+  PangoWeight weight;
+  double spacing;
+  BtShade shade;
+} faces[BT_N_FACES] = {
   [BT_FACE_BODY] = { "Sans", 7.5, PANGO_WEIGHT_NORMAL, 0, BT_SHADE_INK },
   [BT_FACE_STRONG] = { "Sans", 7.5, PANGO_WEIGHT_BOLD, 0, BT_SHADE_INK },
   [BT_FACE_NOTE] = { "Sans", 6.5, PANGO_WEIGHT_NORMAL, 0, BT_SHADE_GREY },
@@ -41,29 +48,41 @@ bt_report_context_new (void)
   return context;
 }
 
+/* (transfer full): valid text in which no line ends between a number and its unit. */
+static char *
+tied (const char *text)
+{
+  static GRegex *regex;
+  g_autofree char *valid = g_utf8_make_valid (text != NULL ? text : "", -1);
+
+  if (g_once_init_enter (&regex))
+    g_once_init_leave (&regex, g_regex_new ("(?<=[0-9)]) (?=(%|nm|eV|1/cm)(?![A-Za-z0-9]))", G_REGEX_OPTIMIZE, 0, NULL));
+  return g_regex_replace_literal (regex, valid, -1, 0, "\u00a0", 0, NULL);
+}
+
 PangoLayout *
 bt_report_layout_new (PangoContext *context, BtFace face, const char *text, double width_pt)
 {
   PangoLayout *layout = pango_layout_new (context);
   PangoFontDescription *font = pango_font_description_new ();
-  g_autofree char *valid = g_utf8_make_valid (text != NULL ? text : "", -1);
+  g_autofree char *valid = tied (text);
 
   pango_font_description_set_family_static (font, faces[face].family);
   pango_font_description_set_weight (font, faces[face].weight);
-  pango_font_description_set_size (font, (int) lround (faces[face].size * PANGO_SCALE));
+  pango_font_description_set_size (font, (int)lround (faces[face].size * PANGO_SCALE));
   pango_layout_set_font_description (layout, font);
   pango_font_description_free (font);
   if (faces[face].spacing > 0)
     {
       PangoAttrList *list = pango_attr_list_new ();
 
-      pango_attr_list_insert (list, pango_attr_letter_spacing_new ((int) lround (faces[face].spacing * PANGO_SCALE)));
+      pango_attr_list_insert (list, pango_attr_letter_spacing_new ((int)lround (faces[face].spacing * PANGO_SCALE)));
       pango_layout_set_attributes (layout, list);
       pango_attr_list_unref (list);
     }
   pango_layout_set_wrap (layout, PANGO_WRAP_WORD_CHAR);
   if (width_pt > 0)
-    pango_layout_set_width (layout, (int) ceil (width_pt * PANGO_SCALE));
+    pango_layout_set_width (layout, (int)ceil (width_pt * PANGO_SCALE));
   pango_layout_set_line_spacing (layout, 1.12f);
   pango_layout_set_text (layout, valid, -1);
   g_object_set_data (G_OBJECT (layout), "shade", GINT_TO_POINTER (faces[face].shade));
@@ -76,7 +95,7 @@ bt_layout_width_pt (PangoLayout *layout)
   PangoRectangle logical;
 
   pango_layout_get_extents (layout, NULL, &logical);
-  return (double) logical.width / PANGO_SCALE;
+  return (double)logical.width / PANGO_SCALE;
 }
 
 double
@@ -85,15 +104,17 @@ bt_layout_height_pt (PangoLayout *layout)
   PangoRectangle logical;
 
   pango_layout_get_extents (layout, NULL, &logical);
-  return (double) logical.height / PANGO_SCALE;
+  return (double)logical.height / PANGO_SCALE;
 }
 
 void
 bt_layout_show (cairo_t *cr, PangoLayout *layout, double x, double y)
 {
-  bt_shade_set (cr, (BtShade) GPOINTER_TO_INT (g_object_get_data (G_OBJECT (layout), "shade")));
+  bt_shade_set (cr, (BtShade)GPOINTER_TO_INT (g_object_get_data (G_OBJECT (layout), "shade")));
   cairo_move_to (cr, x, y);
   pango_cairo_show_layout (cr, layout);
+  /* No line of what is drawn next starts here. */
+  cairo_new_path (cr);
 }
 
 void
@@ -128,15 +149,15 @@ line_range (PangoLayout *layout, guint line, double *top, double *bottom)
   for (guint i = 0; i < line && pango_layout_iter_next_line (iter); i++)
     ;
   pango_layout_iter_get_line_yrange (iter, &y0, &y1);
-  *top = (double) y0 / PANGO_SCALE;
-  *bottom = (double) y1 / PANGO_SCALE;
+  *top = (double)y0 / PANGO_SCALE;
+  *bottom = (double)y1 / PANGO_SCALE;
   pango_layout_iter_free (iter);
 }
 
 static double
 text_height (const BtBlock *block, guint first, guint end)
 {
-  const TextBlock *self = (const TextBlock *) block;
+  const TextBlock *self = (const TextBlock *)block;
   double top, bottom, unused;
 
   line_range (self->layout, first, &top, &unused);
@@ -147,7 +168,7 @@ text_height (const BtBlock *block, guint first, guint end)
 static void
 text_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 {
-  const TextBlock *self = (const TextBlock *) block;
+  const TextBlock *self = (const TextBlock *)block;
   double top, unused;
 
   if (self->top > 0)
@@ -174,7 +195,7 @@ text_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 static void
 text_free (BtBlock *block)
 {
-  g_object_unref (((TextBlock *) block)->layout);
+  g_object_unref (((TextBlock *)block)->layout);
   g_free (block);
 }
 
@@ -185,8 +206,9 @@ bt_block_new_text (PangoContext *context, BtFace face, const char *text, double 
 
   self->layout = bt_report_layout_new (context, face, text, width);
   self->width = width;
-  self->base = (BtBlock){ .n_items = (guint) pango_layout_get_line_count (self->layout), .height = text_height, .draw = text_draw,
-                          .free = text_free };
+  self->base = (BtBlock){
+    .n_items = (guint)pango_layout_get_line_count (self->layout), .height = text_height, .draw = text_draw, .free = text_free
+  };
   return &self->base;
 }
 
@@ -196,7 +218,7 @@ bt_block_new_heading (PangoContext *context, const char *text, double width)
   g_autofree char *capitals = g_utf8_strup (text, -1);
   BtBlock *block = bt_block_new_text (context, BT_FACE_HEADING, capitals, width);
 
-  ((TextBlock *) block)->top = 4;
+  ((TextBlock *)block)->top = 4;
   block->keep = TRUE;
   return block;
 }
@@ -213,13 +235,13 @@ typedef struct
 static double
 drawing_height (const BtBlock *block, guint first, guint end)
 {
-  return ((const DrawingBlock *) block)->height;
+  return ((const DrawingBlock *)block)->height;
 }
 
 static void
 drawing_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 {
-  const DrawingBlock *self = (const DrawingBlock *) block;
+  const DrawingBlock *self = (const DrawingBlock *)block;
 
   self->draw (cr, self->width, self->height, self->data);
 }
@@ -227,7 +249,7 @@ drawing_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 static void
 drawing_free (BtBlock *block)
 {
-  DrawingBlock *self = (DrawingBlock *) block;
+  DrawingBlock *self = (DrawingBlock *)block;
 
   if (self->destroy != NULL)
     self->destroy (self->data);
@@ -239,15 +261,16 @@ bt_block_new_drawing (double width, double height, BtDrawFunc draw, gpointer dat
 {
   DrawingBlock *self = g_new0 (DrawingBlock, 1);
 
-  *self = (DrawingBlock){ { .n_items = 1, .height = drawing_height, .draw = drawing_draw, .free = drawing_free },
-                          width, height, draw, data, destroy };
+  *self = (DrawingBlock){
+    { .n_items = 1, .height = drawing_height, .draw = drawing_draw, .free = drawing_free }, width, height, draw, data, destroy
+  };
   return &self->base;
 }
 
 BtFlow *
 bt_flow_new (void)
 {
-  return g_ptr_array_new_with_free_func ((GDestroyNotify) bt_block_free);
+  return g_ptr_array_new_with_free_func ((GDestroyNotify)bt_block_free);
 }
 
 BtBlock *
@@ -282,7 +305,7 @@ typedef struct
 static double
 pair_height (const BtBlock *block, guint first, guint end)
 {
-  const PairBlock *self = (const PairBlock *) block;
+  const PairBlock *self = (const PairBlock *)block;
 
   return fmax (bt_flow_height (self->left), bt_flow_height (self->right));
 }
@@ -308,7 +331,7 @@ draw_flow (cairo_t *cr, const BtFlow *flow, double x)
 static void
 pair_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 {
-  const PairBlock *self = (const PairBlock *) block;
+  const PairBlock *self = (const PairBlock *)block;
 
   draw_flow (cr, self->left, 0);
   draw_flow (cr, self->right, self->right_x);
@@ -317,7 +340,7 @@ pair_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 static void
 pair_free (BtBlock *block)
 {
-  PairBlock *self = (PairBlock *) block;
+  PairBlock *self = (PairBlock *)block;
 
   g_ptr_array_unref (self->left);
   g_ptr_array_unref (self->right);

@@ -1,6 +1,7 @@
 /* A film on paper, from its title to the signature. */
 #include <glib/gi18n-lib.h>
 #include <math.h>
+#include <string.h>
 
 #include "palette.h"
 #include "report-private.h"
@@ -9,6 +10,8 @@
 #define FIGURE_HEIGHT (95 / 25.4 * 72)
 /* Space between the two columns. */
 #define GUTTER 24.0
+/* Of the labels in the title block. */
+#define LABEL_WIDTH 38.0
 /* Columns narrower than this would break words. */
 #define LEAST_COLUMN 200.0
 
@@ -17,7 +20,8 @@ static const BtColumnKind pair_kinds[] = { BT_COLUMN_LEFT, BT_COLUMN_LEFT };
 char *
 bt_report_film_name (BtFilm *film)
 {
-  const char *label = bt_film_get_label (film), *lot = bt_film_get_lot (film), *file = bt_spectrum_get_file (bt_film_get_spectrum (film));
+  const char *label = bt_film_get_label (film), *lot = bt_film_get_lot (film);
+  const char *file = bt_spectrum_get_file (bt_film_get_spectrum (film));
   g_autofree char *name = label != NULL && label[0] != '\0' ? g_strdup (label)
                           : file != NULL                    ? g_filename_display_basename (file)
                                                             : g_strdup (_ ("Film without a name"));
@@ -45,7 +49,7 @@ points_text (BtSpectrum *spectrum)
   const double *energy_ev = bt_spectrum_get_energy_ev (spectrum, &n);
   g_autofree char *range = bt_report_range_text ((BtRange){ energy_ev[0], energy_ev[n - 1] });
 
-  return g_strdup_printf (ngettext ("%" G_GSIZE_FORMAT " point, %s", "%" G_GSIZE_FORMAT " points, %s", (gulong) n), n, range);
+  return g_strdup_printf (ngettext ("%u point, %s", "%u points, %s", (gulong)n), (guint)n, range);
 }
 
 static void
@@ -55,9 +59,17 @@ take_if (BtGrid *grid, const char *label, const char *value)
     bt_grid_take_pair (grid, label, g_strdup (value));
 }
 
+static char *
+diameters_text (const BtTally *tally)
+{
+  g_autofree char *mean = bt_format_uncertain (tally->diameter.mean_nm, tally->diameter_u_nm);
+
+  return g_strdup_printf (_ ("mean %s nm, spread %.2f nm"), mean, tally->diameter.spread_nm);
+}
+
 /* What was measured on the left, what it was made of and when this was written on the right. */
 static BtBlock *
-facts_new (PangoContext *context, BtFilm *film, const char *date, double width)
+facts_new (PangoContext *context, BtFilm *film, const BtTally *tally, const char *date, double width)
 {
   BtSpectrum *spectrum = bt_film_get_spectrum (film);
   const char *path = bt_spectrum_get_file (spectrum);
@@ -66,19 +78,21 @@ facts_new (PangoContext *context, BtFilm *film, const char *date, double width)
   BtGrid *measured = bt_grid_new (2, pair_kinds), *made = bt_grid_new (2, pair_kinds);
   BtFlow *lefts = bt_flow_new (), *rights = bt_flow_new ();
 
+  bt_grid_set_first_width (measured, LABEL_WIDTH);
   take_if (measured, _ ("File"), file);
   bt_grid_take_pair (measured, _ ("Data"), points_text (spectrum));
   bt_grid_take_pair (measured, _ ("Report"), g_strdup_printf (_ ("%s, by Bandtally %s"), date, bt_version ()));
   bt_grid_take_pair (made, _ ("Thickness"), thickness_text (film));
   take_if (made, _ ("Substrate"), bt_film_get_substrate (film));
-  take_if (made, _ ("Lot"), bt_film_get_lot (film));
+  if (!isnan (tally->diameter.mean_nm))
+    bt_grid_take_pair (made, _ ("Diameters"), diameters_text (tally));
   bt_flow_add (lefts, bt_block_new_grid (context, measured, FALSE, FALSE, left), 0);
   bt_flow_add (rights, bt_block_new_grid (context, made, FALSE, FALSE, width - left - GUTTER), 0);
   return bt_block_new_pair (lefts, rights, left + GUTTER);
 }
 
 static void
-add_title (BtFlow *flow, PangoContext *context, BtFilm *film, const char *date, double width)
+add_title (BtFlow *flow, PangoContext *context, BtFilm *film, const BtTally *tally, const char *date, double width)
 {
   BtSpectrum *spectrum = bt_film_get_spectrum (film);
   const char *hash = bt_spectrum_get_sha256 (spectrum);
@@ -87,12 +101,15 @@ add_title (BtFlow *flow, PangoContext *context, BtFilm *film, const char *date, 
 
   bt_flow_add (flow, bt_block_new_text (context, BT_FACE_TITLE, name, width), 0);
   if (bt_spectrum_get_note (spectrum, "invented data") != NULL)
-    bt_flow_add (flow, bt_block_new_text (context, BT_FACE_STRONG, _ ("Invented data: the file says that no film was measured."), width), 2);
-  bt_flow_add (flow, facts_new (context, film, date, width), 5);
+    bt_flow_add (
+        flow, bt_block_new_text (context, BT_FACE_STRONG, _ ("Invented data: the file says that no film was measured."), width),
+        2);
+  bt_flow_add (flow, facts_new (context, film, tally, date, width), 5);
   if (hash == NULL)
     return;
   grid = bt_grid_new (2, pair_kinds);
-  bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("SHA-256 of the file")));
+  bt_grid_set_first_width (grid, LABEL_WIDTH);
+  bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("SHA-256")));
   bt_grid_take (grid, BT_FACE_HASH, g_strdup (hash));
   bt_flow_add (flow, bt_block_new_grid (context, grid, FALSE, FALSE, width), 0);
 }
@@ -101,9 +118,11 @@ add_title (BtFlow *flow, PangoContext *context, BtFilm *film, const char *date, 
 static void
 draw_sign (cairo_t *cr, double width, double height, gpointer data)
 {
-  static const double colours[][3] = { [BT_VERDICT_NOT_JUDGED] = { 0.33, 0.33, 0.33 }, [BT_VERDICT_ACCEPTED] = { 0.0, 0.42, 0.30 },
-                                       [BT_VERDICT_REFUSED] = { 0.70, 0.20, 0.0 }, [BT_VERDICT_UNDECIDED] = { 0.48, 0.37, 0.0 } };
-  const BtVerdict verdict = (BtVerdict) GPOINTER_TO_INT (data);
+  static const double colours[][3] = { [BT_VERDICT_NOT_JUDGED] = { 0.33, 0.33, 0.33 },
+                                       [BT_VERDICT_ACCEPTED] = { 0.0, 0.42, 0.30 },
+                                       [BT_VERDICT_REFUSED] = { 0.70, 0.20, 0.0 },
+                                       [BT_VERDICT_UNDECIDED] = { 0.48, 0.37, 0.0 } };
+  const BtVerdict verdict = (BtVerdict)GPOINTER_TO_INT (data);
   const double r = fmin (width, height) / 2 - 1;
 
   cairo_translate (cr, r + 1, height / 2);
@@ -151,7 +170,11 @@ draw_sign (cairo_t *cr, double width, double height, gpointer data)
   cairo_stroke (cr);
 }
 
-typedef struct { BtTally *tally; PangoContext *context; } Scale;
+typedef struct
+{
+  BtTally *tally;
+  PangoContext *context;
+} Scale;
 
 static void
 scale_free (gpointer data)
@@ -194,21 +217,41 @@ standing_text (const BtTally *tally)
   return g_string_free (text, FALSE);
 }
 
+/* A short remark in brackets stays on one line. */
+static char *
+tie_brackets (const char *text)
+{
+  GString *tied = g_string_new (NULL);
+
+  for (const char *p = text, *close; *p != '\0'; p++)
+    if (*p == '(' && (close = strchr (p, ')')) != NULL && close - p < 30)
+      {
+        for (; p < close; p++)
+          if (*p == ' ')
+            g_string_append (tied, "\u00a0");
+          else
+            g_string_append_c (tied, *p);
+        g_string_append_c (tied, ')');
+      }
+    else
+      g_string_append_c (tied, *p);
+  return g_string_free (tied, FALSE);
+}
+
 static void
 add_answer (BtFlow *flow, PangoContext *context, BtTally *tally, double width)
 {
   const double left = floor (0.66 * width), right_x = left + GUTTER, right = width - right_x, sign = 20;
-  g_autofree char *answer = bt_tally_answer (tally), *standing = standing_text (tally), *verdict = NULL;
+  g_autofree char *plain = bt_tally_answer (tally), *answer = tie_brackets (plain), *standing = standing_text (tally);
   BtFlow *answers = bt_flow_new (), *verdicts = bt_flow_new (), *signs = bt_flow_new (), *words = bt_flow_new ();
   Scale *scale;
 
   bt_flow_add (answers, bt_block_new_text (context, BT_FACE_ANSWER, answer, left), 0);
-  verdict = g_strdup (bt_verdict_title (tally->verdict));
   bt_flow_add (signs, bt_block_new_drawing (sign, sign, draw_sign, GINT_TO_POINTER (tally->verdict), NULL), 0);
-  bt_flow_add (words, bt_block_new_text (context, BT_FACE_ANSWER, verdict, right - sign - 7), 0);
+  bt_flow_add (words, bt_block_new_text (context, BT_FACE_ANSWER, bt_verdict_title (tally->verdict), right - sign - 7), 0);
   bt_flow_add (verdicts, bt_block_new_pair (signs, words, sign + 7), 0);
   bt_flow_add (verdicts, bt_block_new_text (context, BT_FACE_NOTE, standing, right), 4);
-  bt_flow_add (flow, bt_block_new_heading (context, _ ("Semiconducting fraction and verdict"), width), 10)->keep = TRUE;
+  bt_flow_add (flow, bt_block_new_heading (context, _ ("Semiconducting fraction and verdict"), width), 10);
   bt_flow_add (flow, bt_block_new_pair (answers, verdicts, right_x), 4);
   if (tally->fraction.bound == BT_BOUND_NONE)
     return;
@@ -234,19 +277,22 @@ add_figure (BtFlow *flow, PangoContext *context, BtFilm *film, BtTally *tally, d
 {
   if (tally->curve == NULL || tally->curve->n < 2)
     {
-      bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, _ ("There is no figure: the light path left no points."), width), 8);
+      bt_flow_add (
+          flow, bt_block_new_text (context, BT_FACE_BODY, _ ("There is no figure: the light path left no points."), width), 8);
       return;
     }
-  bt_flow_add (flow, bt_block_new_drawing (width, FIGURE_HEIGHT, draw_figure, bt_figure_new (film, tally, NULL, NULL),
-                                           (GDestroyNotify) bt_figure_free), 6);
+  bt_flow_add (flow,
+               bt_block_new_drawing (width, FIGURE_HEIGHT, draw_figure, bt_figure_new (film, tally, NULL, NULL),
+                                     (GDestroyNotify)bt_figure_free),
+               6);
 }
 
 typedef void (*AddFunc) (BtFlow *flow, PangoContext *context, const BtTally *tally, double width);
 
 /* Beside each other where the paper is wide enough and neither is long; else one below the other. */
 static void
-add_beside (BtFlow *flow, PangoContext *context, const BtTally *tally, AddFunc left_func, AddFunc right_func, double share, double width,
-            double height)
+add_beside (BtFlow *flow, PangoContext *context, const BtTally *tally, AddFunc left_func, AddFunc right_func, double share,
+            double width, double height)
 {
   const double left_width = floor (share * (width - GUTTER)), right_width = width - GUTTER - left_width;
   BtFlow *left = bt_flow_new (), *right = bt_flow_new ();
@@ -292,7 +338,7 @@ add_sentences (BtFlow *flow, PangoContext *context, const BtTally *tally, BtFilm
     {
       grid = bt_grid_new (2, pair_kinds);
       bt_grid_take (grid, BT_FACE_STRONG, g_strdup_printf ("%u", i + 1));
-      bt_grid_take (grid, BT_FACE_BODY, g_strdup (((const BtFlag *) g_ptr_array_index (tally->flags, i))->text));
+      bt_grid_take (grid, BT_FACE_BODY, g_strdup (((const BtFlag *)g_ptr_array_index (tally->flags, i))->text));
       bt_flow_add (flow, bt_block_new_grid (context, grid, FALSE, FALSE, width), i == 0 ? 4 : 0);
     }
   if (notes != NULL && notes[0] != '\0')
@@ -300,7 +346,7 @@ add_sentences (BtFlow *flow, PangoContext *context, const BtTally *tally, BtFilm
       bt_flow_add (flow, bt_block_new_heading (context, _ ("Notes"), width), 11);
       bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, notes, width), 4);
     }
-  bt_flow_add (flow, bt_block_new_heading (context, _ ("Light path"), width), 11);
+  bt_flow_add (flow, bt_block_new_heading (context, _ ("From the file to the film's absorbance"), width), 11);
   grid = bt_grid_new (2, pair_kinds);
   take_if (grid, _ ("Light path"), tally->curve != NULL ? tally->curve->path : NULL);
   take_if (grid, _ ("File taken for"), bt_spectrum_get_reading (bt_film_get_spectrum (film)));
@@ -310,7 +356,10 @@ add_sentences (BtFlow *flow, PangoContext *context, const BtTally *tally, BtFilm
   bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, tally->decision_rule, width), 4);
 }
 
-typedef struct { PangoLayout *labels[3]; } Signature;
+typedef struct
+{
+  PangoLayout *labels[3];
+} Signature;
 
 static void
 signature_free (gpointer data)
@@ -359,12 +408,13 @@ signature_new (PangoContext *context, double width)
 static void
 add_close (BtFlow *flow, PangoContext *context, double width)
 {
+  const char *cautions[] = { _ ("Follow your laboratory's rules for nanomaterials, solvents and ultraviolet lamps."),
+                             _ ("A tally is a measurement aid, not a certificate.") };
   BtFlow *close = bt_flow_new ();
 
   bt_flow_add (close, bt_block_new_heading (context, _ ("Cautions"), width), 0);
-  bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, _ ("Follow your laboratory's rules for nanomaterials, solvents and ultraviolet lamps."),
-                                         width), 4);
-  bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, _ ("A tally is a measurement aid, not a certificate."), width), 1);
+  for (gsize i = 0; i < G_N_ELEMENTS (cautions); i++)
+    bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, cautions[i], width), i == 0 ? 4 : 1);
   bt_flow_add (close, signature_new (context, width), 4);
   bt_flow_add (flow, bt_block_new_pair (close, bt_flow_new (), width), 14)->bottom = TRUE;
 }
@@ -374,7 +424,7 @@ bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const 
 {
   BtFlow *flow = bt_flow_new ();
 
-  add_title (flow, context, film, date, width);
+  add_title (flow, context, film, tally, date, width);
   add_answer (flow, context, tally, width);
   add_figure (flow, context, film, tally, width);
   bt_report_add_bands (flow, context, film, tally, width);

@@ -2,7 +2,6 @@
 #include "report-private.h"
 
 #include <math.h>
-#include <string.h>
 
 #include "palette.h"
 
@@ -11,12 +10,20 @@
 #define CHIP 5.5
 #define BAR_WIDTH 48.0
 
-typedef struct { BtFace face; char *text; int group; double bar; PangoLayout *layout; } Cell;
+typedef struct
+{
+  BtFace face;
+  char *text;
+  int group;
+  double bar;
+  PangoLayout *layout;
+} Cell;
 
 struct _BtGrid
 {
   guint n_columns;
   BtColumnKind *kinds;
+  double first_width; /* least, of the first column */
   GArray *cells;
 };
 
@@ -26,9 +33,9 @@ typedef struct
   BtGrid *grid;
   gboolean head;
   double width;
-  double *x, *widths;   /* by column */
-  double *heights;      /* by row, the head's first */
-  double *baselines;    /* by row: all of its cells stand on one line, whatever their size */
+  double *x, *widths; /* by column */
+  double *heights;    /* by row, the head's first */
+  double *baselines;  /* by row: all of its cells stand on one line, whatever their size */
 } GridBlock;
 
 static void
@@ -50,6 +57,12 @@ bt_grid_new (guint n_columns, const BtColumnKind *kinds)
   grid->cells = g_array_new (FALSE, FALSE, sizeof (Cell));
   g_array_set_clear_func (grid->cells, clear_cell);
   return grid;
+}
+
+void
+bt_grid_set_first_width (BtGrid *grid, double width)
+{
+  grid->first_width = width;
 }
 
 void
@@ -105,7 +118,10 @@ lead (const Cell *cell)
 static void
 measure_column (const BtGrid *grid, guint n_rows, guint column, double *natural, double *least)
 {
-  *natural = *least = grid->kinds[column] == BT_COLUMN_BAR ? BAR_WIDTH : 0;
+  *natural = column == 0 ? grid->first_width : 0;
+  if (grid->kinds[column] == BT_COLUMN_BAR)
+    *natural = BAR_WIDTH;
+  *least = *natural;
   for (guint row = 0; row < n_rows; row++)
     {
       Cell *cell = cell_at (grid, row, column);
@@ -121,7 +137,8 @@ measure_column (const BtGrid *grid, guint n_rows, guint column, double *natural,
     }
 }
 
-/* Narrow columns keep their width and the wide ones are cut to one level, so that numbers stay whole and sentences are broken. */
+/* Narrow columns keep their width and the wide ones are cut to one level, so that numbers stay whole and sentences are broken.
+ */
 static void
 level_out (const double *natural, const double *least, guint n, double room, double *widths)
 {
@@ -173,7 +190,7 @@ share_out (GridBlock *self, guint n_rows, gboolean spread)
 static double
 baseline (const Cell *cell)
 {
-  return (double) pango_layout_get_baseline (cell->layout) / PANGO_SCALE;
+  return (double)pango_layout_get_baseline (cell->layout) / PANGO_SCALE;
 }
 
 static void
@@ -192,7 +209,7 @@ set_cells (GridBlock *self, guint n_rows)
             continue;
           }
         /* A pango unit more, so that what was measured is not broken by rounding. */
-        pango_layout_set_width (cell->layout, (int) ceil ((self->widths[c] - lead (cell)) * PANGO_SCALE) + 1);
+        pango_layout_set_width (cell->layout, (int)ceil ((self->widths[c] - lead (cell)) * PANGO_SCALE) + 1);
         if (grid->kinds[c] == BT_COLUMN_RIGHT)
           pango_layout_set_alignment (cell->layout, PANGO_ALIGN_RIGHT);
         self->baselines[row] = fmax (self->baselines[row], baseline (cell));
@@ -203,8 +220,8 @@ set_cells (GridBlock *self, guint n_rows)
         const Cell *cell = cell_at (grid, row, c);
 
         if (cell->text != NULL)
-          self->heights[row] = fmax (self->heights[row], self->baselines[row] - baseline (cell) + bt_layout_height_pt (cell->layout)
-                                                           + ROW_SPACE);
+          self->heights[row] = fmax (self->heights[row],
+                                     self->baselines[row] - baseline (cell) + bt_layout_height_pt (cell->layout) + ROW_SPACE);
       }
 }
 
@@ -218,7 +235,7 @@ head_height (const GridBlock *self)
 static double
 grid_height (const BtBlock *block, guint first, guint end)
 {
-  const GridBlock *self = (const GridBlock *) block;
+  const GridBlock *self = (const GridBlock *)block;
   double height = head_height (self);
 
   for (guint i = first; i < end; i++)
@@ -264,7 +281,7 @@ draw_row (const GridBlock *self, cairo_t *cr, guint row, double y)
 static void
 grid_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 {
-  const GridBlock *self = (const GridBlock *) block;
+  const GridBlock *self = (const GridBlock *)block;
   double y = head_height (self);
 
   if (self->head)
@@ -288,7 +305,7 @@ grid_draw (const BtBlock *block, cairo_t *cr, guint first, guint end)
 static void
 grid_block_free (BtBlock *block)
 {
-  GridBlock *self = (GridBlock *) block;
+  GridBlock *self = (GridBlock *)block;
 
   bt_grid_free (self->grid);
   g_free (self->x);
@@ -312,7 +329,8 @@ bt_block_new_grid (PangoContext *context, BtGrid *grid, gboolean head, gboolean 
       if (cell->text != NULL)
         cell->layout = bt_report_layout_new (context, cell->face, cell->text, 0);
     }
-  self->base = (BtBlock){ .n_items = n_rows - (head ? 1 : 0), .height = grid_height, .draw = grid_draw, .free = grid_block_free };
+  self->base
+      = (BtBlock){ .n_items = n_rows - (head ? 1 : 0), .height = grid_height, .draw = grid_draw, .free = grid_block_free };
   self->grid = grid;
   self->head = head;
   self->width = width;

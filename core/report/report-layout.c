@@ -4,7 +4,12 @@
 #include <math.h>
 
 /* A block, or some of its items, at a place on a page. */
-typedef struct { const BtBlock *block; double y; guint first, end; } Placed;
+typedef struct
+{
+  const BtBlock *block;
+  double y;
+  guint first, end;
+} Placed;
 
 struct _BtPages
 {
@@ -56,7 +61,8 @@ least_height (const BtFlow *flow, guint index)
   const BtBlock *block = g_ptr_array_index (flow, index);
 
   if (block->keep && index + 1 < flow->len)
-    return bt_block_height (block) + ((const BtBlock *) g_ptr_array_index (flow, index + 1))->above + least_height (flow, index + 1);
+    return bt_block_height (block) + ((const BtBlock *)g_ptr_array_index (flow, index + 1))->above
+           + least_height (flow, index + 1);
   /* Few lines stay together; of many, two at least stand on either side. */
   return block->height (block, 0, block->n_items <= 3 ? block->n_items : 2);
 }
@@ -103,7 +109,7 @@ bt_pages_new (BtFlow *flow, double height)
   BtPages *pages = g_new0 (BtPages, 1);
 
   pages->height = height;
-  pages->pages = g_ptr_array_new_with_free_func ((GDestroyNotify) g_array_unref);
+  pages->pages = g_ptr_array_new_with_free_func ((GDestroyNotify)g_array_unref);
   turn (pages);
   for (guint i = 0; i < flow->len; i++)
     add_block (pages, flow, i);
@@ -122,7 +128,7 @@ bt_pages_free (BtPages *pages)
 int
 bt_pages_n (const BtPages *pages)
 {
-  return (int) pages->pages->len;
+  return (int)pages->pages->len;
 }
 
 void

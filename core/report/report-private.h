@@ -1,4 +1,5 @@
-/* What a report's pages are made of: blocks that know their height, and the flow that puts them on pages. Private to core/report. */
+/* What a report's pages are made of: blocks that know their height, and the flow that puts them on pages. Private to
+ * core/report. */
 #ifndef BANDTALLY_REPORT_PRIVATE_H
 #define BANDTALLY_REPORT_PRIVATE_H
 
@@ -8,9 +9,24 @@
 
 G_BEGIN_DECLS
 
-typedef enum { BT_FACE_BODY, BT_FACE_STRONG, BT_FACE_NOTE, BT_FACE_HEADING, BT_FACE_TITLE, BT_FACE_ANSWER, BT_FACE_HASH, BT_N_FACES } BtFace;
+typedef enum
+{
+  BT_FACE_BODY,
+  BT_FACE_STRONG,
+  BT_FACE_NOTE,
+  BT_FACE_HEADING,
+  BT_FACE_TITLE,
+  BT_FACE_ANSWER,
+  BT_FACE_HASH,
+  BT_N_FACES
+} BtFace;
 /* From dark to light; every one of them readable on paper but HAIR, which is for lines. */
-typedef enum { BT_SHADE_INK, BT_SHADE_GREY, BT_SHADE_HAIR } BtShade;
+typedef enum
+{
+  BT_SHADE_INK,
+  BT_SHADE_GREY,
+  BT_SHADE_HAIR
+} BtShade;
 
 void bt_shade_set (cairo_t *cr, BtShade shade);
 /* For layouts in points whose glyphs stand where they stand on every surface. */
@@ -62,12 +78,19 @@ double bt_flow_height (const BtFlow *flow);
 /* Both beside each other; takes both. */
 BtBlock *bt_block_new_pair (BtFlow *left, BtFlow *right, double right_x);
 
-/* A table's cell: text, and before it a square in a colour or behind it a bar. */
-typedef enum { BT_COLUMN_LEFT, BT_COLUMN_RIGHT, BT_COLUMN_BAR } BtColumnKind;
+/* A table: cells of text, some with a square in a group's colour before it, and columns of bars. */
+typedef enum
+{
+  BT_COLUMN_LEFT,
+  BT_COLUMN_RIGHT,
+  BT_COLUMN_BAR
+} BtColumnKind;
 typedef struct _BtGrid BtGrid;
 /* @kinds: (array length=n_columns). */
 BtGrid *bt_grid_new (guint n_columns, const BtColumnKind *kinds);
 void bt_grid_free (BtGrid *grid);
+/* So that tables below each other have their second columns in one line. */
+void bt_grid_set_first_width (BtGrid *grid, double width);
 /* The next cell, row by row; takes @text. */
 void bt_grid_take (BtGrid *grid, BtFace face, char *text);
 void bt_grid_take_chip (BtGrid *grid, BtFace face, char *text, int group);
@@ -75,7 +98,7 @@ void bt_grid_take_bar (BtGrid *grid, double share);
 /* Takes @grid. @head: the first row is a head, repeated on every page; @spread: as wide as @width also where less would do. */
 BtBlock *bt_block_new_grid (PangoContext *context, BtGrid *grid, gboolean head, gboolean spread, double width);
 
-/* (element-type GPtrArray of placed blocks): see bt_pages_draw(). Keeps @flow, which has to live as long. */
+/* A flow parted into pages of a height; @flow has to live as long. */
 typedef struct _BtPages BtPages;
 BtPages *bt_pages_new (BtFlow *flow, double height);
 void bt_pages_free (BtPages *pages);
@@ -84,7 +107,8 @@ int bt_pages_n (const BtPages *pages);
 void bt_pages_draw (const BtPages *pages, int page, cairo_t *cr);
 
 /* Everything about a film, for pages this wide and high. */
-BtFlow *bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const char *date, double width, double height);
+BtFlow *bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const char *date, double width,
+                             double height);
 /* Parts of it, each appended to @flow. */
 void bt_report_add_bands (BtFlow *flow, PangoContext *context, BtFilm *film, const BtTally *tally, double width);
 void bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally, double width);

@@ -15,7 +15,8 @@ bt_report_range_text (BtRange range)
 
 /* Numbers of a band, or of a group's sum, from the centre to the area. */
 static void
-take_band (BtGrid *grid, BtFace face, double centre_ev, double centre_u_ev, double fwhm_ev, double fwhm_u_ev, double area, double area_u)
+take_band (BtGrid *grid, BtFace face, double centre_ev, double centre_u_ev, double fwhm_ev, double fwhm_u_ev, double area,
+           double area_u)
 {
   const double centre_nm = bt_nm_from_ev (centre_ev);
 
@@ -37,8 +38,11 @@ take_single_bands (BtGrid *grid, const BtTally *tally, BtGroup group, gboolean *
       *any_at_bound |= band->at_bound;
       *any_held |= band->held != 0;
       /* Translators: a band by its number within its group; the marks after it are explained below the table. */
-      bt_grid_take (grid, BT_FACE_NOTE, g_strdup_printf (_ ("     band %u%s%s"), band->index + 1, band->at_bound ? " †" : "", band->held ? " ‡" : ""));
-      take_band (grid, BT_FACE_NOTE, band->centre_ev, band->centre_u_ev, band->fwhm_ev, band->fwhm_u_ev, band->area, band->area_u);
+      bt_grid_take (
+          grid, BT_FACE_NOTE,
+          g_strdup_printf (_ ("     band %u%s%s"), band->index + 1, band->at_bound ? " †" : "", band->held ? " ‡" : ""));
+      take_band (grid, BT_FACE_NOTE, band->centre_ev, band->centre_u_ev, band->fwhm_ev, band->fwhm_u_ev, band->area,
+                 band->area_u);
     }
 }
 
@@ -63,9 +67,9 @@ bt_report_add_bands (BtFlow *flow, PangoContext *context, BtFilm *film, const Bt
       if (sum->n_bands == 0)
         continue;
       any = TRUE;
-      bt_grid_take_chip (grid, BT_FACE_STRONG, g_strdup (bt_group_name ((BtGroup) g)), g);
+      bt_grid_take_chip (grid, BT_FACE_STRONG, g_strdup (bt_group_name ((BtGroup)g)), g);
       take_band (grid, BT_FACE_BODY, sum->centre_ev, sum->centre_u_ev, sum->fwhm_ev, sum->fwhm_u_ev, sum->area, sum->area_u);
-      take_single_bands (grid, tally, (BtGroup) g, &any_at_bound, &any_held);
+      take_single_bands (grid, tally, (BtGroup)g, &any_at_bound, &any_held);
     }
   bt_flow_add (flow, bt_block_new_heading (context, _ ("Bands"), width), 11);
   if (!any)
@@ -75,8 +79,9 @@ bt_report_add_bands (BtFlow *flow, PangoContext *context, BtFilm *film, const Bt
       return;
     }
   bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
-  g_string_append (note, _ ("In brackets: the standard uncertainty, in the last digits of the value. Groups are averaged over the tails by their "
-                            "weights; single bands are those of the tail with the greatest weight."));
+  g_string_append (note,
+                   _ ("In brackets: the standard uncertainty, in the last digits of the value. Groups are averaged over the "
+                      "tails by their weights; single bands are those of the tail with the greatest weight."));
   if (any_at_bound)
     g_string_append_printf (note, " † %s", _ ("A number of this band stands at the bound that its band plan sets."));
   if (any_held)
@@ -111,7 +116,8 @@ bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally,
       bt_grid_take (grid, BT_FACE_BODY, g_strdup_printf ("%.2f", 100 * line->u));
       bt_grid_take_bar (grid, most > 0 ? line->u / most : 0);
     }
-  if (isfinite (tally->fraction.u))
+  /* A bound has no symmetric uncertainty that the lines would add up to. */
+  if (tally->fraction.bound == BT_BOUND_TWO_SIDED)
     {
       bt_grid_take (grid, BT_FACE_STRONG, g_strdup (_ ("all together")));
       bt_grid_take (grid, BT_FACE_STRONG, g_strdup_printf ("%.2f", 100 * tally->fraction.u));
@@ -147,7 +153,8 @@ bt_report_add_tails (BtFlow *flow, PangoContext *context, const BtTally *tally, 
   bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
   if (!isnan (tally->tail_share_at_s22))
     {
-      g_autofree char *share = g_strdup_printf (_ ("At S22 the tail is %.1f %% of the absorbance."), 100 * tally->tail_share_at_s22);
+      g_autofree char *share
+          = g_strdup_printf (_ ("At S22 the tail is %.1f %% of the absorbance."), 100 * tally->tail_share_at_s22);
 
       bt_flow_add (flow, bt_block_new_text (context, BT_FACE_NOTE, share, width), 3);
     }
@@ -160,13 +167,18 @@ add_mean (BtFlow *flow, PangoContext *context, const BtTally *tally, double widt
 
   if (isnan (tally->mean_alpha_per_cm))
     {
-      bt_flow_add (flow, bt_block_new_text (context, BT_FACE_NOTE, _ ("There is no absorption coefficient where the thickness is not known "
-                                                                     "or the wavelength was not measured."), width), 3);
+      bt_flow_add (
+          flow,
+          bt_block_new_text (context, BT_FACE_NOTE,
+                             _ ("There is no absorption coefficient where the thickness is not known or the wavelength "
+                                "was not measured."),
+                             width),
+          3);
       return;
     }
   alpha = bt_format_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm);
-  text = g_strdup_printf (_ ("Mean absorption coefficient from %.0f to %.0f nm: %s 1/cm"), bt_nm_from_ev (tally->mean_range.high_ev),
-                          bt_nm_from_ev (tally->mean_range.low_ev), alpha);
+  text = g_strdup_printf (_ ("Mean absorption coefficient from %.0f to %.0f nm: %s 1/cm"),
+                          bt_nm_from_ev (tally->mean_range.high_ev), bt_nm_from_ev (tally->mean_range.low_ev), alpha);
   bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, text, width), 3);
 }
 
@@ -205,7 +217,7 @@ tails_text (const BtRecipe *recipe)
 
   for (int kind = 0; kind < BT_N_TAILS; kind++)
     if (recipe->tails & (1u << kind))
-      g_string_append_printf (text, "%s%s", text->len > 0 ? "; " : "", bt_tail_title ((BtTailKind) kind));
+      g_string_append_printf (text, "%s%s", text->len > 0 ? "; " : "", bt_tail_title ((BtTailKind)kind));
   return g_string_free (text, FALSE);
 }
 
@@ -248,7 +260,7 @@ most_bands_text (const BtRecipe *recipe)
 
   for (int g = 0; g < BT_N_GROUPS; g++)
     if (recipe->max_bands[g] > 0)
-      g_string_append_printf (text, "%s%s %u", text->len > 0 ? ", " : "", bt_group_name ((BtGroup) g), recipe->max_bands[g]);
+      g_string_append_printf (text, "%s%s %u", text->len > 0 ? ", " : "", bt_group_name ((BtGroup)g), recipe->max_bands[g]);
   return g_string_free (text, FALSE);
 }
 
@@ -279,7 +291,7 @@ fitted_text (const BtTally *tally)
   if (tally->n == 0)
     return g_strdup (_ ("nothing"));
   range = bt_report_range_text (tally->range);
-  return g_strdup_printf (ngettext ("%s, %" G_GSIZE_FORMAT " point", "%s, %" G_GSIZE_FORMAT " points", (gulong) tally->n), range, tally->n);
+  return g_strdup_printf (ngettext ("%s, %u point", "%s, %u points", (gulong)tally->n), range, (guint)tally->n);
 }
 
 void
@@ -293,10 +305,13 @@ bt_report_add_recipe (BtFlow *flow, PangoContext *context, const BtTally *tally,
   bt_grid_take_pair (grid, _ ("Range fitted"), fitted_text (tally));
   bt_grid_take_pair (grid, _ ("Tails fitted"), tails_text (recipe));
   bt_grid_take_pair (grid, _ ("Diameter window"), window_text (tally));
-  bt_grid_take_pair (grid, _ ("Red shift of films"), g_strdup_printf (_ ("%.3f eV off the reference energies"), recipe->shift_ev));
+  bt_grid_take_pair (grid, _ ("Red shift of films"),
+                     g_strdup_printf (_ ("%.3f eV off the reference energies"), recipe->shift_ev));
   bt_grid_take_pair (grid, _ ("Most bands"), most_bands_text (recipe));
   bt_grid_take_pair (grid, _ ("Strength ratio S22 : M11"), ratio_text (recipe));
-  bt_grid_take_pair (grid, _ ("Limit"), isnan (recipe->limit) ? g_strdup (_ ("none")) : g_strdup_printf (_ ("at least %.1f %% semiconducting"), 100 * recipe->limit));
+  bt_grid_take_pair (grid, _ ("Limit"),
+                     isnan (recipe->limit) ? g_strdup (_ ("none"))
+                                           : g_strdup_printf (_ ("at least %.1f %% semiconducting"), 100 * recipe->limit));
   bt_grid_take_pair (grid, _ ("Intervals"), g_strdup_printf (_ ("%.4g %% confidence"), 100 * recipe->level));
   bt_grid_take_pair (grid, _ ("Left out above"), g_strdup_printf (_ ("absorbance %.3g"), recipe->max_absorbance));
   bt_grid_take_pair (grid, _ ("Excluded"), excluded_text (recipe));

@@ -13,7 +13,13 @@
 /* Height of the footer with the space above it. */
 #define FOOTER 22.0
 
-typedef struct { BtFilm *film; BtTally *tally; BtFlow *flow; BtPages *pages; } Entry;
+typedef struct
+{
+  BtFilm *film;
+  BtTally *tally;
+  BtFlow *flow;
+  BtPages *pages;
+} Entry;
 
 struct _BtReport
 {
@@ -61,7 +67,7 @@ bt_report_new (BtPaper paper)
   report->entries = g_array_new (FALSE, FALSE, sizeof (Entry));
   g_array_set_clear_func (report->entries, clear_entry);
   report->has_date = epoch != NULL && g_ascii_string_to_unsigned (epoch, 10, 0, G_MAXINT32, &seconds, NULL);
-  report->date = report->has_date ? (gint64) seconds : g_get_real_time () / G_USEC_PER_SEC;
+  report->date = report->has_date ? (gint64)seconds : g_get_real_time () / G_USEC_PER_SEC;
   return report;
 }
 
@@ -97,8 +103,8 @@ bt_report_set_date (BtReport *report, gint64 unix_s)
 static char *
 date_text (const BtReport *report, gboolean for_file)
 {
-  g_autoptr (GDateTime) date = report->has_date ? g_date_time_new_from_unix_utc (report->date)
-                                                : g_date_time_new_from_unix_local (report->date);
+  g_autoptr (GDateTime) date
+      = report->has_date ? g_date_time_new_from_unix_utc (report->date) : g_date_time_new_from_unix_local (report->date);
 
   if (date == NULL)
     return g_strdup ("");
@@ -140,13 +146,13 @@ draw_footer (BtReport *report, cairo_t *cr, const Entry *entry, int film_page, i
   const double y = report->height - MARGIN_BOTTOM - 9, width = report->width - 2 * MARGIN_X;
   g_autofree char *film = bt_report_film_name (entry->film);
   g_autofree char *number = report->entries->len > 1
-                              ? g_strdup_printf (_ ("page %d of %d, sheet %d of %d"), film_page + 1, bt_pages_n (entry->pages),
-                                                 page + 1, bt_report_n_pages (report))
-                              : g_strdup_printf (_ ("page %d of %d"), film_page + 1, bt_pages_n (entry->pages));
+                                ? g_strdup_printf (_ ("page %d of %d, sheet %d of %d"), film_page + 1,
+                                                   bt_pages_n (entry->pages), page + 1, bt_report_n_pages (report))
+                                : g_strdup_printf (_ ("page %d of %d"), film_page + 1, bt_pages_n (entry->pages));
   g_autofree char *right = g_strdup_printf ("Bandtally %s · %s", bt_version (), number);
   g_autoptr (PangoLayout) at_right = bt_report_layout_new (report->context, BT_FACE_NOTE, right, 0);
-  g_autoptr (PangoLayout) at_left = bt_report_layout_new (report->context, BT_FACE_NOTE, film,
-                                                          width - bt_layout_width_pt (at_right) - 12);
+  g_autoptr (PangoLayout) at_left
+      = bt_report_layout_new (report->context, BT_FACE_NOTE, film, width - bt_layout_width_pt (at_right) - 12);
 
   pango_layout_set_height (at_left, -1);
   pango_layout_set_ellipsize (at_left, PANGO_ELLIPSIZE_END);
@@ -196,10 +202,9 @@ describe (BtReport *report, cairo_surface_t *surface)
   g_autofree char *date = date_text (report, TRUE), *creator = g_strdup_printf ("Bandtally %s", bt_version ());
   g_autofree char *film = bt_report_film_name (g_array_index (report->entries, Entry, 0).film);
   g_autofree char *title
-    = report->entries->len > 1
-        ? g_strdup_printf (ngettext ("%s and %u film more", "%s and %u films more", report->entries->len - 1), film,
-                           report->entries->len - 1)
-        : g_strdup (film);
+      = report->entries->len > 1 ? g_strdup_printf (
+            ngettext ("%s and %u film more", "%s and %u films more", report->entries->len - 1), film, report->entries->len - 1)
+                                 : g_strdup (film);
 
   cairo_pdf_surface_set_metadata (surface, CAIRO_PDF_METADATA_TITLE, title);
   cairo_pdf_surface_set_metadata (surface, CAIRO_PDF_METADATA_CREATOR, creator);
@@ -241,11 +246,11 @@ bt_report_write_pdf (BtReport *report, const char *path, GError **error)
                    cairo_status_to_string (status));
       return FALSE;
     }
-  if (!g_file_set_contents (path, (const char *) bytes->data, (gssize) bytes->len, &reason))
+  if (!g_file_set_contents (path, (const char *)bytes->data, (gssize)bytes->len, &reason))
     {
       g_set_error (error, reason->domain, reason->code,
-                   _ ("%s: the report could not be written there: %s. Choose a folder that exists and that you may write to."), name,
-                   reason->message);
+                   _ ("%s: the report could not be written there: %s. Choose a folder that exists and that you may write to."),
+                   name, reason->message);
       return FALSE;
     }
   return TRUE;

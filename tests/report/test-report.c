@@ -6,7 +6,11 @@
 
 #include <bandtally/bandtally.h>
 
-typedef struct { BtFilm *film; BtTally *tally; } Graded;
+typedef struct
+{
+  BtFilm *film;
+  BtTally *tally;
+} Graded;
 
 /* @high_nm: end of the instrument's range; @thickness_nm 0: unknown. */
 static Graded
@@ -47,7 +51,12 @@ ungrade (Graded graded)
   bt_tally_unref (graded.tally);
 }
 
-static const struct { const char *name; double high_nm, thickness_nm, limit; BtBound bound; } films[] = {
+static const struct
+{
+  const char *name;
+  double high_nm, thickness_nm, limit;
+  BtBound bound;
+} films[] = {
   { "whole", 2500, 100, 0.6, BT_BOUND_TWO_SIDED },
   { "no limit", 2500, 100, NAN, BT_BOUND_TWO_SIDED },
   { "no thickness", 2500, 0, 0.6, BT_BOUND_TWO_SIDED },
@@ -92,13 +101,13 @@ test_papers (void)
       g_assert_cmpint (graded.tally->fraction.bound, ==, films[i].bound);
       for (int paper = BT_PAPER_A4; paper <= BT_PAPER_LETTER; paper++)
         {
-          BtReport *report = bt_report_new ((BtPaper) paper);
+          BtReport *report = bt_report_new ((BtPaper)paper);
 
           g_assert_cmpint (bt_report_n_pages (report), ==, 0);
           bt_report_add (report, graded.film, graded.tally);
           g_assert_cmpint (bt_report_n_pages (report), >=, 1);
           g_assert_cmpint (bt_report_n_pages (report), <=, 2);
-          check_pages (report, (BtPaper) paper);
+          check_pages (report, (BtPaper)paper);
           bt_report_free (report);
         }
       ungrade (graded);
@@ -166,11 +175,11 @@ test_long (void)
     g_array_append_val (graded.tally->readings, g_array_index (graded.tally->readings, BtReading, 0));
   for (int paper = BT_PAPER_A4; paper <= BT_PAPER_LETTER; paper++)
     {
-      BtReport *report = bt_report_new ((BtPaper) paper);
+      BtReport *report = bt_report_new ((BtPaper)paper);
 
       bt_report_add (report, graded.film, graded.tally);
       g_assert_cmpint (bt_report_n_pages (report), >, 3);
-      check_pages (report, (BtPaper) paper);
+      check_pages (report, (BtPaper)paper);
       bt_report_free (report);
     }
   /* Notes longer than a page are no reason to lose the rest. */
@@ -178,10 +187,10 @@ test_long (void)
   bt_film_set_notes (graded.film, text->str);
   for (int paper = BT_PAPER_A4; paper <= BT_PAPER_LETTER; paper++)
     {
-      BtReport *report = bt_report_new ((BtPaper) paper);
+      BtReport *report = bt_report_new ((BtPaper)paper);
 
       bt_report_add (report, graded.film, graded.tally);
-      check_pages (report, (BtPaper) paper);
+      check_pages (report, (BtPaper)paper);
       bt_report_free (report);
     }
   g_string_free (text, TRUE);
