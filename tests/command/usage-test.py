@@ -4,6 +4,7 @@ from whole_program import Folder, holds, main, run, test
 OPTIONS = {
     "grade": ["thickness-nm", "thickness-u-nm", "blank", "diameter-nm", "diameter-spread-nm", "strength-ratio", "strength-ratio-u",
               "limit", "level", "wavelengths-nm", "recipe", "substrate", "light-path", "reflectance", "substrate-index", "x-unit", "y-unit", "json", "csv", "report", "paper", "jobs"],
+    "check-instrument": ["standard", "concentration-mg-l", "x-unit", "y-unit", "output"],
     "inspect": ["points", "spectrum", "x-unit", "y-unit"],
     "energies": ["tube", "diameter-nm", "diameter-spread-nm", "set", "shift-mev", "nm", "csv"],
     "forecast": ["film", "lot", "fraction", "diameter-nm", "diameter-spread-nm", "thickness-nm", "thickness-u-nm", "tail",
@@ -54,6 +55,9 @@ WRONG = [
     (["energies", "--tube", "0,0"], ["--tube"]),
     (["energies", "--tube", "6,5", "--set", "x"], ["--set", "empirical"]),
     (["energies", "6,5"], ["6,5", "--tube"]),
+    (["check-instrument"], ["one file"]),
+    (["check-instrument", "--standard", "x", "film.csv"], ["--standard", "holmium"]),
+    (["check-instrument", "--concentration-mg-l", "x", "film.csv"], ["--concentration-mg-l"]),
     (["forecast", "--fraction", "1.5"], ["--fraction", "1.5"]),
     (["forecast", "--tail", "x"], ["--tail", "plasmon"]),
     (["forecast", "--range-nm", "2500,300"], ["--range-nm"]),
