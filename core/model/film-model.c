@@ -34,7 +34,7 @@ first_step (const BtFilmFit *fit)
 gsize
 bt_film_fit_wings (const BtFilmFit *fit)
 {
-  return first_step (fit) + fit->n_steps;
+  return first_step (fit) + fit->n_steps + fit->n_fringe;
 }
 
 gsize
@@ -108,6 +108,13 @@ init_tail (BtFilmFit *fit, const BtFilmData *data)
       fit->prior_mean[j] = data->step_size[k];
       fit->prior_u[j] = 2 * data->step_u[k];
     }
+  for (guint k = 0; k < fit->n_fringe; k++)
+    {
+      gsize j = offset + 1 + fit->n_steps + k;
+
+      init_parameter (fit, j, 0, -INFINITY, INFINITY, INFINITY);
+      fit->prior_u[j] = 2 * data->fringe_amplitude;
+    }
   init_parameter (fit, bt_film_fit_wings (fit), 0.1, 0, 0.6, 0.2);
   fit->prior_mean[bt_film_fit_wings (fit)] = 0.1;
   fit->prior_u[bt_film_fit_wings (fit)] = 0.15;
@@ -123,6 +130,7 @@ bt_film_fit_new (BtTailKind tail, const BtBandPlan *plan, const guint n_in_group
 
   fit->tail = tail;
   fit->n_steps = data->n_steps;
+  fit->n_fringe = data->fringe_cycles > 0 ? 2 : 0;
   init_tail (fit, data);
   for (guint g = 0; g < BT_N_GROUPS; g++)
     {
@@ -354,6 +362,15 @@ has_sideband (BtGroup group)
   return group == BT_S11 || group == BT_S22;
 }
 
+/* Cosine (0) or sine (1) of the fringe. */
+static inline double
+fringe_at (const BtFilmData *data, guint k, double e)
+{
+  double phase = 2 * G_PI * data->fringe_cycles * e;
+
+  return k == 0 ? cos (phase) : sin (phase);
+}
+
 /* Residual (model minus data over sigma) and its derivatives for parameters @x. */
 static void
 model_function (const double *x, double *residual, double *jacobian, gpointer user_data)
@@ -387,6 +404,14 @@ model_function (const double *x, double *residual, double *jacobian, gpointer us
           sum += on * x[offset + 1 + k];
           if (row != NULL)
             row[offset + 1 + k] = on * w;
+        }
+      for (guint k = 0; k < fit->n_fringe; k++)
+        {
+          double wave = fringe_at (data, k, e);
+
+          sum += wave * x[offset + 1 + fit->n_steps + k];
+          if (row != NULL)
+            row[offset + 1 + fit->n_steps + k] = wave * w;
         }
       for (guint b = 0; b < fit->n_bands; b++)
         {
@@ -489,6 +514,8 @@ bt_film_fit_eval (const BtFilmFit *fit, const BtFilmData *data, const double *en
       for (guint k = 0; k < fit->n_steps; k++)
         if (energy_ev[i] > data->step_ev[k])
           sum += fit->x[offset + 1 + k];
+      for (guint k = 0; k < fit->n_fringe; k++)
+        sum += fit->x[offset + 1 + fit->n_steps + k] * fringe_at (data, k, energy_ev[i]);
       if (tail_out != NULL)
         tail_out[i] = sum;
       for (guint b = 0; b < fit->n_bands; b++)

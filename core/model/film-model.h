@@ -9,7 +9,7 @@
 
 #define BT_MODEL_MAX_BANDS 24
 #define BT_MODEL_MAX_STEPS 3
-#define BT_MODEL_MAX_PARAMETERS (6 + BT_MODEL_MAX_STEPS + 3 * BT_MODEL_MAX_BANDS)
+#define BT_MODEL_MAX_PARAMETERS (8 + BT_MODEL_MAX_STEPS + 3 * BT_MODEL_MAX_BANDS)
 
 /**
  * BtFilmData:
@@ -21,6 +21,7 @@ typedef struct {
   gsize n;
   const double *energy_ev, *absorbance, *sigma;
   guint n_steps;
+  double fringe_cycles, fringe_amplitude; /* cycles per eV, 0: none; absorbance */
   double step_ev[BT_MODEL_MAX_STEPS], step_size[BT_MODEL_MAX_STEPS], step_u[BT_MODEL_MAX_STEPS];
 } BtFilmData;
 
@@ -28,14 +29,15 @@ typedef struct {
  * BtFilmFit:
  * @n_in_group: bands by group
  * @group: of each band; bands of a group stand together, from low energy at the start
- * @x: parameters: tail height, shape (1 or 2), offset, step sizes, share of Lorentzian wings, share of the phonon sideband, then height, centre (eV) and FWHM (eV) of each band
+ * @x: parameters: tail height, shape (1 or 2), offset, step sizes, cosine and sine of a fringe (where there is one), share of
+ *   Lorentzian wings, share of the phonon sideband, then height, centre (eV) and FWHM (eV) of each band
  * @covariance: of @x, row-major, for residuals in units of sigma
  * @held: (array): one bit a BtBandField for each band
  * @aic: chi2 + 2 K
  */
 typedef struct {
   BtTailKind tail;
-  guint n_steps, n_bands;
+  guint n_steps, n_fringe, n_bands; /* n_fringe: 0 or 2 */
   guint n_in_group[BT_N_GROUPS];
   BtGroup group[BT_MODEL_MAX_BANDS];
   guint held[BT_MODEL_MAX_BANDS];

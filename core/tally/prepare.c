@@ -169,6 +169,22 @@ take_steps (BtPrepared *prepared, BtFilm *film)
       }
 }
 
+/* A fringe is fitted as a wave of its own period, unless that is so short that averaging into bins has taken it away already. */
+static void
+take_fringe (BtPrepared *prepared, BtFilm *film)
+{
+  double period_ev;
+
+  prepared->has_fringe = bt_spectrum_find_fringe (bt_film_get_spectrum (film), &prepared->fringe);
+  if (!prepared->has_fringe)
+    return;
+  period_ev = bt_energy_ev_from_x (prepared->fringe.spacing_per_cm, BT_X_PER_CM);
+  if (period_ev < 2.5 * (prepared->range.high_ev - prepared->range.low_ev) / (double) MAX (prepared->data.n, 1))
+    return;
+  prepared->data.fringe_cycles = 1 / period_ev;
+  prepared->data.fringe_amplitude = prepared->fringe.amplitude;
+}
+
 /* Points of the fit within a group's expected body. */
 static gsize
 points_near (const BtPrepared *prepared, const BtBandWindow *window)
@@ -230,6 +246,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
   thin_points (prepared);
   count_neighbours (prepared);
   take_steps (prepared, film);
+  take_fringe (prepared, film);
   if (prepared->data.n >= MIN_POINTS)
     for (guint g = 0; g < BT_N_GROUPS; g++)
       if (prepared->plan.bands[g].in_range && points_near (prepared, &prepared->plan.bands[g]) >= 5)

@@ -2,6 +2,7 @@
 #ifndef BANDTALLY_PREPARE_H
 #define BANDTALLY_PREPARE_H
 
+#include <bandtally/fringe.h>
 #include <bandtally/tally.h>
 
 #include "../model/film-model.h"
@@ -30,6 +31,8 @@ typedef struct {
   BtDiameterWindow alternative; /* mean 0: none */
   guint n_in_group[BT_N_GROUPS];
   guint n_over_limit, n_saturated;
+  gboolean has_fringe;
+  BtFringe fringe;
 } BtPrepared;
 
 /* @previous (nullable): its window is taken where the recipe leaves the window to be proposed. */

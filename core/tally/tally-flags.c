@@ -42,6 +42,16 @@ flag_range (BtTally *tally, const BtPrepared *prepared)
 }
 
 static void
+flag_fringe (BtTally *tally, const BtPrepared *prepared)
+{
+  if (prepared->has_fringe)
+    add (tally, bt_flag_new ("fringe", _ ("The reading oscillates every %.1f 1/cm with an amplitude of %.4f: interference in a layer whose index times "
+                                          "thickness is about %.0f µm. The fit takes the wave into account; a wider slit or a wedged substrate "
+                                          "avoids it."),
+                             prepared->fringe.spacing_per_cm, prepared->fringe.amplitude, prepared->fringe.optical_thickness_um));
+}
+
+static void
 flag_window (BtTally *tally, const BtPrepared *prepared)
 {
   if (prepared->window_proposed && !prepared->window_found)
@@ -155,6 +165,7 @@ bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared)
   bt_flags_add_all (tally->flags, bt_spectrum_get_flags (bt_film_get_spectrum (film)));
   bt_flags_add_all (tally->flags, tally->curve->flags);
   flag_window (tally, prepared);
+  flag_fringe (tally, prepared);
   if (!(bt_film_get_thickness_nm (film) > 0) && bt_spectrum_get_y_unit (bt_film_get_spectrum (film)) != BT_Y_ALPHA_PER_CM)
     add (tally, bt_flag_new ("no-thickness", _ ("No thickness is known, so there is no absorption coefficient; the fraction does not need "
                                                 "it. Type the film's thickness to have both.")));

@@ -5,6 +5,7 @@
 #include <bandtally/units.h>
 #include <bandtally/flag.h>
 #include <bandtally/spectrum.h>
+#include <bandtally/fringe.h>
 #include <bandtally/instrument.h>
 #include <bandtally/tube.h>
 #include <bandtally/band_plan.h>

@@ -387,6 +387,48 @@ test_step (void)
   bt_tally_unref (without);
 }
 
+/* A fringe of a 66 um optical path (75.8 1/cm between maxima, 1 / (2 n d)) is found, said and fitted, and takes nothing from the bands. */
+static void
+test_fringe (void)
+{
+  BtForecast forecast;
+  gsize n;
+  g_autofree double *x = NULL, *y = NULL;
+  g_autoptr (BtSpectrum) plain_spectrum = NULL, fringed_spectrum = NULL;
+  g_autoptr (BtFilm) plain_film = NULL, fringed_film = NULL;
+  g_autoptr (GError) error = NULL;
+  BtRecipe *recipe = bt_recipe_new ();
+  BtTally *plain, *fringed;
+  BtFringe fringe;
+
+  bt_forecast_init (&forecast);
+  forecast.abundance_scatter = 0.3;
+  n = bt_forecast_n_points (&forecast);
+  x = g_new (double, n);
+  y = g_new (double, n);
+  g_assert_true (bt_forecast_compute (&forecast, x, y, &error));
+  plain_spectrum = bt_spectrum_new (x, y, n, BT_X_NM, BT_Y_ABSORBANCE, "plain", &error);
+  for (gsize i = 0; i < n; i++)
+    y[i] += 0.003 * cos (2 * G_PI * (1e7 / x[i]) * 2 * 66e-4 + 0.7);
+  fringed_spectrum = bt_spectrum_new (x, y, n, BT_X_NM, BT_Y_ABSORBANCE, "fringed", &error);
+  g_assert_false (bt_spectrum_find_fringe (plain_spectrum, &fringe));
+  g_assert_true (bt_spectrum_find_fringe (fringed_spectrum, &fringe));
+  g_assert_cmpfloat_with_epsilon (fringe.spacing_per_cm, 1 / (2 * 66e-4), 0.2);
+  g_assert_cmpfloat_with_epsilon (fringe.optical_thickness_um, 66, 0.2);
+  g_assert_cmpfloat_with_epsilon (fringe.amplitude, 0.003, 3e-4);
+  plain_film = bt_film_new (plain_spectrum);
+  fringed_film = bt_film_new (fringed_spectrum);
+  plain = tally_of (plain_film, recipe);
+  fringed = tally_of (fringed_film, recipe);
+  g_assert_null (bt_flags_find (plain->flags, "fringe"));
+  g_assert_nonnull (bt_flags_find (fringed->flags, "fringe"));
+  g_assert_cmpfloat_with_epsilon (fringed->fraction.value, plain->fraction.value, 0.5 * plain->fraction.u);
+  g_assert_cmpfloat_with_epsilon (fringed->groups[BT_S22].area / plain->groups[BT_S22].area, 1, 0.05);
+  bt_tally_unref (plain);
+  bt_tally_unref (fringed);
+  bt_recipe_free (recipe);
+}
+
 /* A featureless curve and one with too few points in range: no crash, no invented fraction. */
 static void
 test_featureless (void)
@@ -476,6 +518,7 @@ main (int argc, char **argv)
   g_test_add_func ("/tally/bound-and-verdict", test_bound_and_verdict);
   g_test_add_func ("/tally/flags", test_flags);
   g_test_add_func ("/tally/step", test_step);
+  g_test_add_func ("/tally/fringe", test_fringe);
   g_test_add_func ("/tally/featureless", test_featureless);
   g_test_add_func ("/tally/cancel", test_cancel);
   g_test_add_func ("/tally/strength-ratio", test_strength_ratio);
