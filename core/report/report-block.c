@@ -295,6 +295,16 @@ bt_flow_height (const BtFlow *flow)
   return height;
 }
 
+double
+bt_flow_least (const BtFlow *flow)
+{
+  double least = 0;
+
+  for (guint i = 0; i < flow->len; i++)
+    least = fmax (least, ((const BtBlock *)g_ptr_array_index (flow, i))->least);
+  return least;
+}
+
 typedef struct
 {
   BtBlock base;

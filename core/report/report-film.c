@@ -12,8 +12,6 @@
 #define GUTTER 24.0
 /* Of the labels in the title block. */
 #define LABEL_WIDTH 38.0
-/* Columns narrower than this would break words. */
-#define LEAST_COLUMN 200.0
 
 static const BtColumnKind pair_kinds[] = { BT_COLUMN_LEFT, BT_COLUMN_LEFT };
 
@@ -289,23 +287,42 @@ add_figure (BtFlow *flow, PangoContext *context, BtFilm *film, BtTally *tally, d
 
 typedef void (*AddFunc) (BtFlow *flow, PangoContext *context, const BtTally *tally, double width);
 
-/* Beside each other where the paper is wide enough and neither is long; else one below the other. */
-static void
-add_beside (BtFlow *flow, PangoContext *context, const BtTally *tally, AddFunc left_func, AddFunc right_func, double share,
-            double width, double height)
+/* Both beside each other, the left one with this share of the width; NULL where either would be too long, or have to break a
+ * number. */
+static BtBlock *
+beside_new (PangoContext *context, const BtTally *tally, AddFunc left_func, AddFunc right_func, double share, double width,
+            double height)
 {
   const double left_width = floor (share * (width - GUTTER)), right_width = width - GUTTER - left_width;
   BtFlow *left = bt_flow_new (), *right = bt_flow_new ();
 
   left_func (left, context, tally, left_width);
   right_func (right, context, tally, right_width);
-  if (fmin (left_width, right_width) >= LEAST_COLUMN && fmax (bt_flow_height (left), bt_flow_height (right)) < 0.6 * height)
-    {
-      bt_flow_add (flow, bt_block_new_pair (left, right, left_width + GUTTER), 11);
-      return;
-    }
+  if (bt_flow_least (left) <= left_width && bt_flow_least (right) <= right_width
+      && fmax (bt_flow_height (left), bt_flow_height (right)) < 0.6 * height)
+    return bt_block_new_pair (left, right, left_width + GUTTER);
   g_ptr_array_unref (left);
   g_ptr_array_unref (right);
+  return NULL;
+}
+
+/* Beside each other at the first share of the width that does for both; else one below the other. */
+static void
+add_beside (BtFlow *flow, PangoContext *context, const BtTally *tally, AddFunc left_func, AddFunc right_func, double share,
+            double width, double height)
+{
+  const double shares[] = { share, 0.54, 0.58, 0.62 };
+
+  for (gsize i = 0; i < G_N_ELEMENTS (shares); i++)
+    {
+      BtBlock *block = beside_new (context, tally, left_func, right_func, shares[i], width, height);
+
+      if (block != NULL)
+        {
+          bt_flow_add (flow, block, 11);
+          return;
+        }
+    }
   left_func (flow, context, tally, width);
   right_func (flow, context, tally, width);
 }

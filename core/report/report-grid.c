@@ -174,6 +174,7 @@ share_out (GridBlock *self, guint n_rows, gboolean spread)
       all += natural[c];
       all_least += least[c];
     }
+  self->base.least = all_least + GAP * (n - 1);
   for (guint c = 0; c < n; c++)
     self->widths[c] = all <= room ? natural[c] : room * least[c] / all_least;
   if (all > room && all_least < room)

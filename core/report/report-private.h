@@ -41,6 +41,7 @@ void bt_layout_show (cairo_t *cr, PangoLayout *layout, double x, double y);
 /**
  * BtBlock:
  * @n_items: parts that a page's end may separate (lines, rows); at least 1
+ * @least: width below which words or numbers would be broken
  * @above: space above it, not at a page's top
  * @keep: is not parted from the start of the next block
  * @bottom: stands at the foot of its page
@@ -51,6 +52,7 @@ typedef struct _BtBlock BtBlock;
 struct _BtBlock
 {
   guint n_items;
+  double least;
   double above;
   gboolean keep, bottom;
   /* Height of the items from @first up to, not with, @end, with what is repeated above them. */
@@ -75,6 +77,8 @@ BtFlow *bt_flow_new (void);
 /* Takes @block, with this space above it; returns it. */
 BtBlock *bt_flow_add (BtFlow *flow, BtBlock *block, double above);
 double bt_flow_height (const BtFlow *flow);
+/* Of its blocks the greatest. */
+double bt_flow_least (const BtFlow *flow);
 /* Both beside each other; takes both. */
 BtBlock *bt_block_new_pair (BtFlow *left, BtFlow *right, double right_x);
 

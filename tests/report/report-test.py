@@ -136,9 +136,15 @@ def test_many_films():
 
 
 def test_german():
-    path, _ = grade("german", HARBOUR, "--limit", "0.6", LANGUAGE="de", LC_ALL="C.UTF-8")
-    info = info_of(path)
-    assert int(info["Pages"]) <= 3, info
+    for paper in ("a4", "letter"):
+        path, films = grade("german-" + paper, HARBOUR, "--limit", "0.6", "--paper", paper, LANGUAGE="de", LC_ALL="C.UTF-8")
+        text = words_of(path)
+        assert info_of(path)["Pages"] == "2"
+        has(text, "Unterschrift", "Seite 1 von", "Rezept", "halbleitend")
+        assert not re.search(r"Signature|semiconducting|page \d|Recipe", text), text
+        # Longer words must not break the numbers under them.
+        for alpha in films[0]["absorption_coefficient"]:
+            same(row_of(text_of(path, "-layout"), f"{alpha['wavelength_nm']:g}", 3)[0], alpha["per_cm"], alpha["u_per_cm"])
 
 
 def test_ink_stays_off_the_edges():
