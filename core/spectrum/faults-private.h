@@ -4,8 +4,13 @@
 
 #include <bandtally/spectrum.h>
 
+/* Sorts @values. */
+G_GNUC_INTERNAL double bt_faults_median (double *values, gsize n);
 /* (transfer full): standard uncertainty of each of @n points. */
 G_GNUC_INTERNAL double *bt_faults_noise (const double *energy_ev, const double *absorbance, gsize n);
+/* Number of single points that stand out; their noise is raised to as much, so that no fit follows them. @largest is one's excess. */
+G_GNUC_INTERNAL guint bt_faults_find_spikes (const double *energy_ev, const double *absorbance, double *noise, gsize n,
+                                             double *largest_at_ev, double *largest);
 /* Appends BtRange. */
 G_GNUC_INTERNAL void bt_faults_find_saturated (const double *energy_ev, const double *absorbance, const double *noise, gsize n, GArray *saturated);
 /* Appends BtStep, by energy. */

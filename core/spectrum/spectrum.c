@@ -276,14 +276,46 @@ fill_axes (BtSpectrum *self, GError **error)
   return TRUE;
 }
 
+/* Bands of films are hardly narrower than 0.1 eV; a band wants at least five points within its width. */
+#define COARSE_EV 0.02
+#define BANDS_END_EV 2.5
+
+static void
+flag_sampling (BtSpectrum *self)
+{
+  gsize n = 0;
+  double spacing;
+
+  while (n + 1 < self->n && self->energy_ev[n + 1] < BANDS_END_EV)
+    n++;
+  if (n < 3)
+    return;
+  spacing = (self->energy_ev[n] - self->energy_ev[0]) / (double) n;
+  if (spacing > COARSE_EV)
+    bt_spectrum_add_flag (self, bt_flag_new ("sampling-coarse", _ ("The points lie %.0f meV apart on average, so bands narrower than %.0f meV are not "
+                                                                   "resolved. Measure at a smaller interval."),
+                                             1e3 * spacing, 5e3 * spacing));
+}
+
 static void
 find_faults (BtSpectrum *self)
 {
-  double lowest = INFINITY;
+  double lowest = INFINITY, spike_ev, spike;
+  guint n_spikes;
 
   self->noise = bt_faults_noise (self->energy_ev, self->absorbance, self->n);
   bt_faults_find_saturated (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated);
   bt_faults_find_steps (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated, self->steps);
+  n_spikes = bt_faults_find_spikes (self->energy_ev, self->absorbance, self->noise, self->n, &spike_ev, &spike);
+  if (n_spikes > 0)
+    bt_spectrum_add_flag (self, bt_flag_new ("spikes", g_dngettext (GETTEXT_PACKAGE,
+                                                                    "%u point stands out alone (by %+.3g at %.1f nm): a lamp's flicker or a change of "
+                                                                    "source. It has next to no weight in the fit; measure again to be rid of it.",
+                                                                    "%u points stand out alone (most by %+.3g at %.1f nm): a lamp's flicker or a "
+                                                                    "change of source. They have next to no weight in the fit; measure again to be rid "
+                                                                    "of them.", n_spikes),
+                                             n_spikes, spike, bt_nm_from_ev (spike_ev)));
+  flag_sampling (self);
   for (gsize i = 0; i < self->n; i++)
     lowest = fmin (lowest, self->absorbance[i]);
   if (lowest < -0.005 && self->y_unit != BT_Y_ALPHA_PER_CM)
