@@ -2,6 +2,7 @@
 #ifndef BANDTALLY_FAULTS_PRIVATE_H
 #define BANDTALLY_FAULTS_PRIVATE_H
 
+#include <bandtally/fringe.h>
 #include <bandtally/spectrum.h>
 
 /* Sorts @values. */
@@ -16,5 +17,9 @@ G_GNUC_INTERNAL void bt_faults_find_saturated (const double *energy_ev, const do
 /* Appends BtStep, by energy. */
 G_GNUC_INTERNAL void bt_faults_find_steps (const double *energy_ev, const double *absorbance, const double *noise, gsize n, const GArray *saturated,
                            GArray *steps);
+
+/* The strongest fringe: see bt_spectrum_find_fringe(). */
+G_GNUC_INTERNAL gboolean bt_faults_find_fringe (const double *energy_ev, const double *absorbance, const double *noise, gsize n,
+                                                BtFringe *fringe);
 
 #endif

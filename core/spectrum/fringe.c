@@ -1,5 +1,5 @@
 /* Fringes: an oscillation of constant period in wavenumber. */
-#include <bandtally/fringe.h>
+#include "faults-private.h"
 
 #include <math.h>
 #include <string.h>
@@ -70,11 +70,9 @@ power_at (const double *x, const double *y, gsize n, double cycles)
 
 /* The reading between LOW_EV and @high, every k-th point where there are more than MAX_POINTS. */
 static gsize
-take_stretch (BtSpectrum *self, double high, double **x, double **y, double *noise)
+take_stretch (const double *energy, const double *absorbance, const double *u, gsize n, double high, double **x, double **y, double *noise)
 {
-  gsize n, out = 0, first, last, stride;
-  const double *energy = bt_spectrum_get_energy_ev (self, &n), *absorbance = bt_spectrum_get_absorbance (self, NULL);
-  const double *u = bt_spectrum_get_noise (self, NULL);
+  gsize out = 0, first, last, stride;
 
   for (first = 0; first < n && energy[first] < LOW_EV; first++)
     ;
@@ -96,11 +94,11 @@ take_stretch (BtSpectrum *self, double high, double **x, double **y, double *noi
 }
 
 static gboolean
-find_in_stretch (BtSpectrum *self, double high, BtFringe *fringe)
+find_in_stretch (const double *energy_ev, const double *absorbance, const double *point_noise, gsize n_points, double high, BtFringe *fringe)
 {
   g_autofree double *x = NULL, *y = NULL;
   double noise, span, widest, best = 0, best_cycles = 0, sum = 0, lowest, highest;
-  gsize n = take_stretch (self, high, &x, &y, &noise), count = 0;
+  gsize n = take_stretch (energy_ev, absorbance, point_noise, n_points, high, &x, &y, &noise), count = 0;
 
   if (n < 200)
     return FALSE;
@@ -145,10 +143,19 @@ find_in_stretch (BtSpectrum *self, double high, BtFringe *fringe)
 }
 
 gboolean
-bt_spectrum_find_fringe (BtSpectrum *self, BtFringe *fringe)
+bt_faults_find_fringe (const double *energy_ev, const double *absorbance, const double *noise, gsize n, BtFringe *fringe)
 {
   for (gsize i = 0; i < G_N_ELEMENTS (high_ev); i++)
-    if (find_in_stretch (self, high_ev[i], fringe))
+    if (find_in_stretch (energy_ev, absorbance, noise, n, high_ev[i], fringe))
       return TRUE;
   return FALSE;
+}
+
+gboolean
+bt_spectrum_find_fringe (BtSpectrum *self, BtFringe *fringe)
+{
+  gsize n;
+  const double *energy_ev = bt_spectrum_get_energy_ev (self, &n);
+
+  return bt_faults_find_fringe (energy_ev, bt_spectrum_get_absorbance (self, NULL), bt_spectrum_get_noise (self, NULL), n, fringe);
 }

@@ -297,6 +297,19 @@ flag_sampling (BtSpectrum *self)
                                              1e3 * spacing, 5e3 * spacing));
 }
 
+/* A fringe that the axis is too coarse for looks like a row of steps: steps no larger than a few of its amplitudes are none. */
+static void
+forget_fringe_steps (BtSpectrum *self)
+{
+  BtFringe fringe;
+
+  if (self->steps->len == 0 || !bt_faults_find_fringe (self->energy_ev, self->absorbance, self->noise, self->n, &fringe))
+    return;
+  for (guint i = self->steps->len; i-- > 0;)
+    if (fabs (g_array_index (self->steps, BtStep, i).size) < 4 * fringe.amplitude)
+      g_array_remove_index (self->steps, i);
+}
+
 static void
 find_faults (BtSpectrum *self)
 {
@@ -306,6 +319,7 @@ find_faults (BtSpectrum *self)
   self->noise = bt_faults_noise (self->energy_ev, self->absorbance, self->n);
   bt_faults_find_saturated (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated);
   bt_faults_find_steps (self->energy_ev, self->absorbance, self->noise, self->n, self->saturated, self->steps);
+  forget_fringe_steps (self);
   n_spikes = bt_faults_find_spikes (self->energy_ev, self->absorbance, self->noise, self->n, &spike_ev, &spike);
   if (n_spikes > 0)
     bt_spectrum_add_flag (self, bt_flag_new ("spikes", g_dngettext (GETTEXT_PACKAGE,

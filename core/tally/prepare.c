@@ -256,6 +256,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
   prepared->data.sigma = prepared->sigma;
   for (gsize i = 0; i < prepared->data.n; i++)
     level += fabs (prepared->absorbance[i]) / (double) prepared->data.n;
-  bt_prepared_set_structure (prepared, 0.005 * level);
+  prepared->least_structure = 0.004 * level;
+  bt_prepared_set_structure (prepared, prepared->least_structure);
   return g_steal_pointer (&prepared);
 }

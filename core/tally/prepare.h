@@ -17,6 +17,8 @@
  * @noise: standard uncertainty of each point from the reading's noise
  * @per_length: points within one correlation length of the structure, at each point (at least 1)
  * @structure: amplitude of unmodelled structure, absorbance
+ * @least_structure: no reading is linear, and no model true, to better than this (0.4 % of the mean absorbance: photometers are good to 0.2 to
+ *   0.7 %, Burke and Mavrodineanu, J. Res. NBS 80A, 631 (1976))
  * @n_effective: independent points, from @noise, @structure and @per_length
  * @n_in_group: most bands by group: the recipe's, 0 where the group is out of range
  */
@@ -24,7 +26,7 @@ typedef struct {
   BtCurve *curve;
   BtFilmData data;
   double *energy_ev, *absorbance, *noise, *sigma, *per_length;
-  double structure, n_effective;
+  double structure, least_structure, n_effective;
   BtRange range;
   BtBandPlan plan;
   gboolean window_proposed, window_found;

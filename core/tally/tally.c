@@ -188,7 +188,7 @@ learn_structure (BtPrepared *prepared, const BtRecipe *recipe, GCancellable *can
 
       if (fits == NULL)
         return FALSE;
-      bt_prepared_set_structure (prepared, bt_fit_structure (g_ptr_array_index (fits, 0), prepared));
+      bt_prepared_set_structure (prepared, fmax (bt_fit_structure (g_ptr_array_index (fits, 0), prepared), prepared->least_structure));
     }
   return TRUE;
 }
