@@ -132,6 +132,12 @@ count_numbers (const BtRows *rows, const BtTable *table, gsize n_columns)
 {
   gsize *counts = g_new0 (gsize, n_columns);
 
+  if (table->plain && table->least == table->most)
+    {
+      for (gsize c = 0; c < n_columns; c++)
+        counts[c] = table->n_rows;
+      return counts;
+    }
   for (gsize r = table->first_row; r < table->first_row + table->n_rows; r++)
     {
       const BtRow row = rows->rows[r];
@@ -369,8 +375,7 @@ bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, co
   BtYUnit unit;
 
   columns->choices = g_array_new (FALSE, TRUE, sizeof (BtChoice));
-  for (gsize r = table->first_row; r < table->first_row + table->n_rows; r++)
-    columns->n_columns = MAX (columns->n_columns, rows->rows[r].n);
+  columns->n_columns = table->most;
   counts = count_numbers (rows, table, columns->n_columns);
   bt_text_headers (rows, table, columns);
   while (x + 1 < columns->n_columns && counts[x] < enough)

@@ -6,6 +6,9 @@
 /* Lines that are looked at in each of three places of a long file; short files are looked at whole. */
 #define SNIFFED_LINES 8
 #define SHORT_FILE 2048
+/* Of a long file "all" lines are those in so many slices of it. */
+#define LONG_FILE (8u << 20)
+#define SLICES 16
 /* The fewest rows among the lines looked at that are taken for an answer. */
 #define SURE_ROWS 8
 
@@ -120,6 +123,12 @@ score_text (const BtText *text, gboolean all, Score *score, BtField *fields)
 {
   const gsize size = (gsize) (text->end - text->at);
 
+  if (all && size > LONG_FILE)
+    {
+      for (gsize k = 0; k < SLICES; k++)
+        score_lines (text->at + size / SLICES * k, text->at + size / SLICES * k + LONG_FILE / SLICES, G_MAXSIZE, score, fields);
+      return;
+    }
   if (all || size < SHORT_FILE)
     {
       score_lines (text->at, text->end, G_MAXSIZE, score, fields);

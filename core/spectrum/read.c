@@ -15,6 +15,7 @@
 /* A preamble's line that is longer is no statement. */
 #define MAX_NOTE_BYTES 400
 #define MAX_NOTES 500
+#define MAX_SPECTRA 10000
 
 static gboolean
 fail (GError **error, BtSpectrumError code, const char *text)
@@ -130,7 +131,7 @@ describe (const BtText *text, const BtRows *rows, const BtTable *table, const Bt
   return g_string_free (out, FALSE);
 }
 
-/* The two columns without the rows in which neither holds a number. Returns their number. */
+/* The two columns without the rows that have no x. Returns their number. */
 static gsize
 take_points (const BtRows *rows, const BtTable *table, const BtChoice *choice, double *x, double *y)
 {
@@ -181,16 +182,26 @@ static BtSpectrum *
 make_spectrum (const BtText *text, const BtRows *rows, const BtTable *table, const BtColumns *columns, const BtChoice *choice,
                const char *title, BtSource *source, GError **error)
 {
-  double *x = g_new (double, table->n_rows + 1), *y = g_new (double, table->n_rows + 1), high = -INFINITY;
-  g_autofree char *reading = describe (text, rows, table, columns, choice);
-  const gsize n = take_points (rows, table, choice, x, y);
+  double *x, *y, high = -INFINITY;
+  g_autofree char *reading = NULL;
   BtSpectrum *spectrum;
+  gsize n;
 
-  for (gsize i = 0; i < n; i++)
+  if (choice->y_unit == BT_Y_REFLECTANCE || choice->y_unit == BT_Y_REFLECTANCE_PERCENT)
+    {
+      fail (error, BT_SPECTRUM_ERROR_UNITS,
+            _ ("it holds a reflectance, from which no absorbance follows; choose a file of absorbance or transmittance."));
+      return NULL;
+    }
+  x = g_new (double, table->n_rows + 1);
+  y = g_new (double, table->n_rows + 1);
+  n = take_points (rows, table, choice, x, y);
+  for (gsize i = 0; i < n && choice->y_unit == BT_Y_TRANSMITTANCE_PERCENT; i++)
     high = y[i] > high ? y[i] : high;
   spectrum = bt_spectrum_new_take (x, y, n, choice->x_unit, choice->y_unit, title, error);
   if (spectrum == NULL)
     return NULL;
+  reading = describe (text, rows, table, columns, choice);
   bt_spectrum_set_origin (spectrum, source, reading);
   flag_reading (spectrum, table, choice, high);
   return spectrum;
@@ -227,8 +238,16 @@ add_spectra (const BtText *text, const BtRows *rows, const BtTable *table, const
         g_autoptr (GError) reason = NULL;
         BtSpectrum *spectrum = make_spectrum (text, rows, table, &columns, choice, title, source, &reason);
 
-        if (spectrum != NULL)
+        if (spectrum != NULL && spectra->len < MAX_SPECTRA)
           g_ptr_array_add (spectra, spectrum);
+        else if (spectrum != NULL)
+          {
+            g_object_unref (spectrum);
+            g_set_error (&reason, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it holds more than %d spectra; split it."), MAX_SPECTRA);
+            g_ptr_array_set_size (spectra, 0);
+            g_propagate_error (error, g_steal_pointer (&reason));
+            break;
+          }
         else if (error != NULL && *error == NULL)
           g_propagate_error (error, g_steal_pointer (&reason));
       }

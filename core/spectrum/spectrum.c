@@ -151,8 +151,14 @@ usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark,
 static gsize
 merge_equal (Point *points, gsize n, guint *n_merged)
 {
-  gsize out = 0;
+  gsize out = 1;
 
+  /* Hardly any file has them. */
+  while (out < n && points[out].energy - points[out - 1].energy > 1e-12 * points[out].energy)
+    out++;
+  if (out >= n)
+    return n;
+  out = 0;
   for (gsize i = 0; i < n;)
     {
       double sum = 0;

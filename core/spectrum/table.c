@@ -9,7 +9,6 @@ typedef struct {
   BtTable run;              /* rows with nothing between them but comments */
   GArray *runs;             /* of BtTable */
   BtField *fields;
-  double *numbers;          /* BT_MAX_COLUMNS */
   const char *run_end;      /* text behind the last row */
   guint line, n_text;       /* lines that are no rows since the last row */
   gboolean in_run;
@@ -25,7 +24,7 @@ is_comment (const char *line, const char *end)
 
 /* Most lines are plain numbers between delimiters; they are read in one pass. Returns where the line ends, NULL where it is anything else. */
 static const char *
-scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numbers, gsize *n)
+scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numbers, gsize room, gsize *n)
 {
   gsize count = 0;
 
@@ -35,7 +34,7 @@ scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numb
 
       while (at < end && (*at == ' ' || (*at == '\t' && dialect.delimiter == ' ')))
         at++;
-      if (count == BT_MAX_COLUMNS)
+      if (count == room)
         return NULL;
       behind = bt_text_scan_plain (at, end, dialect.decimal, &numbers[count]);
       if (behind == NULL)
@@ -58,16 +57,31 @@ scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numb
     }
 }
 
+/* Makes room for a row like the widest one before it; wider ones take the slow way once. */
+static inline gsize
+make_room (BtRows *rows, gsize n)
+{
+  if (rows->n_values + n > rows->values_room)
+    {
+      rows->values_room = 2 * rows->values_room + n;
+      rows->values = g_renew (double, rows->values, rows->values_room);
+    }
+  return MIN (rows->values_room - rows->n_values, BT_MAX_COLUMNS);
+}
+
 static gboolean
 scan_row (Scan *scan, const char *at, const char *line_end, gsize *n)
 {
   const BtDialect dialect = scan->rows->dialect;
+  double *numbers;
 
   if (bt_text_row (at, line_end, dialect, scan->fields, n) == BT_ROW_NONE)
     return FALSE;
+  make_room (scan->rows, *n);
+  numbers = scan->rows->values + scan->rows->n_values;
   for (gsize i = 0; i < *n; i++)
-    if (!bt_text_number (scan->fields[i].text, scan->fields[i].n, dialect.decimal, &scan->numbers[i]))
-      scan->numbers[i] = (double) NAN;
+    if (!bt_text_number (scan->fields[i].text, scan->fields[i].n, dialect.decimal, &numbers[i]))
+      numbers[i] = (double) NAN;
     else if (i > 0 && scan->fields[i].text[scan->fields[i].n - 1] == '%')
       scan->rows->percent = TRUE;
   return TRUE;
@@ -81,7 +95,8 @@ end_run (Scan *scan)
   scan->in_run = FALSE;
 }
 
-static void
+/* Takes the @n numbers that stand behind the last value as a row. */
+static inline void
 add_row (Scan *scan, const char *at, gsize n)
 {
   BtRows *rows = scan->rows;
@@ -89,37 +104,36 @@ add_row (Scan *scan, const char *at, gsize n)
   if (!scan->in_run)
     {
       scan->run = (BtTable){ .above = scan->run_end, .top = at, .first_row = rows->n_rows, .first_line = scan->line,
-                             .n_skipped = scan->n_text };
+                             .n_skipped = scan->n_text, .least = (guint32) n, .plain = TRUE };
       scan->in_run = TRUE;
     }
   scan->n_text = 0;
+  scan->run.least = MIN (scan->run.least, (guint32) n);
+  scan->run.most = MAX (scan->run.most, (guint32) n);
   scan->run.n_rows++;
   scan->run.last_line = scan->line;
   if (rows->n_rows == rows->rows_room)
     {
-      rows->rows_room = MAX (2 * rows->rows_room, 256);
+      rows->rows_room = 2 * rows->rows_room;
       rows->rows = g_renew (BtRow, rows->rows, rows->rows_room);
     }
-  if (rows->n_values + n > rows->values_room)
-    {
-      rows->values_room = MAX (2 * rows->values_room, rows->n_values + n + 512);
-      rows->values = g_renew (double, rows->values, rows->values_room);
-    }
   rows->rows[rows->n_rows++] = (BtRow){ rows->n_values, (guint32) n, scan->line };
-  for (gsize i = 0; i < n; i++)
-    rows->values[rows->n_values++] = scan->numbers[i];
+  rows->n_values += n;
 }
 
 static void
 scan_lines (Scan *scan)
 {
   const BtText *text = scan->text;
+  BtRows *rows = scan->rows;
+  const BtDialect dialect = rows->dialect;
   const char *at = text->at, *next;
 
   for (scan->line = 1; at < text->end; at = next, scan->line++)
     {
       gsize n;
-      const char *line_end = scan_plain_row (at, text->end, scan->rows->dialect, scan->numbers, &n);
+      const gsize room = make_room (rows, 8);
+      const char *line_end = scan_plain_row (at, text->end, dialect, rows->values + rows->n_values, room, &n);
 
       if (line_end != NULL)
         {
@@ -132,6 +146,7 @@ scan_lines (Scan *scan)
       if (scan_row (scan, at, line_end, &n))
         {
           add_row (scan, at, n);
+          scan->run.plain = FALSE;
           scan->run_end = next;
         }
       else if (at == line_end)
@@ -187,11 +202,15 @@ join_runs (BtRows *rows, const GArray *runs)
           table.n_rows = run->first_row + run->n_rows - table.first_row;
           table.last_line = run->last_line;
           table.n_skipped += run->n_skipped;
+          table.least = MIN (table.least, run->least);
+          table.most = MAX (table.most, run->most);
+          table.plain = table.plain && run->plain;
         }
       else if (table.n_rows >= BT_SPECTRUM_MIN_POINTS && run->n_rows < BT_SPECTRUM_MIN_POINTS)
         {
           for (gsize r = 0; r < run->n_rows; r++)
             rows->rows[run->first_row + r].n = 0;
+          table.plain = FALSE;
           continue;
         }
       else
@@ -224,13 +243,11 @@ read_rows (const BtText *text, BtRows *rows)
   rows->tables = g_array_new (FALSE, TRUE, sizeof (BtTable));
   rows->percent = FALSE;
   scan.fields = g_new (BtField, BT_MAX_COLUMNS);
-  scan.numbers = g_new (double, BT_MAX_COLUMNS);
   scan_lines (&scan);
   rows->below = scan.run_end;
   if (rows->n_rows > 0)
     join_runs (rows, scan.runs);
   g_free (scan.fields);
-  g_free (scan.numbers);
   g_array_unref (scan.runs);
 }
 

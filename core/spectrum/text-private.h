@@ -68,6 +68,8 @@ typedef struct {
   gsize first_row, n_rows;      /* in BtRows.rows */
   guint first_line, last_line;
   guint n_skipped;              /* lines among its rows that are no rows */
+  guint32 least, most;          /* fields of its rows; all of them are numbers where both are equal and @plain */
+  gboolean plain;
 } BtTable;
 typedef struct { gsize start; guint32 n, line; } BtRow;
 typedef struct {

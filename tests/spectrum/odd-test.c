@@ -4,6 +4,7 @@
 #include <math.h>
 #include <stdlib.h>
 #include <string.h>
+#include <time.h>
 
 #include <glib/gstdio.h>
 
@@ -155,6 +156,7 @@ static const Refused refused[] = {
   { "meV", "Energy (meV),A\n900,0.1\n901,0.2\n902,0.3\n903,0.4\n904,0.5\n905,0.6\n906,0.7\n907,0.8\n", -1, BT_SPECTRUM_ERROR_UNITS, { "meV", "mev" } },
   { "counts", "nm,Intensity (counts)\n900,1001\n901,1002\n902,1003\n903,1004\n904,1005\n905,1006\n906,1007\n907,1008\n", -1,
     BT_SPECTRUM_ERROR_UNITS, { "counts" } },
+  { "reflectance", "nm,%R\n900,1\n901,2\n902,3\n903,4\n904,5\n905,6\n906,7\n907,8\n", -1, BT_SPECTRUM_ERROR_UNITS, { "reflectance", "line 2" } },
   { "alpha per um", "nm,alpha (1/um)\n900,1\n901,2\n902,3\n903,4\n904,5\n905,6\n906,7\n907,8\n", -1, BT_SPECTRUM_ERROR_UNITS, { "1/um" } },
 };
 
@@ -283,6 +285,51 @@ test_mutilated (void)
     }
 }
 
+static double
+seconds (void)
+{
+  struct timespec now;
+
+  clock_gettime (CLOCK_PROCESS_CPUTIME_ID, &now);
+  return (double) now.tv_sec + 1e-9 * (double) now.tv_nsec;
+}
+
+/* Reading 4,000 points, decoding and sniffing included, takes a third of what strtod alone takes (2.8 to 3.2 measured on a quiet machine); half is
+ * asked for here, where others may be at work. The best of many runs counts. */
+static void
+test_speed (void)
+{
+  GString *text = g_string_new ("# film = made up\nwavelength_nm,absorbance\n");
+  g_autoptr (GBytes) bytes = NULL;
+  double best_strtod = 1, best_read = 1, sum = 0;
+  gsize preamble = text->len;
+
+  for (guint i = 0; i < 4000; i++)
+    g_string_append_printf (text, "%.1f,%.6f\n", 300 + 0.5 * i, 0.4 + 0.2 * sin (0.01 * i));
+  bytes = g_bytes_new (text->str, text->len);
+  for (guint run = 0; run < 200; run++)
+    {
+      g_autoptr (GPtrArray) spectra = NULL;
+      char *at = text->str + preamble;
+      double start = seconds (), middle;
+
+      while (*at != '\0')
+        {
+          sum += strtod (at, &at);
+          at++;
+        }
+      middle = seconds ();
+      spectra = bt_spectrum_read_bytes (bytes, "speed.csv", NULL, NULL);
+      best_read = fmin (best_read, seconds () - middle);
+      best_strtod = fmin (best_strtod, middle - start);
+      g_assert_cmpuint (bt_spectrum_get_n_points (g_ptr_array_index (spectra, 0)), ==, 4000);
+    }
+  g_assert_cmpfloat (sum, >, 0);
+  g_test_message ("strtod %.1f us, reading %.1f us: %.2f times as fast", 1e6 * best_strtod, 1e6 * best_read, best_strtod / best_read);
+  g_assert_cmpfloat (best_read, <, best_strtod / 2);
+  g_string_free (text, TRUE);
+}
+
 int
 main (int argc, char **argv)
 {
@@ -304,5 +351,6 @@ main (int argc, char **argv)
   g_test_add_func ("/spectrum/places", test_places);
   g_test_add_func ("/spectrum/numbers", test_numbers);
   g_test_add_func ("/spectrum/mutilated", test_mutilated);
+  g_test_add_func ("/spectrum/speed", test_speed);
   return g_test_run ();
 }
