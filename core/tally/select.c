@@ -42,24 +42,28 @@ bt_fit_structure (const BtFilmFit *fit, const BtPrepared *prepared)
 {
   const BtFilmData *data = &prepared->data;
   g_autofree double *residual = g_new (double, data->n);
-  double sum = 0, weight = 0, noise2 = 0, cells = 0, k = bt_fit_parameters (fit), room;
+  double sum = 0, cells = 0, k = bt_fit_parameters (fit), room;
 
   bt_film_fit_residual (fit, data, residual, NULL);
-  for (gsize i = 0; i < data->n; i++)
+  /* Cell by cell of the correlation length, so that every stretch of the axis counts alike however densely it was sampled, and noise in one
+   * stretch hides no structure in another. */
+  for (gsize i = 0; i < data->n;)
     {
-      /* Every stretch of the axis counts alike, however densely it was sampled. */
-      double w = 1 / prepared->per_length[i];
+      double squares = 0, noise = 0;
+      gsize first = i;
 
-      sum += w * residual[i] * residual[i];
-      noise2 += w * prepared->noise[i] * prepared->noise[i];
-      weight += w;
-      cells += w;
+      for (; i < data->n && data->energy_ev[i] < data->energy_ev[first] + BT_STRUCTURE_LENGTH_EV; i++)
+        {
+          squares += residual[i] * residual[i];
+          noise += prepared->noise[i] * prepared->noise[i];
+        }
+      sum += fmax (0, squares - noise) / (double) (i - first);
+      cells += 1;
     }
-  if (!(weight > 0))
+  if (!(cells > 0))
     return 0;
-  sum = fmax (0, sum / weight - noise2 / weight);
   room = fmax (cells - k, cells / 6);
-  return STRUCTURE_FACTOR * sqrt (sum * cells / room);
+  return STRUCTURE_FACTOR * sqrt (sum / room);
 }
 
 static void
