@@ -316,14 +316,38 @@ bt_figure_film_at (BtFigure *figure, double energy_ev)
   return interpolate (figure->curve->energy_ev, figure->curve->absorbance, figure->curve->n, energy_ev);
 }
 
-double
-bt_figure_fit_at (BtFigure *figure, double energy_ev)
+/* The tail beyond the fitted points, by its own formula; a detector step's part is known only between them. */
+static double
+tail_beyond (BtFigure *figure, double energy_ev)
 {
-  return figure->tally != NULL ? bt_figure_fitted_at (figure, figure->tally->fit, energy_ev) : NAN;
+  double value;
+
+  if (figure->tally == NULL || figure->tally->n < 2 || !(energy_ev > 0))
+    return NAN;
+  bt_tail_eval (&figure->tally->tails[figure->tally->best].tail, &energy_ev, 1, &value);
+  return value;
 }
 
 double
 bt_figure_tail_at (BtFigure *figure, double energy_ev)
 {
-  return figure->tally != NULL ? bt_figure_fitted_at (figure, figure->tally->tail_curve, energy_ev) : NAN;
+  double value = figure->tally != NULL ? bt_figure_fitted_at (figure, figure->tally->tail_curve, energy_ev) : NAN;
+
+  return isnan (value) ? tail_beyond (figure, energy_ev) : value;
+}
+
+double
+bt_figure_fit_at (BtFigure *figure, double energy_ev)
+{
+  double value = figure->tally != NULL ? bt_figure_fitted_at (figure, figure->tally->fit, energy_ev) : NAN, band;
+
+  if (!isnan (value) || figure->tally == NULL || figure->tally->n < 2)
+    return value;
+  value = tail_beyond (figure, energy_ev);
+  for (guint b = 0; b < figure->tally->bands->len; b++)
+    {
+      bt_band_eval (&g_array_index (figure->tally->bands, BtBand, b), &energy_ev, 1, &band);
+      value += band;
+    }
+  return value;
 }

@@ -60,7 +60,8 @@ double bt_figure_y_from_diameter (BtFigure *figure, double diameter_nm);
 double bt_figure_diameter_from_y (BtFigure *figure, double y);
 /* What the axes now show (the view with its "all" resolved). */
 void bt_figure_get_shown (BtFigure *figure, BtFigureView *shown);
-/* Absorbance of the film, of the fit's tail and of the whole fit at an energy; NAN out of range. */
+/* Absorbance of the film at an energy (NAN where it was not measured); of the whole fit and of its tail, also beyond the fitted points (NAN
+ * without a fit). */
 double bt_figure_film_at (BtFigure *figure, double energy_ev);
 double bt_figure_fit_at (BtFigure *figure, double energy_ev);
 double bt_figure_tail_at (BtFigure *figure, double energy_ev);
