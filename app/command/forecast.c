@@ -66,32 +66,16 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
                         entries, _ ("The data are invented, and the file says so."), argc, argv, status);
 }
 
-/* A tail of another kind is as high at 500 nm as the default one, and of common steepness. */
 static gboolean
 set_tail (const char *name, BtForecast *forecast, GError **error)
 {
-  static const double shapes[BT_N_TAILS][2]
-      = { [BT_TAIL_PLASMON] = { 4.5, 1.0 }, [BT_TAIL_POWER] = { 1.5, 0 }, [BT_TAIL_EXPONENTIAL] = { 0.0015, 0 } };
-  const double at_ev = bt_ev_from_nm (500);
   BtTailKind kind;
-  double height;
 
   if (name == NULL)
     return TRUE;
   if (!bt_tail_from_name (name, &kind))
     return bad_value ("--tail", _ ("plasmon, power or exponential"), name, error);
-  if (kind == forecast->tail.kind)
-    return TRUE;
-  bt_tail_eval (&forecast->tail, &at_ev, 1, &height);
-  forecast->tail = (BtTail){ kind, 1, { shapes[kind][0], shapes[kind][1] }, 0 };
-  if (kind == BT_TAIL_PLASMON)
-    {
-      double unit;
-
-      bt_tail_eval (&forecast->tail, &at_ev, 1, &unit);
-      height /= unit;
-    }
-  forecast->tail.height = height;
+  bt_forecast_set_tail (forecast, kind);
   return TRUE;
 }
 

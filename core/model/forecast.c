@@ -11,6 +11,8 @@
 #include <bandtally/film.h>
 #include <bandtally/spectrum.h>
 
+#include "shapes-private.h"
+
 /* Area per carbon against M11's, times the strength ratio for semiconducting groups. Invented, in the published order
  * S11 > S22 > S33 per carbon. */
 static const double strengths[BT_N_GROUPS]
@@ -41,6 +43,23 @@ bt_forecast_init (BtForecast *forecast)
     .thickness_u_nm = 4,
     .seed = 1
   };
+}
+
+void
+bt_forecast_set_tail (BtForecast *forecast, BtTailKind kind)
+{
+  static const double shapes[BT_N_TAILS][2]
+    = { [BT_TAIL_PLASMON] = { 4.5, 1.0 }, [BT_TAIL_POWER] = { 1.5, 0 }, [BT_TAIL_EXPONENTIAL] = { 0.0015, 0 } };
+  const double at_ev = bt_ev_from_nm (BT_TAIL_REFERENCE_NM);
+  double height, unit;
+
+  g_return_if_fail (kind < BT_N_TAILS);
+  if (kind == forecast->tail.kind)
+    return;
+  bt_tail_eval (&forecast->tail, &at_ev, 1, &height);
+  forecast->tail = (BtTail){ kind, 1, { shapes[kind][0], shapes[kind][1] }, 0 };
+  bt_tail_eval (&forecast->tail, &at_ev, 1, &unit);
+  forecast->tail.height = height / unit;
 }
 
 gsize

@@ -49,6 +49,8 @@ typedef struct {
 
 /* A plain large-diameter film: 1.4 nm, spread 0.1 nm, two thirds semiconducting, 300-2500 nm, noise 5e-4, no faults. */
 void bt_forecast_init (BtForecast *forecast);
+/* Gives it a tail of another kind, of common steepness and as high at 500 nm as the one it had; the offset goes. */
+void bt_forecast_set_tail (BtForecast *forecast, BtTailKind kind);
 /* Number of points on its axis; 0 where the numbers make no axis. */
 gsize bt_forecast_n_points (const BtForecast *forecast);
 /* Fills wavelength_nm[n] and absorbance[n] (ascending wavelength). FALSE with @error set where the numbers make no film. */

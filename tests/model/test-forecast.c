@@ -359,6 +359,26 @@ test_both_kinds (void)
     }
 }
 
+/* Whatever the order of changes, the tail is as high at 500 nm as the first one. */
+static void
+test_other_tails (void)
+{
+  const double at_ev = bt_ev_from_nm (500);
+  BtForecast forecast;
+  double first, other;
+
+  bt_forecast_init (&forecast);
+  bt_tail_eval (&forecast.tail, &at_ev, 1, &first);
+  for (int round = 0; round < 2; round++)
+    for (BtTailKind kind = 0; kind < BT_N_TAILS; kind++)
+      {
+        bt_forecast_set_tail (&forecast, kind);
+        g_assert_cmpint (forecast.tail.kind, ==, kind);
+        bt_tail_eval (&forecast.tail, &at_ev, 1, &other);
+        g_assert_cmpfloat_with_epsilon (other, first, 1e-12);
+      }
+}
+
 int
 main (int argc, char **argv)
 {
@@ -372,6 +392,7 @@ main (int argc, char **argv)
   g_test_add_func ("/forecast/instrument", test_instrument);
   g_test_add_func ("/forecast/text", test_text);
   g_test_add_func ("/forecast/refusals", test_refusals);
+  g_test_add_func ("/forecast/other-tails", test_other_tails);
   g_test_add_func ("/forecast/both-kinds", test_both_kinds);
   return g_test_run ();
 }
