@@ -7,6 +7,7 @@
 
 #include <glib/gi18n-lib.h>
 
+#include "jcamp-private.h"
 #include "spectrum-private.h"
 #include "text-private.h"
 
@@ -307,7 +308,12 @@ bt_spectrum_read_bytes (GBytes *bytes, const char *name, const BtReadOptions *op
   else if (size > MAX_FILE_BYTES)
     fail (&reason, BT_SPECTRUM_ERROR_FORMAT, _ ("it is larger than 200 MB, which no spectrum is; export this film's spectrum alone."));
   else if (bt_text_decode (bytes, &text, &reason))
-    read_text (&text, options, source, spectra, &reason);
+    {
+      if (bt_jcamp_is (&text))
+        bt_jcamp_read (&text, options, source, spectra, &reason);
+      else
+        read_text (&text, options, source, spectra, &reason);
+    }
   bt_text_clear (&text);
   bt_source_unref (source);
   if (reason == NULL)
