@@ -44,7 +44,8 @@ typedef struct { int x_unit, y_unit; } BtReadOptions;
  * @path: a file name
  * @options: (nullable): what the user states about it
  *
- * Reads every spectrum in a file. Never depends on the locale.
+ * Reads every spectrum in a file: delimited text of any shape (up to 200 MB), or JCAMP-DX 4.24 and 5.01 (XYDATA in AFFN, PAC, SQZ, DIF and DUP;
+ * XYPOINTS; linked blocks). Never depends on the locale.
  *
  * Returns: (transfer full) (element-type BtSpectrum): at least one spectrum, or %NULL with @error set
  */
@@ -71,7 +72,8 @@ BtSpectrum *bt_spectrum_new (const double *x, const double *y, gsize n, BtXUnit 
 gsize bt_spectrum_get_n_points (BtSpectrum *self);
 const double *bt_spectrum_get_energy_ev (BtSpectrum *self, gsize *n);
 const double *bt_spectrum_get_absorbance (BtSpectrum *self, gsize *n);
-/* Standard uncertainty of each absorbance from the data's own scatter (robust, from second differences). */
+/* Standard uncertainty of each absorbance from the data's own scatter: robust, from fourth differences, going with the inverse of the light that
+ * passes; at least that of the last digit, never 0. A single point that stands out has as much as it stands out. */
 const double *bt_spectrum_get_noise (BtSpectrum *self, gsize *n);
 /* Linear interpolation; NAN outside the range. */
 double bt_spectrum_absorbance_at (BtSpectrum *self, double energy_ev);
