@@ -24,6 +24,8 @@ node_number (JsonNode *node, const char *member, double *value, GError **error)
   if (type != G_TYPE_DOUBLE && type != G_TYPE_INT64)
     return refuse (error, member, _ ("a number"));
   *value = json_node_get_double (node);
+  if (!isfinite (*value))
+    return refuse (error, member, _ ("a number that is not so large"));
   return TRUE;
 }
 
