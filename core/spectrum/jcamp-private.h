@@ -10,6 +10,10 @@ G_GNUC_INTERNAL gboolean bt_jcamp_is (const BtText *text);
 /* Appends every spectrum of the file. FALSE with @error set where there is none. */
 G_GNUC_INTERNAL gboolean bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *source, GPtrArray *spectra, GError **error);
 
+/* Abscissa @i of @n in equal steps from @first to @last. Where the ends are decimals of few places it is the double nearest to the decimal that
+ * the steps lead to. */
+G_GNUC_INTERNAL double bt_jcamp_abscissa (double first, double last, gsize n, gsize i);
+
 /**
  * BtAsdf:
  * @ordinates: (element-type double): so far; NAN for a missing one ("?")

@@ -81,6 +81,40 @@ factor (const Jcamp *jcamp, const char *name)
   return isnan (value) || !(fabs (value) > 0) ? 1 : value;
 }
 
+/* An integer times a factor such as 0.001: dividing by 1000 gives the double nearest to the decimal, multiplying not always. */
+static double
+scaled (double value, double by)
+{
+  static const double powers[] = { 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12 };
+
+  for (gsize i = 0; by < 0.5 && by > 0 && i < G_N_ELEMENTS (powers); i++)
+    if (!(fabs (1 / powers[i] - by) > 0))
+      return value / powers[i];
+  return value * by;
+}
+
+double
+bt_jcamp_abscissa (double first, double last, gsize n, gsize i)
+{
+  const double steps = (double) n - 1;
+
+  if (n < 2)
+    return first;
+  /* Integers are exact up to 2^53, so one rounding is left. */
+  for (double scale = 1; scale <= 1e6; scale *= 10)
+    {
+      const double low = round (first * scale), high = round (last * scale);
+
+      if (!(fabs (low / scale - first) > 0) && !(fabs (high / scale - last) > 0))
+        {
+          if (fmax (fabs (low), fabs (high)) * steps < 4e15 && steps * scale < 4e15)
+            return (low * (steps - (double) i) + high * (double) i) / (steps * scale);
+          break;
+        }
+    }
+  return (first * (steps - (double) i) + last * (double) i) / steps;
+}
+
 /* Reads the next line; FALSE at the end of the text or of the table (a labelled record begins). */
 static gboolean
 next_table_line (Jcamp *jcamp, const char **at, const char **line, const char **line_end)
@@ -128,7 +162,7 @@ read_ordinates (Jcamp *jcamp, const char *at, Table *table, GError **error)
     }
   for (guint i = 0; i < table->asdf.ordinates->len; i++)
     {
-      const double y = g_array_index (table->asdf.ordinates, double, i) * factor (jcamp, "YFACTOR");
+      const double y = scaled (g_array_index (table->asdf.ordinates, double, i), factor (jcamp, "YFACTOR"));
       double x;
 
       if (isnan (step) || isnan (first_x))
@@ -138,7 +172,7 @@ read_ordinates (Jcamp *jcamp, const char *at, Table *table, GError **error)
           return NULL;
         }
       /* By the ends, so that no rounding adds up. */
-      x = n_points > 1 ? (first_x * (n_points - 1 - i) + last_x * i) / (n_points - 1) : first_x + step * i;
+      x = n_points > 1 ? bt_jcamp_abscissa (first_x, last_x, (gsize) fmin (n_points, 1e9), i) : first_x + step * i;
       g_array_append_val (table->x, x);
       g_array_append_val (table->y, y);
     }
@@ -171,7 +205,7 @@ read_pairs (Jcamp *jcamp, const char *at, Table *table, GError **error)
                          _ ("line %u: the table holds a sign that no number has; export the spectrum again."), jcamp->line);
             return NULL;
           }
-        value = *line == '?' ? (double) NAN : value * factors[member];
+        value = *line == '?' ? (double) NAN : scaled (value, factors[member]);
         g_array_append_val (member == 0 ? table->x : table->y, value);
         member = 1 - member;
         line = behind;
@@ -304,7 +338,7 @@ read_table (Jcamp *jcamp, const char *at, gboolean pairs, GError **error)
 
 /* A labelled record that is no table: its value, with the lines that continue it. */
 static const char *
-read_value (Jcamp *jcamp, const char *at, const char *end, const char *name, const char *next)
+read_value (Jcamp *jcamp, const char *at, const char *end, const char *name, const char *spelling, const char *next)
 {
   GString *value = g_string_new_len (at, without_comment (at, end) - at);
   const char *line;
@@ -317,7 +351,7 @@ read_value (Jcamp *jcamp, const char *at, const char *end, const char *name, con
         g_string_append_len (value, line, end - line);
       }
   g_hash_table_insert (jcamp->labels, g_strdup (name), g_strstrip (g_strdup (value->str)));
-  bt_source_add_note (jcamp->source, *name == '$' ? name + 1 : name, value->str);
+  bt_source_add_note (jcamp->source, *name == '$' ? spelling + 1 : name, value->str);
   g_string_free (value, TRUE);
   return at;
 }
@@ -366,7 +400,12 @@ bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *sourc
             }
         }
       else
-        at = read_value (&jcamp, sign + 1, end, name, next);
+        {
+          /* Private labels keep their blanks, as notes of other files do. */
+          g_autofree char *spelling = g_strstrip (g_strndup (at + 2, (gsize) (sign - at - 2)));
+
+          at = read_value (&jcamp, sign + 1, end, name, spelling, next);
+        }
     }
   g_hash_table_unref (jcamp.labels);
   if (spectra->len > 0)

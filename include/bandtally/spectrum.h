@@ -98,6 +98,26 @@ const char *bt_spectrum_get_note (BtSpectrum *self, const char *key);
 const GPtrArray *bt_spectrum_get_flags (BtSpectrum *self);
 
 /**
+ * BtJcampForm:
+ * @BT_JCAMP_AFFN: numbers as they are
+ * @BT_JCAMP_DIFDUP: integers squeezed to their differences, a fraction of the size
+ *
+ * How the ordinates of a JCAMP-DX file are written.
+ */
+typedef enum { BT_JCAMP_AFFN, BT_JCAMP_DIFDUP } BtJcampForm;
+/**
+ * bt_spectrum_to_jcamp:
+ * @form: how to write the ordinates where equal steps and a power of ten make integers of them; otherwise they are written as
+ *   numbers, and points of unequal steps as pairs
+ *
+ * The reading exactly as it was read, as a JCAMP-DX 4.24 file (McDonald and Wilks, Appl. Spectrosc. 42, 151 (1988)). Reading it again
+ * gives the same numbers to the last bit. Energies are written in 1/cm, for the standard knows no electronvolts: of those the last bit may change.
+ *
+ * Returns: (transfer full): the file's text, in ASCII, lines ended by CR LF
+ */
+char *bt_spectrum_to_jcamp (BtSpectrum *self, BtJcampForm form);
+
+/**
  * BtStep:
  * @energy_ev: where the reading jumps (between two points), eV
  * @size: absorbance just above @energy_ev minus just below it (in energy)

@@ -124,7 +124,7 @@ test_published (void)
   g_assert_cmpuint (n, ==, 53);
   for (guint i = 0; i < 53; i++)
     {
-      g_assert_cmpfloat (y[i], ==, ordinates[i] * 0.01);
+      g_assert_cmpfloat (y[i], ==, ordinates[i] / 100.0);
       g_assert_cmpfloat_with_epsilon (x[i], 599.860 + 1.928808 * i, 1e-4);
     }
   g_assert_cmpfloat (x[52], ==, 700.158);
