@@ -10,6 +10,8 @@ void bt_tally_fill_readings (BtTally *tally, BtFilm *film);
 void bt_tally_fill_best (BtTally *tally, const BtCandidate *best, const BtPrepared *prepared);
 /* Group sums averaged over the candidates, and the diameter that the groups' centres mean. */
 void bt_tally_fill_groups (BtTally *tally, const BtCandidate *candidates, gsize n);
+/* Widens the fraction to what another window, as likely, says of the same film. */
+void bt_tally_admit_alternative (BtTally *tally, const BtTally *other);
 /* Flags of the reading, the light path and the fit. */
 void bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared);
 

@@ -314,24 +314,27 @@ fill_budget (BtTally *tally, const BtCandidate *candidates, gsize n, double mean
   return noise + structure + step + between_tails + plans + ratio * ratio;
 }
 
+void
+bt_tally_judge (BtTally *tally, double conformance)
+{
+  const double limit = tally->recipe->limit;
+
+  tally->conformance = conformance;
+  tally->acceptance_limit = limit + gsl_cdf_ugaussian_Pinv (0.95) * tally->fraction.u;
+  tally->refusal_limit = limit - gsl_cdf_ugaussian_Pinv (0.95) * tally->fraction.u;
+  tally->verdict = conformance >= 0.95 ? BT_VERDICT_ACCEPTED : conformance <= 0.05 ? BT_VERDICT_REFUSED : BT_VERDICT_UNDECIDED;
+}
+
 static void
 judge (BtTally *tally, const double *draws)
 {
-  const double limit = tally->recipe->limit;
   gsize above = 0;
 
-  tally->verdict = BT_VERDICT_NOT_JUDGED;
-  tally->conformance = tally->acceptance_limit = tally->refusal_limit = NAN;
-  if (isnan (limit) || tally->fraction.bound == BT_BOUND_NONE)
+  if (isnan (tally->recipe->limit))
     return;
   for (gsize d = 0; d < DRAWS; d++)
-    above += draws[d] >= limit ? 1 : 0;
-  tally->conformance = (double) above / DRAWS;
-  tally->acceptance_limit = limit + gsl_cdf_ugaussian_Pinv (0.95) * tally->fraction.u;
-  tally->refusal_limit = limit - gsl_cdf_ugaussian_Pinv (0.95) * tally->fraction.u;
-  tally->verdict = tally->conformance >= 0.95   ? BT_VERDICT_ACCEPTED
-                   : tally->conformance <= 0.05 ? BT_VERDICT_REFUSED
-                                                : BT_VERDICT_UNDECIDED;
+    above += draws[d] >= tally->recipe->limit ? 1 : 0;
+  bt_tally_judge (tally, (double) above / DRAWS);
 }
 
 /* Fraction of mean areas, limited to 0 .. 1 only here, where it is stated: M11 below zero stands for "none seen". */

@@ -39,4 +39,7 @@ double bt_area_fraction (double area_s, double area_m, double strength_ratio);
  * weights add up to 1. */
 void bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const BtPrepared *prepared);
 
+/* Sets the verdict from the probability that the fraction is at least the recipe's limit, and the acceptance limits from u. */
+void bt_tally_judge (BtTally *tally, double conformance);
+
 #endif

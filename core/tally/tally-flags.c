@@ -59,8 +59,8 @@ flag_window (BtTally *tally, const BtPrepared *prepared)
                                                   "diameter of the material."),
                              tally->plan.window.mean_nm));
   if (prepared->window_proposed && prepared->alternative.mean_nm > 0)
-    add (tally, bt_flag_new ("window-ambiguous", _ ("The bands fit diameters about %.2f nm nearly as well as the %.2f nm that were taken. State the "
-                                                    "diameter of the material, or measure a wider range."),
+    add (tally, bt_flag_new ("window-ambiguous", _ ("The bands fit diameters about %.2f nm nearly as well as the %.2f nm that were taken; the interval "
+                                                    "allows for both. State the diameter of the material, or measure a wider range."),
                              prepared->alternative.mean_nm, tally->plan.window.mean_nm));
 }
 

@@ -304,6 +304,23 @@ fit_tails (BtTally *tally, BtPrepared *prepared, BtEffort effort, const BtTally 
   return good;
 }
 
+/* Where the data leave two windows open the other one is fitted too, and the fraction holds for both. FALSE with @error set where cancelled. */
+static gboolean
+consider_alternative (BtTally *tally, BtFilm *film, const BtRecipe *recipe, BtDiameterWindow window, GCancellable *cancellable, GError **error)
+{
+  BtRecipe *stated = bt_recipe_copy (recipe);
+  BtTally *other;
+
+  stated->window = window;
+  other = bt_tally_film (film, stated, BT_EFFORT_FULL, NULL, NULL, NULL, cancellable, error);
+  bt_recipe_free (stated);
+  if (other == NULL)
+    return FALSE;
+  bt_tally_admit_alternative (tally, other);
+  bt_tally_unref (other);
+  return TRUE;
+}
+
 BtTally *
 bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTally *previous, BtProgressFunc progress,
                gpointer progress_data, GCancellable *cancellable, GError **error)
@@ -340,6 +357,13 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
   prepared->curve = tally->curve;
   bt_tally_fill_flags (tally, film, prepared);
   prepared->curve = NULL;
+  if (effort == BT_EFFORT_FULL && prepared->alternative.mean_nm > 0
+      && !consider_alternative (tally, film, recipe, prepared->alternative, cancellable, error))
+    {
+      free_fits (fits, BT_N_TAILS);
+      bt_tally_unref (tally);
+      return NULL;
+    }
   state_rule (tally);
   free_fits (fits, BT_N_TAILS);
   if (progress != NULL)

@@ -18,6 +18,8 @@
 /* Another window is worth telling when it lies this far off and explains this much of what the best explains. */
 #define APART_NM 0.2
 #define NEARLY_AS_GOOD 0.85
+/* The same where the data hardly show S11: without it patterns are easily taken for each other. */
+#define NEARLY_AS_GOOD_BLIND 0.65
 
 /* Groups that are looked for, with the width of one tube's line in a film, eV (common practice). */
 enum { PART_S11, PART_S22, PART_M11, PART_S33, N_PARTS };
@@ -292,6 +294,13 @@ search (Pattern *pattern, const GArray *tubes, double low_nm, double high_nm, do
   return best;
 }
 
+/* Whether the data reach far enough into the infrared to show S11 of all but the largest tubes; where they do not, S22 can pass for it. */
+static gboolean
+sees_s11 (const Curvature *curvature)
+{
+  return curvature->low_ev < 0.85;
+}
+
 gboolean
 bt_diameter_window_propose (const double *energy_ev, const double *absorbance, gsize n, BtDiameterWindow *window,
                             BtDiameterWindow *alternative)
@@ -319,7 +328,8 @@ bt_diameter_window_propose (const double *energy_ev, const double *absorbance, g
           search (&pattern, tubes, near.mean_nm - 0.03, near.mean_nm + 0.031, 0.01, fine, G_N_ELEMENTS (fine), NULL, window);
           found = TRUE;
           if (alternative != NULL
-              && search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), window, &other) > NEARLY_AS_GOOD * best)
+              && search (&pattern, tubes, 0.7, 2.3, 0.04, coarse, G_N_ELEMENTS (coarse), window, &other)
+                   > (sees_s11 (&curvature) ? NEARLY_AS_GOOD : NEARLY_AS_GOOD_BLIND) * best)
             *alternative = other;
         }
       pattern_clear (&pattern);
