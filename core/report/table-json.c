@@ -4,6 +4,8 @@
 
 #include <bandtally/bandtally.h>
 
+#include "../tally/json-numbers.h"
+
 BtFailure *
 bt_failure_new (const char *file, const char *reason)
 {
@@ -363,7 +365,7 @@ bt_tallies_to_json_with_failures (GPtrArray *films, GPtrArray *tallies, GPtrArra
   json_builder_end_object (builder);
 
   root = json_builder_get_root (builder);
-  text = json_to_string (root, TRUE);
+  text = bt_json_shorten_numbers (json_to_string (root, TRUE));
   lines = g_strconcat (text, "\n", NULL);
   g_free (text);
   json_node_unref (root);

@@ -7,6 +7,8 @@
 #include <glib/gi18n-lib.h>
 #include <json-glib/json-glib.h>
 
+#include "json-numbers.h"
+
 static const char *const field_names[] = { "centre_ev", "fwhm_ev", "height" };
 
 static gboolean
@@ -419,5 +421,5 @@ bt_recipe_to_json (const BtRecipe *recipe)
   root = json_builder_get_root (builder);
   json_generator_set_root (generator, root);
   json_generator_set_pretty (generator, TRUE);
-  return json_generator_to_data (generator, NULL);
+  return bt_json_shorten_numbers (json_generator_to_data (generator, NULL));
 }

@@ -33,6 +33,28 @@ test_round_trip (void)
   bt_recipe_free (back);
 }
 
+/* Numbers are written as a person would and read back as the same double. */
+static void
+test_digits (void)
+{
+  BtRecipe *recipe = bt_recipe_new (), *back;
+  g_autofree char *text = NULL;
+
+  recipe->limit = 0.95;
+  recipe->strength_ratio = 1.0 / 3;
+  recipe->strength_ratio_u = 1e-9;
+  g_free (recipe->name);
+  recipe->name = g_strdup ("a \"0.94999999999999996\" 12e3 name");
+  text = bt_recipe_to_json (recipe);
+  g_assert_nonnull (strstr (text, "0.95,"));
+  g_assert_nonnull (strstr (text, "\\\"0.94999999999999996\\\" 12e3"));
+  back = bt_recipe_new_from_json (text, -1, NULL);
+  g_assert_nonnull (back);
+  g_assert_true (bt_recipe_equal (recipe, back));
+  bt_recipe_free (recipe);
+  bt_recipe_free (back);
+}
+
 static void
 test_copy (void)
 {
@@ -109,6 +131,7 @@ main (int argc, char **argv)
 {
   g_test_init (&argc, &argv, NULL);
   g_test_add_func ("/recipe/round-trip", test_round_trip);
+  g_test_add_func ("/recipe/digits", test_digits);
   g_test_add_func ("/recipe/copy", test_copy);
   g_test_add_func ("/recipe/refused", test_refused);
   g_test_add_func ("/recipe/defaults-left-out", test_defaults_left_out);
