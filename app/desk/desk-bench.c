@@ -286,6 +286,29 @@ on_style_updated (GtkWidget *area, DeskBench *self)
     desk_bench_view_changed (self);
 }
 
+/* Tab goes from the figure to the bands' handles, by energy, to those of the beam, and out. */
+static gboolean
+desk_bench_focus (GtkWidget *widget, GtkDirectionType direction)
+{
+  DeskBench *self = DESK_BENCH (widget);
+  if (direction != GTK_DIR_TAB_FORWARD && direction != GTK_DIR_TAB_BACKWARD)
+    return FALSE; /* the arrow keys move what is in focus */
+  g_autoptr (GPtrArray) stops = g_ptr_array_new ();
+  int now = -1;
+  g_ptr_array_add (stops, self->area);
+  for (guint i = 0; i < self->handles->len; i++)
+    if (gtk_widget_get_visible (self->handles->pdata[i]) && gtk_widget_get_can_focus (self->handles->pdata[i]))
+      g_ptr_array_add (stops, self->handles->pdata[i]);
+  for (guint i = 0; i < stops->len; i++)
+    if (gtk_widget_is_focus (stops->pdata[i]))
+      now = (int) i;
+  int next = direction == GTK_DIR_TAB_FORWARD ? now + 1 : now < 0 ? (int) stops->len - 1 : now - 1;
+  if (next < 0 || next >= (int) stops->len)
+    return FALSE;
+  gtk_widget_grab_focus (stops->pdata[next]);
+  return TRUE;
+}
+
 static void
 desk_bench_get_property (GObject *object, guint id, GValue *value, GParamSpec *spec)
 {
@@ -324,6 +347,7 @@ static void
 desk_bench_class_init (DeskBenchClass *class)
 {
   GObjectClass *object_class = G_OBJECT_CLASS (class);
+  GTK_WIDGET_CLASS (class)->focus = desk_bench_focus;
   object_class->dispose = desk_bench_dispose;
   object_class->get_property = desk_bench_get_property;
   object_class->set_property = desk_bench_set_property;

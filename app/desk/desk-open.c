@@ -142,6 +142,7 @@ on_open_response (GtkNativeDialog *dialog, int response, DeskWindow *self)
 {
   if (response == GTK_RESPONSE_ACCEPT)
     {
+      desk_window_keep_folder (self, GTK_FILE_CHOOSER (dialog));
       g_autoptr (GSList) chosen = gtk_file_chooser_get_files (GTK_FILE_CHOOSER (dialog));
       g_autoptr (GPtrArray) files = g_ptr_array_new_with_free_func (g_object_unref);
       for (GSList *l = chosen; l; l = l->next)
@@ -168,6 +169,7 @@ open_dialog (DeskWindow *self, const char *title)
         gtk_file_filter_add_pattern (filter, *pattern);
       gtk_file_chooser_add_filter (GTK_FILE_CHOOSER (dialog), filter);
     }
+  desk_window_begin_in_folder (self, GTK_FILE_CHOOSER (dialog));
   return GTK_NATIVE_DIALOG (dialog);
 }
 

@@ -8,6 +8,16 @@ typedef gboolean (*SaveFunc) (DeskWindow *self, const char *path, GError **error
 
 typedef struct { DeskWindow *window; SaveFunc save; } Saving;
 
+/* What GLib says of a file is a reason, not yet a sentence that helps. */
+static void
+say_why (DeskWindow *self, const char *path, const GError *error)
+{
+  g_autofree char *sentence = NULL;
+  if (!g_str_has_suffix (error->message, "."))
+    sentence = g_strdup_printf (_("%s cannot be written (%s): choose another folder or name."), path, error->message);
+  desk_window_say (self, GTK_MESSAGE_ERROR, sentence ? sentence : error->message);
+}
+
 static void
 on_save_response (GtkNativeDialog *dialog, int response, gpointer data)
 {
@@ -16,8 +26,9 @@ on_save_response (GtkNativeDialog *dialog, int response, gpointer data)
     {
       g_autoptr (GError) error = NULL;
       g_autofree char *path = gtk_file_chooser_get_filename (GTK_FILE_CHOOSER (dialog));
+      desk_window_keep_folder (saving->window, GTK_FILE_CHOOSER (dialog));
       if (!saving->save (saving->window, path, &error))
-        desk_window_say (saving->window, GTK_MESSAGE_ERROR, error->message);
+        say_why (saving->window, path, error);
     }
   g_object_unref (dialog);
 }
@@ -32,6 +43,7 @@ ask (DeskWindow *self, const char *title, const char *ending, SaveFunc save)
   g_autofree char *name = g_strconcat (g_strdelimit (film, "/", '-'), ending, NULL);
   Saving *saving = g_new (Saving, 1);
   *saving = (Saving){ self, save };
+  desk_window_begin_in_folder (self, GTK_FILE_CHOOSER (dialog));
   gtk_file_chooser_set_do_overwrite_confirmation (GTK_FILE_CHOOSER (dialog), TRUE);
   gtk_file_chooser_set_current_name (GTK_FILE_CHOOSER (dialog), name);
   g_signal_connect (dialog, "response", G_CALLBACK (on_save_response), saving);
@@ -160,6 +172,7 @@ act_load_recipe (GSimpleAction *action, GVariant *parameter, gpointer window)
 {
   GtkFileChooserNative *dialog
       = gtk_file_chooser_native_new (_("Load recipe"), window, GTK_FILE_CHOOSER_ACTION_OPEN, _("_Open"), _("_Cancel"));
+  desk_window_begin_in_folder (window, GTK_FILE_CHOOSER (dialog));
   g_signal_connect (dialog, "response", G_CALLBACK (on_load_response), window);
   gtk_native_dialog_show (GTK_NATIVE_DIALOG (dialog));
 }

@@ -21,11 +21,16 @@ struct _DeskWindow {
   GtkWidget *notice, *rack, *bench, *ledger;
   GtkPrintSettings *print_settings;
   GtkPageSetup *page_setup;
+  char *folder; /* where files were last chosen; NULL: where the program was started */
 };
 
 void desk_window_say (DeskWindow *self, GtkMessageType type, const char *sentence);
 void desk_window_update_actions (DeskWindow *self);
 void desk_window_set_enabled (DeskWindow *self, const char *action, gboolean enabled);
+
+/* Lets a file dialog begin where the last one ended. */
+void desk_window_begin_in_folder (DeskWindow *self, GtkFileChooser *chooser);
+void desk_window_keep_folder (DeskWindow *self, GtkFileChooser *chooser);
 
 /* Each adds the actions of its file. */
 void desk_window_add_view_actions (DeskWindow *self);

@@ -102,6 +102,23 @@ on_selected (DeskWindow *self, DeskFilm *film)
   on_film_changed (self);
 }
 
+void
+desk_window_begin_in_folder (DeskWindow *self, GtkFileChooser *chooser)
+{
+  g_autofree char *here = g_get_current_dir ();
+  gtk_file_chooser_set_current_folder (chooser, self->folder ? self->folder : here);
+}
+
+void
+desk_window_keep_folder (DeskWindow *self, GtkFileChooser *chooser)
+{
+  char *folder = gtk_file_chooser_get_current_folder (chooser);
+  if (!folder)
+    return;
+  g_free (self->folder);
+  self->folder = folder;
+}
+
 static void
 desk_window_dispose (GObject *object)
 {
@@ -121,6 +138,7 @@ desk_window_dispose (GObject *object)
   g_clear_object (&self->fitter);
   g_clear_object (&self->print_settings);
   g_clear_object (&self->page_setup);
+  g_clear_pointer (&self->folder, g_free);
   G_OBJECT_CLASS (desk_window_parent_class)->dispose (object);
 }
 
@@ -145,6 +163,17 @@ desk_window_class_init (DeskWindowClass *class)
   gtk_widget_class_bind_template_child (widget_class, DeskWindow, mark_button);
 }
 
+/* The two halves of a GtkPaned lie in windows of their own, at the same place in each, so that GTK cannot tell which comes first. */
+static void
+order_focus (GtkWidget *container, GtkWidget *first, GtkWidget *second)
+{
+  GList last = { second, NULL, NULL }, chain = { first, &last, NULL };
+  last.prev = &chain;
+  G_GNUC_BEGIN_IGNORE_DEPRECATIONS
+  gtk_container_set_focus_chain (GTK_CONTAINER (container), &chain);
+  G_GNUC_END_IGNORE_DEPRECATIONS
+}
+
 static void
 desk_window_init (DeskWindow *self)
 {
@@ -161,6 +190,9 @@ desk_window_init (DeskWindow *self)
   gtk_box_pack_start (GTK_BOX (self->rack_place), self->rack, TRUE, TRUE, 0);
   gtk_box_pack_start (GTK_BOX (self->bench_place), self->bench, TRUE, TRUE, 0);
   gtk_paned_pack2 (GTK_PANED (self->right_panes), self->ledger, FALSE, FALSE);
+
+  order_focus (self->panes, self->rack_place, self->right_panes);
+  order_focus (self->right_panes, self->bench_place, self->ledger);
 
   desk_window_add_view_actions (self);
   desk_window_add_edit_actions (self);

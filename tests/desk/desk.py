@@ -178,6 +178,10 @@ class Desk:
         if hold:
             xdo("keyup", hold)
 
+    def focus(self, title):
+        """Brings the window whose title holds these words to the front."""
+        xdo("search", "--onlyvisible", "--pid", self.process.pid, "--name", title, "windowactivate")
+
     def key(self, *names):
         for name in names:
             xdo("key", name)
