@@ -38,6 +38,30 @@ convert_slowly (const char *text, gsize n, char decimal, double *value)
   return whole;
 }
 
+#ifdef __SIZEOF_INT128__
+/* Numbers written with every bit: @digits, above 2^53, over 10^@places, up to 19. Integer division to at least 54 bits, what is left over told apart
+ * from nothing, so that the one rounding (half to even) is that of strtod. */
+static double
+divide_exactly (guint64 digits, int places)
+{
+  static const guint64 tens[] = { 1u, 10u, 100u, 1000u, 10000u, 100000u, 1000000u, 10000000u, 100000000u, 1000000000u,
+                                  G_GUINT64_CONSTANT (10000000000), G_GUINT64_CONSTANT (100000000000), G_GUINT64_CONSTANT (1000000000000),
+                                  G_GUINT64_CONSTANT (10000000000000), G_GUINT64_CONSTANT (100000000000000), G_GUINT64_CONSTANT (1000000000000000),
+                                  G_GUINT64_CONSTANT (10000000000000000), G_GUINT64_CONSTANT (100000000000000000),
+                                  G_GUINT64_CONSTANT (1000000000000000000), G_GUINT64_CONSTANT (10000000000000000000) };
+  const unsigned __int128 numerator = (unsigned __int128) digits << 64, quotient = numerator / tens[places];
+  const gboolean exact = quotient * tens[places] == numerator;
+  const guint64 upper = (guint64) (quotient >> 64);
+  const int length = upper != 0 ? 128 - __builtin_clzll (upper) : 64 - __builtin_clzll ((guint64) quotient), shift = length - 53;
+  const unsigned __int128 half = (unsigned __int128) 1 << (shift - 1), rest = quotient & ((half << 1) - 1);
+  guint64 mantissa = (guint64) (quotient >> shift);
+
+  if (rest > half || (rest == half && (!exact || (mantissa & 1) != 0)))
+    mantissa++;
+  return ldexp ((double) mantissa, shift - 64);
+}
+#endif
+
 /* The exponent behind a mantissa, E or (Fortran) D: returns where it ends, NULL where the letter has no digits behind it. */
 static const char *
 scan_exponent (const char *at, const char *end, int *exponent)
@@ -99,6 +123,10 @@ bt_text_scan_number (const char *at, const char *end, char decimal, double *valu
    * PLDI 1990). */
   if (count <= 19 && digits <= G_GUINT64_CONSTANT (9007199254740992) && power >= -22 && power <= 22)
     *value = power < 0 ? (double) digits / powers[-power] : (double) digits * powers[power];
+#ifdef __SIZEOF_INT128__
+  else if (count <= 19 && digits > G_GUINT64_CONSTANT (9007199254740992) && power >= -19 && power <= 0)
+    *value = divide_exactly (digits, -power);
+#endif
   else
     {
       if (*start == '-' || *start == '+')

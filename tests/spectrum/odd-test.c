@@ -285,6 +285,39 @@ test_mutilated (void)
     }
 }
 
+/* Decimals in the middle between two doubles, where rounding goes to the even one, and next to it: as strtod has them. */
+static void
+test_halves (void)
+{
+  static const char *const ends[] = { ".5", ".50", ".500", ".501", ".499", "", ".25", ".75" };
+  g_autoptr (GRand) random = g_rand_new_with_seed (8);
+  GString *text = g_string_new ("nm,alpha (1/cm)\n");
+  g_autoptr (GArray) expected = g_array_new (FALSE, FALSE, sizeof (double));
+  g_autoptr (GBytes) bytes = NULL;
+  g_autoptr (GPtrArray) spectra = NULL;
+  const double *y;
+  gsize n;
+
+  for (guint i = 0; i < 8000; i++)
+    {
+      /* Halves lie in the middle above 2^52, odd integers above 2^53, and so on. */
+      guint64 whole = (G_GUINT64_CONSTANT (1) << g_rand_int_range (random, 52, 56)) + g_rand_int (random);
+      g_autofree char *number = g_strdup_printf ("%s%" G_GUINT64_FORMAT "%s", i % 3 == 0 ? "-" : "", whole, ends[i % G_N_ELEMENTS (ends)]);
+      double value = g_ascii_strtod (number, NULL);
+
+      g_string_append_printf (text, "%u,%s\n", 300 + i, number);
+      g_array_append_val (expected, value);
+    }
+  bytes = g_string_free_to_bytes (text);
+  spectra = bt_spectrum_read_bytes (bytes, "halves.csv", NULL, NULL);
+  g_assert_nonnull (spectra);
+  y = bt_spectrum_get_raw_y (g_ptr_array_index (spectra, 0), &n);
+  g_assert_cmpuint (n, ==, expected->len);
+  for (gsize i = 0; i < n; i++)
+    if (memcmp (&y[i], &g_array_index (expected, double, i), sizeof *y) != 0)
+      g_assert_cmpfloat (y[i], ==, g_array_index (expected, double, i));
+}
+
 static double
 seconds (void)
 {
@@ -350,6 +383,7 @@ main (int argc, char **argv)
     }
   g_test_add_func ("/spectrum/places", test_places);
   g_test_add_func ("/spectrum/numbers", test_numbers);
+  g_test_add_func ("/spectrum/halves", test_halves);
   g_test_add_func ("/spectrum/mutilated", test_mutilated);
   g_test_add_func ("/spectrum/speed", test_speed);
   return g_test_run ();
