@@ -5,8 +5,7 @@
 
 #include <glib/gi18n-lib.h>
 
-/* Ordinates beyond so many for each byte of the file, and as many again, are a count gone wrong. */
-#define ORDINATES_PER_BYTE 8
+/* More ordinates than bytes in the whole file, and as many again, are a count gone wrong. */
 #define ORDINATES_ANYWAY 100000
 
 typedef struct {
@@ -16,6 +15,7 @@ typedef struct {
   GPtrArray *spectra;
   GHashTable *labels;           /* of the block: plain label to value */
   guint line;                   /* of the line that is being read */
+  gsize n_left;                 /* ordinates that the file may still hold */
 } Jcamp;
 
 /* A table as it is read. */
@@ -321,8 +321,9 @@ read_table (Jcamp *jcamp, const char *at, gboolean pairs, GError **error)
   Table table = { .x = g_array_new (FALSE, FALSE, sizeof (double)), .y = g_array_new (FALSE, FALSE, sizeof (double)), .line = jcamp->line + 1 };
 
   table.asdf = (BtAsdf){ .ordinates = g_array_new (FALSE, FALSE, sizeof (double)),
-                         .most = ORDINATES_ANYWAY + ORDINATES_PER_BYTE * (gsize) (jcamp->text->end - jcamp->text->at) };
+                         .most = jcamp->n_left };
   at = pairs ? read_pairs (jcamp, at, &table, error) : read_ordinates (jcamp, at, &table, error);
+  jcamp->n_left -= MIN (table.asdf.ordinates->len, jcamp->n_left);
   if (at != NULL && table.y->len == 0)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES, _ ("line %u: the table is empty; export the spectrum again."), table.line);
@@ -351,7 +352,7 @@ read_value (Jcamp *jcamp, const char *at, const char *end, const char *name, con
         g_string_append_len (value, line, end - line);
       }
   g_hash_table_insert (jcamp->labels, g_strdup (name), g_strstrip (g_strdup (value->str)));
-  bt_source_add_note (jcamp->source, *name == '$' ? spelling + 1 : name, value->str);
+  bt_source_add_note (jcamp->source, *spelling == '$' ? spelling + 1 : spelling, value->str);
   g_string_free (value, TRUE);
   return at;
 }
@@ -360,7 +361,8 @@ gboolean
 bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *source, GPtrArray *spectra, GError **error)
 {
   Jcamp jcamp = { .text = text, .options = options, .source = source, .spectra = spectra,
-                  .labels = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free) };
+                  .labels = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free),
+                  .n_left = ORDINATES_ANYWAY + (gsize) (text->end - text->at) };
   g_autoptr (GError) reason = NULL;
 
   for (const char *at = text->at, *next; at != NULL && at < text->end;)
@@ -401,13 +403,16 @@ bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *sourc
         }
       else
         {
-          /* Private labels keep their blanks, as notes of other files do. */
+          /* Notes keep their blanks, as those of other files do. */
           g_autofree char *spelling = g_strstrip (g_strndup (at + 2, (gsize) (sign - at - 2)));
 
           at = read_value (&jcamp, sign + 1, end, name, spelling, next);
         }
     }
   g_hash_table_unref (jcamp.labels);
+  for (guint i = 0; i < spectra->len && reason != NULL; i++)
+    bt_spectrum_add_flag (g_ptr_array_index (spectra, i),
+                          bt_flag_new ("jcamp-block", _ ("Another spectrum of this file could not be read: %s"), reason->message));
   if (spectra->len > 0)
     return TRUE;
   if (reason != NULL)

@@ -180,6 +180,43 @@ test_linked (void)
   g_assert_cmpstr (bt_spectrum_get_title (g_ptr_array_index (spectra, 1)), ==, "second");
   g_assert_cmpint (bt_spectrum_get_y_unit (g_ptr_array_index (spectra, 0)), ==, BT_Y_ABSORBANCE);
   g_assert_cmpint (bt_spectrum_get_y_unit (g_ptr_array_index (spectra, 1)), ==, BT_Y_TRANSMITTANCE_PERCENT);
+  g_assert_cmpstr (bt_spectrum_get_note (g_ptr_array_index (spectra, 0), "thickness nm"), ==, "55");
+  /* What is left out is said, with its line. */
+  for (guint i = 0; i < spectra->len; i++)
+    {
+      const BtFlag *flag = bt_flags_find (bt_spectrum_get_flags (g_ptr_array_index (spectra, i)), "jcamp-block");
+
+      g_assert_nonnull (flag);
+      if (flag != NULL)
+        g_assert_nonnull (strstr (flag->text, "line 34: "));
+    }
+}
+
+/* Counts of repetitions cannot make more of a file than a spectrum has, nor can many of them: 300 blocks that would be 90000 ordinates each. */
+static void
+test_inflated (void)
+{
+  GString *text = g_string_new ("##TITLE= many\n##JCAMP-DX= 4.24\n##DATA TYPE= LINK\n##BLOCKS= 300\n");
+  g_autoptr (GPtrArray) spectra = NULL;
+  gsize n_all = 0;
+
+  for (guint i = 0; i < 300; i++)
+    {
+      g_autofree char *one = block ("one", 10, "", XYDATA, "400ABZ9990\n");
+
+      g_string_append (text, one);
+    }
+  spectra = read_text (text->str, NULL);
+  for (guint i = 0; spectra != NULL && i < spectra->len; i++)
+    {
+      gsize n;
+
+      bt_spectrum_get_raw_y (g_ptr_array_index (spectra, i), &n);
+      n_all += n;
+    }
+  g_assert_cmpuint (n_all, >, 80000);
+  g_assert_cmpuint (n_all, <=, 100000 + text->len);
+  g_string_free (text, TRUE);
 }
 
 /* Whatever the bytes: a spectrum or a sentence. */
@@ -222,6 +259,7 @@ main (int argc, char **argv)
     }
   g_test_add_func ("/spectrum/jcamp-published", test_published);
   g_test_add_func ("/spectrum/jcamp-linked", test_linked);
+  g_test_add_func ("/spectrum/jcamp-inflated", test_inflated);
   g_test_add_func ("/spectrum/jcamp-mutilated", test_mutilated);
   return g_test_run ();
 }
