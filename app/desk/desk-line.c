@@ -213,6 +213,7 @@ build_value (DeskLine *self)
   self->button = gtk_button_new ();
   gtk_container_add (GTK_CONTAINER (self->button), self->button_label);
   gtk_button_set_relief (GTK_BUTTON (self->button), GTK_RELIEF_NONE);
+  gtk_widget_set_valign (self->button, GTK_ALIGN_CENTER);
   gtk_style_context_add_class (gtk_widget_get_style_context (self->button), "desk-edit");
   self->entry = gtk_entry_new ();
   gtk_entry_set_width_chars (GTK_ENTRY (self->entry), 15);

@@ -155,8 +155,8 @@ on_open_response (GtkNativeDialog *dialog, int response, DeskWindow *self)
 static GtkNativeDialog *
 open_dialog (DeskWindow *self, const char *title)
 {
-  static const struct { const char *name; const char *patterns[8]; } filters[] = {
-    { N_ ("Spectra"), { "*.csv", "*.txt", "*.tsv", "*.dat", "*.asc", "*.prn", NULL } },
+  static const struct { const char *name; const char *patterns[10]; } filters[] = {
+    { N_ ("Spectra"), { "*.csv", "*.txt", "*.tsv", "*.dat", "*.asc", "*.prn", "*.jdx", "*.dx", NULL } },
     { N_ ("All files"), { "*", NULL } },
   };
   GtkFileChooserNative *dialog
