@@ -30,8 +30,8 @@ print_help (FILE *stream)
   g_string_append_printf (text, "%s\n\n%s\n",
                           _ ("Grades films of single-walled carbon nanotubes from their UV-Vis-NIR spectra."), _ ("Commands:"));
   for (gsize i = 0; i < G_N_ELEMENTS (commands); i++)
-    g_string_append_printf (text, "  %-16s %s\n", commands[i].name, _ (commands[i].summary));
-  g_string_append_printf (text, "\n%s\n  %-16s %s\n  %-16s %s\n\n%s\n", _ ("Options:"), "--help",
+    g_string_append_printf (text, "  %-18s %s\n", commands[i].name, _ (commands[i].summary));
+  g_string_append_printf (text, "\n%s\n  %-18s %s\n  %-18s %s\n\n%s\n", _ ("Options:"), "--help",
                           _ ("show this, or the help of a command"), "--version", _ ("show the version"),
                           _ ("“bandtally-cli COMMAND --help” lists the options of a command."));
   if (stream == stdout)
