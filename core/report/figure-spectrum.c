@@ -152,7 +152,6 @@ path_of (BtFigure *figure, cairo_t *cr, const Grid *grid, const double *base, co
 static void
 draw_tail (BtFigure *figure, cairo_t *cr, const Grid *grid)
 {
-  static const double dashes[] = { 5, 3 };
   const BtBox *box = &figure->panels[BT_PANEL_SPECTRUM];
 
   path_of (figure, cr, grid, grid->tail, NULL);
@@ -161,12 +160,38 @@ draw_tail (BtFigure *figure, cairo_t *cr, const Grid *grid)
   cairo_close_path (cr);
   bt_colour_set (cr, figure->palette->tail, 0.14);
   cairo_fill (cr);
+}
+
+static void
+draw_tail_line (BtFigure *figure, cairo_t *cr, const Grid *grid)
+{
+  static const double dashes[] = { 5, 3 };
+
   path_of (figure, cr, grid, grid->tail, NULL);
   bt_colour_set (cr, figure->palette->tail, 1);
   cairo_set_line_width (cr, fmax (0.7, figure->view.font_pt * 0.1));
   cairo_set_dash (cr, dashes, 2, 0);
   cairo_stroke (cr);
   cairo_set_dash (cr, NULL, 0, 0);
+}
+
+/* A band's outline where it stands off the tail: drawn all along, the last band's colour would hide the tail's line. */
+static void
+outline_of (BtFigure *figure, cairo_t *cr, const Grid *grid, double height)
+{
+  gboolean drawing = FALSE;
+
+  for (gsize i = 0; i < grid->n; i++)
+    {
+      double y = bt_figure_y_from_absorbance (figure, grid->tail[i] + grid->band[i]);
+      gboolean stands_off = fabs (grid->band[i]) > 0.015 * fabs (height);
+
+      if (stands_off && drawing)
+        cairo_line_to (cr, grid->x[i], y);
+      else if (stands_off)
+        cairo_move_to (cr, grid->x[i], y);
+      drawing = stands_off;
+    }
 }
 
 static void
@@ -187,7 +212,7 @@ draw_bands (BtFigure *figure, cairo_t *cr, Grid *grid)
       cairo_close_path (cr);
       bt_colour_set (cr, colour, selected ? 0.5 : 0.28);
       cairo_fill (cr);
-      path_of (figure, cr, grid, grid->tail, grid->band);
+      outline_of (figure, cr, grid, band->height);
       bt_colour_set (cr, colour, 0.95);
       cairo_set_line_width (cr, (selected ? 0.2 : 0.11) * figure->view.font_pt);
       cairo_stroke (cr);
@@ -326,6 +351,7 @@ bt_figure_draw_spectrum (BtFigure *figure, cairo_t *cr)
         {
           draw_tail (figure, cr, &grid);
           draw_bands (figure, cr, &grid);
+          draw_tail_line (figure, cr, &grid);
         }
       draw_reading (figure, cr);
       if (grid.n > 1)
