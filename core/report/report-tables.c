@@ -116,8 +116,7 @@ bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally,
       bt_grid_take (grid, BT_FACE_BODY, g_strdup_printf ("%.2f", 100 * line->u));
       bt_grid_take_bar (grid, most > 0 ? line->u / most : 0);
     }
-  /* A bound has no symmetric uncertainty that the lines would add up to. */
-  if (tally->fraction.bound == BT_BOUND_TWO_SIDED)
+  if (tally->fraction.bound != BT_BOUND_NONE)
     {
       bt_grid_take (grid, BT_FACE_STRONG, g_strdup (_ ("all together")));
       bt_grid_take (grid, BT_FACE_STRONG, g_strdup_printf ("%.2f", 100 * tally->fraction.u));

@@ -16,7 +16,7 @@ GQuark bt_tally_error_quark (void);
  * area 0.2 eV higher (bt_band_eval()). Uncertainties are standard uncertainties; 0 where the number is held. Area in absorbance eV. */
 typedef struct {
   BtGroup group;
-  guint index;                     /* within its group, from low energy */
+  guint index;                     /* within its group, from low energy; where the user holds a number of the group: as it was held */
   double centre_ev, centre_u_ev;
   double fwhm_ev, fwhm_u_ev;
   double height, height_u;         /* absorbance */
