@@ -55,6 +55,20 @@ bt_flags_find (const GPtrArray *flags, const char *code)
   return NULL;
 }
 
+/* Two steps are two flags of one code: only the same sentence is said once. */
+static gboolean
+holds (const GPtrArray *flags, const BtFlag *flag)
+{
+  for (guint i = 0; i < flags->len; i++)
+    {
+      const BtFlag *other = g_ptr_array_index (flags, i);
+
+      if (g_str_equal (other->code, flag->code) && g_str_equal (other->text, flag->text))
+        return TRUE;
+    }
+  return FALSE;
+}
+
 void
 bt_flags_add_all (GPtrArray *flags, const GPtrArray *from)
 {
@@ -62,7 +76,7 @@ bt_flags_add_all (GPtrArray *flags, const GPtrArray *from)
     {
       const BtFlag *flag = g_ptr_array_index (from, i);
 
-      if (bt_flags_find (flags, flag->code) == NULL)
+      if (!holds (flags, flag))
         g_ptr_array_add (flags, bt_flag_copy (flag));
     }
 }

@@ -420,6 +420,25 @@ detection_limits (BtTally *tally, const BtCandidate *candidates, gsize n, double
   return sqrt (variance);
 }
 
+/* Whether S22 stands out of its own uncertainty, spread between the fits included (decision limit as for M11). */
+static gboolean
+sees_s22 (const BtCandidate *candidates, gsize n)
+{
+  double mean = 0, variance = 0, s, m;
+
+  for (gsize c = 0; c < n; c++)
+    {
+      bt_candidate_expected (&candidates[c], &s, &m);
+      mean += candidates[c].weight * s;
+    }
+  for (gsize c = 0; c < n; c++)
+    {
+      bt_candidate_expected (&candidates[c], &s, &m);
+      variance += candidates[c].weight * (candidates[c].var_ss + (s - mean) * (s - mean));
+    }
+  return mean > 1.645 * sqrt (variance);
+}
+
 void
 bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const BtPrepared *prepared)
 {
@@ -435,6 +454,9 @@ bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const
     return;
   mean = average_fractions (tally, candidates, n);
   detection_limits (tally, candidates, n, &area_m);
+  /* Neither kind of tube is seen: any number would be invented. */
+  if (area_m < tally->m11_decision && !sees_s22 (candidates, n))
+    return;
   variance = fill_budget (tally, candidates, n, mean);
 
   draws = g_new (double, DRAWS);

@@ -143,20 +143,33 @@ crown_of (const BtFilmFit *fit, const double *x, BtGroup group, double low, doub
   return bend < 0 ? best + step * CLAMP (0.5 * (left - right) / bend, -1, 1) : best;
 }
 
+/* How far from the crown, towards @sign, the sum falls to half: a walk in 2 meV steps, then a straight line between the last two. */
 static double
-width_at_half (const BtFilmFit *fit, BtGroup group, double crown)
+half_side (const BtFilmFit *fit, const double *x, BtGroup group, double crown, double half, double sign)
 {
-  const double half = group_sum (fit, fit->x, group, crown) / 2, step = 0.001;
-  double low = crown, high = crown;
+  const double step = 0.002;
+  double last = group_sum (fit, x, group, crown);
 
-  while (low > crown - 2 && group_sum (fit, fit->x, group, low) > half)
-    low -= step;
-  while (high < crown + 2 && group_sum (fit, fit->x, group, high) > half)
-    high += step;
-  return high - low;
+  for (double d = step; d < 2; d += step)
+    {
+      double value = group_sum (fit, x, group, crown + sign * d);
+
+      if (value <= half)
+        return d - step * (half - value) / (last - value);
+      last = value;
+    }
+  return 2;
 }
 
-typedef struct { double crown, crown_var, mean, mean_var, fwhm; } GroupShape;
+static double
+width_at_half (const BtFilmFit *fit, const double *x, BtGroup group, double crown)
+{
+  const double half = group_sum (fit, x, group, crown) / 2;
+
+  return half_side (fit, x, group, crown, half, -1) + half_side (fit, x, group, crown, half, 1);
+}
+
+typedef struct { double crown, crown_var, mean, mean_var, fwhm, fwhm_var; } GroupShape;
 
 /* FALSE for an empty or negative group. */
 static gboolean
@@ -164,7 +177,7 @@ group_shape (const BtCandidate *candidate, BtGroup group, GroupShape *shape)
 {
   const BtFilmFit *fit = candidate->fit;
   double area = 0, first = 0, low = INFINITY, high = -INFINITY, x[BT_MODEL_MAX_PARAMETERS];
-  double mean_g[BT_MODEL_MAX_PARAMETERS] = { 0 }, crown_g[BT_MODEL_MAX_PARAMETERS] = { 0 };
+  double mean_g[BT_MODEL_MAX_PARAMETERS] = { 0 }, crown_g[BT_MODEL_MAX_PARAMETERS] = { 0 }, fwhm_g[BT_MODEL_MAX_PARAMETERS] = { 0 };
 
   for (guint b = 0; b < fit->n_bands; b++)
     if (fit->group[b] == group)
@@ -181,7 +194,7 @@ group_shape (const BtCandidate *candidate, BtGroup group, GroupShape *shape)
     return FALSE;
   shape->mean = first / area;
   shape->crown = crown_of (fit, fit->x, group, low, high);
-  shape->fwhm = width_at_half (fit, group, shape->crown);
+  shape->fwhm = width_at_half (fit, fit->x, group, shape->crown);
   memcpy (x, fit->x, sizeof (double) * fit->p);
   for (guint b = 0; b < fit->n_bands; b++)
     if (fit->group[b] == group)
@@ -194,16 +207,19 @@ group_shape (const BtCandidate *candidate, BtGroup group, GroupShape *shape)
           mean_g[j] = a / fit->x[j] * (fit->x[j + 1] - shape->mean) / area;
         for (gsize k = j; k < j + 3; k++)
           {
-            double h = 1e-3 * fabs (fit->x[k]);
+            double h = 1e-3 * fabs (fit->x[k]), crown;
 
             if (!(h > 0))
               continue;
             x[k] = fit->x[k] + h;
-            crown_g[k] = (crown_of (fit, x, group, low, high) - shape->crown) / h;
+            crown = crown_of (fit, x, group, low, high);
+            crown_g[k] = (crown - shape->crown) / h;
+            fwhm_g[k] = (width_at_half (fit, x, group, crown) - shape->fwhm) / h;
             x[k] = fit->x[k];
           }
       }
   shape->mean_var = candidate->scale * bt_film_fit_covariance_of (fit, mean_g, mean_g);
+  shape->fwhm_var = candidate->scale * bt_film_fit_covariance_of (fit, fwhm_g, fwhm_g);
   shape->crown_var = candidate->scale * bt_film_fit_covariance_of (fit, crown_g, crown_g);
   return TRUE;
 }
@@ -245,7 +261,7 @@ average_group (BtGroupTally *out, const BtCandidate *candidates, gsize n, BtGrou
         {
           average_add (&crown, w, shape.crown, shape.crown_var);
           average_add (&mean, w, shape.mean, shape.mean_var);
-          average_add (&fwhm, w, shape.fwhm, 0);
+          average_add (&fwhm, w, shape.fwhm, shape.fwhm_var);
         }
     }
   average_get (&area, &out->area, &out->area_u);

@@ -84,6 +84,9 @@ flag_fraction (BtTally *tally)
 {
   const BtGroupTally *m11 = &tally->groups[BT_M11];
 
+  if (tally->fraction.bound == BT_BOUND_NONE && tally->groups[BT_S22].n_bands > 0 && m11->n_bands > 0)
+    add (tally, bt_flag_new ("no-bands", _ ("Neither S22 nor M11 rises above what the fit leaves unexplained, so no fraction can be given. Check that this is "
+                                            "a nanotube film, its units and the diameter; a thicker film shows more.")));
   if (tally->fraction.bound == BT_BOUND_LOWER)
     {
       if (m11->area < -tally->m11_decision / 2)

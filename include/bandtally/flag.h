@@ -25,7 +25,7 @@ void bt_flag_free (BtFlag *flag);
 
 /* A list of flags is a GPtrArray with bt_flag_free() as its free function. */
 GPtrArray *bt_flags_new (void);
-/* Appends a copy of every flag of @from whose code @flags does not hold already. */
+/* Appends a copy of every flag of @from that @flags does not hold already, word for word. */
 void bt_flags_add_all (GPtrArray *flags, const GPtrArray *from);
 /* (nullable): the first flag with @code. */
 const BtFlag *bt_flags_find (const GPtrArray *flags, const char *code);
