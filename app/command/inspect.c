@@ -5,10 +5,14 @@
 
 #include "command.h"
 
+/* Lines of a file that --lines shows. */
+#define FIRST_LINES 12
+
 typedef struct
 {
   char **files;
   char *points, *spectrum, *x_unit, *y_unit;
+  gboolean lines;
 } Options;
 
 static void
@@ -25,6 +29,7 @@ static gboolean
 parse_options (Options *options, int *argc, char ***argv, int *status)
 {
   const GOptionEntry entries[] = {
+    { "lines", 0, 0, G_OPTION_ARG_NONE, &options->lines, N_ ("show the file's first lines as they are"), NULL },
     { "points", 0, 0, G_OPTION_ARG_FILENAME, &options->points, N_ ("write the points as they were read; - is standard output"),
       "FILE" },
     { "spectrum", 0, 0, G_OPTION_ARG_STRING, &options->spectrum, N_ ("only the N-th spectrum of a file that holds several"),
@@ -125,6 +130,17 @@ print_saturated (BtSpectrum *spectrum)
     print_line (_ ("Saturated"), _ ("%.1f to %.1f nm"), bt_nm_from_ev (ranges[i].high_ev), bt_nm_from_ev (ranges[i].low_ev));
 }
 
+/* The file's beginning as it is, beside what was made of it. */
+static void
+print_beginning (const char *file)
+{
+  char **lines = bt_spectrum_first_lines (file, FIRST_LINES, NULL);
+
+  for (guint i = 0; lines != NULL && lines[i] != NULL; i++)
+    g_print ("  %5u | %s\n", i + 1, lines[i]);
+  g_strfreev (lines);
+}
+
 static void
 print_spectrum (BtSpectrum *spectrum, const char *file)
 {
@@ -183,7 +199,7 @@ write_points (BtSpectrum *spectrum, const char *path, GError **error)
 
 /* @only: number of the one spectrum wanted, 0 for all. */
 static gboolean
-inspect_file (const char *file, const BtReadOptions *reading, guint only, const char *points, GError **error)
+inspect_file (const char *file, const BtReadOptions *reading, guint only, const char *points, gboolean lines, GError **error)
 {
   GPtrArray *spectra = bt_spectrum_read_file (file, reading, error);
   gboolean done = TRUE;
@@ -204,7 +220,11 @@ inspect_file (const char *file, const BtReadOptions *reading, guint only, const 
         BtSpectrum *spectrum = g_ptr_array_index (spectra, i);
 
         if (!is_standard_output (points))
-          print_spectrum (spectrum, file);
+          {
+            print_spectrum (spectrum, file);
+            if (lines)
+              print_beginning (file);
+          }
         if (points != NULL)
           {
             done = write_points (spectrum, points, error);
@@ -226,7 +246,7 @@ inspect (const Options *options, const BtReadOptions *reading, guint only)
 
       if (file != options->files && !is_standard_output (options->points))
         g_print ("\n");
-      if (!inspect_file (*file, reading, only, options->points, &error))
+      if (!inspect_file (*file, reading, only, options->points, options->lines, &error))
         {
           complain (error->message);
           g_error_free (error);

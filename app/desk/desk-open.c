@@ -3,6 +3,7 @@
 #include <glib/gi18n.h>
 
 #include "../locale.h"
+#include "desk-as-read.h"
 #include "desk-window-private.h"
 
 typedef struct {
@@ -267,6 +268,12 @@ act_read_as (GSimpleAction *action, GVariant *parameter, gpointer window)
 }
 
 static void
+act_as_read (GSimpleAction *action, GVariant *parameter, gpointer window)
+{
+  desk_as_read_show (GTK_WINDOW (window), desk_film_get_film (DESK_WINDOW (window)->film));
+}
+
+static void
 on_drop (GtkWidget *window, GdkDragContext *context, int x, int y, GtkSelectionData *data, guint info, guint time)
 {
   g_auto (GStrv) uris = gtk_selection_data_get_uris (data);
@@ -292,6 +299,7 @@ desk_window_add_open_actions (DeskWindow *self)
     { .name = "open", .activate = act_open },
     { .name = "open-demo", .activate = act_open_demo },
     { .name = "set-blank", .activate = act_set_blank },
+    { .name = "as-read", .activate = act_as_read },
     { .name = "read-as", .parameter_type = "s", .activate = act_read_as },
   };
   g_action_map_add_action_entries (G_ACTION_MAP (self), entries, G_N_ELEMENTS (entries), self);

@@ -57,6 +57,16 @@ largest_absorbance (const BtFilmData *data)
   return largest > 0 ? largest : 1;
 }
 
+static double
+lowest_absorbance (const BtFilmData *data)
+{
+  double lowest = INFINITY;
+
+  for (gsize i = 0; i < data->n; i++)
+    lowest = fmin (lowest, data->absorbance[i]);
+  return data->n > 0 ? lowest : 0;
+}
+
 /* How far a film's group may lie from where the reference energies put it, eV: published sets differ by this much at large diameters, most
  * for the higher transitions. */
 static const double centre_u_ev[BT_N_GROUPS] = { [BT_S11] = 0.05, [BT_S22] = 0.06, [BT_M11] = 0.08, [BT_S33] = 0.12, [BT_S44] = 0.15, [BT_M22] = 0.15 };
@@ -77,7 +87,7 @@ init_parameter (BtFilmFit *fit, gsize j, double x, double low, double high, doub
 static void
 init_tail (BtFilmFit *fit, const BtFilmData *data)
 {
-  const double scale = largest_absorbance (data);
+  const double scale = largest_absorbance (data), lowest = lowest_absorbance (data);
   gsize offset = bt_film_fit_offset (fit);
 
   init_parameter (fit, 0, scale / 2, 0, INFINITY, INFINITY);
@@ -89,8 +99,10 @@ init_tail (BtFilmFit *fit, const BtFilmData *data)
       fit->prior_mean[1 + s] = tail_windows[fit->tail].mean[s];
       fit->prior_u[1 + s] = tail_windows[fit->tail].u[s];
     }
-  /* A film is clear somewhere: an offset that is large against the reading is no offset, and below zero it is the instrument's. */
-  init_parameter (fit, offset, 0, -0.02 * scale, scale, INFINITY);
+  /* A film is clear somewhere: an offset that is large against the reading is no offset, and below zero it is the instrument's, as far down as
+   * the reading itself goes. */
+  init_parameter (fit, offset, fmin (lowest, 0), fmin (1.1 * lowest, 0) - 0.02 * scale, scale, INFINITY);
+  fit->prior_mean[offset] = fmin (lowest, 0);
   fit->prior_u[offset] = 0.1 * scale;
   for (guint k = 0; k < fit->n_steps; k++)
     {

@@ -92,6 +92,16 @@ const char *bt_spectrum_get_sha256 (BtSpectrum *self);
 /* One translated sentence: what the file was taken for ("Text, 1301 rows, columns 1 and 2 separated by semicolons, decimal
  * comma, wavelength in nm (header), absorbance (from the values)"). */
 const char *bt_spectrum_get_reading (BtSpectrum *self);
+/**
+ * bt_spectrum_first_lines:
+ * @path: a file
+ * @n: most lines wanted
+ *
+ * The beginning of a file as it is, for a person to look at: decoded to UTF-8, long lines cut after 160 characters.
+ *
+ * Returns: (transfer full) (array zero-terminated=1): the lines, or %NULL with @error set
+ */
+char **bt_spectrum_first_lines (const char *path, guint n, GError **error);
 /* "key = value" statements found in the preamble, such as thickness; (nullable) where absent. Keys compare without case. */
 const char *bt_spectrum_get_note (BtSpectrum *self, const char *key);
 /* (element-type BtFlag): faults of the reading itself. */

@@ -77,6 +77,22 @@ def blank_is_chosen_and_removed(desk, folder):
     desk.settled()
 
 
+def file_is_shown_as_read(desk, folder):
+    menu(desk, "As read…")
+    window = desk.wait(role="frame", contains="As read")
+    text = d.until(lambda: desk.find(role="text", name="First lines of the file", top=window), "the file's first lines")
+    shown = text.queryText().getText(0, -1)
+    with open(os.path.join(folder, "a2.csv")) as file:
+        lines = file.read().splitlines()
+    for number in (1, 5, 60):
+        d.need(f"{number:5d}  {lines[number - 1]}\n" in shown, f"line {number} as it is in the file")
+    d.need(desk.find(role="label", contains="columns 1 and 2", top=window), "what the file was taken for")
+    desk.drawn()
+    desk.shot(os.path.join(shots, "as-read.png"))
+    desk.key("Escape")
+    d.until(lambda: not desk.find(role="frame", contains="As read"), "the window closed")
+
+
 def tables_are_saved(desk, folder):
     path = os.path.join(folder, "all.json")
     menu(desk, "Save table of all films", "As JSON…")
@@ -241,7 +257,7 @@ def main():
         with open(os.path.join(folder, "blank.csv"), "w") as file:
             file.write("wavelength_nm,absorbance\n" + "".join(f"{nm},{0.01 + 1e-5 * (nm % 7)}\n" for nm in range(200, 2601, 2)))
         desk = d.Desk(program, cwd=folder, environment={"HOME": folder})
-        for function in (opens_by_dialog, opening_is_undone, blank_is_chosen_and_removed, tables_are_saved, figure_is_saved,
+        for function in (opens_by_dialog, opening_is_undone, blank_is_chosen_and_removed, file_is_shown_as_read, tables_are_saved, figure_is_saved,
                          recipe_goes_out_and_in, wrong_recipe_is_named, place_that_cannot_be_written_is_named,
                          escape_ends_a_drag, flank_is_dragged, main_job_by_keyboard):
             if not tap.test(function.__name__.replace("_", " "), function, desk, folder):
