@@ -13,17 +13,10 @@ bt_figure_text (BtFigure *figure, cairo_t *cr, const char *markup, double scale)
 {
   PangoLayout *layout;
 
+  /* One context for all: finding fonts anew for each label would take longer than all the rest. */
   if (cr != NULL)
-    layout = pango_cairo_create_layout (cr);
-  else
-    {
-      PangoContext *context = pango_font_map_create_context (pango_cairo_font_map_get_default ());
-
-      layout = pango_layout_new (context);
-      g_object_unref (context);
-    }
-  /* At 72 dpi a point is a unit of the surface; sizes in points let Pango scale superscripts. */
-  pango_cairo_context_set_resolution (pango_layout_get_context (layout), 72);
+    pango_cairo_update_context (cr, figure->context);
+  layout = pango_layout_new (figure->context);
   pango_font_description_set_size (figure->font, (int) (figure->view.font_pt * scale * PANGO_SCALE));
   pango_layout_set_font_description (layout, figure->font);
   pango_layout_set_markup (layout, markup, -1);
@@ -141,68 +134,134 @@ floor_panel (const BtFigure *figure)
   return &figure->panels[0];
 }
 
+/* Whether a label centred at x stays inside the figure. */
+static gboolean
+inside (const BtFigure *figure, double x, double width)
+{
+  return x - width / 2 >= 0 && x + width / 2 <= figure->width;
+}
+
+/* Step of the energy axis at which the labels, as long as the step makes them, stand apart. */
+static double
+energy_step (BtFigure *figure, double length, int *decimals)
+{
+  const double low = figure->view.low_ev, high = figure->view.high_ev;
+  double step = 0, w, h, gap = 2 * figure->view.font_pt;
+
+  for (int attempt = 0; attempt < 8; attempt++)
+    {
+      g_autofree char *label = NULL;
+
+      step = bt_ticks_step (low, high, length, gap, decimals);
+      label = g_strdup_printf ("%.*f", *decimals, high);
+      text_size (figure, label, &w, &h);
+      if (!(step > 0) || step / (high - low) * length >= w + 1.6 * figure->view.font_pt)
+        break;
+      gap = w + 1.6 * figure->view.font_pt;
+    }
+  return step;
+}
+
+gsize
+bt_figure_energy_ticks (BtFigure *figure, BtTick *ticks, gsize max)
+{
+  const double low = figure->view.low_ev, high = figure->view.high_ev;
+  const double length = figure->panels[BT_PANEL_SPECTRUM].width;
+  int decimals, parts;
+  double step = energy_step (figure, length, &decimals), minor, h;
+  gsize n = 0;
+
+  if (!(step > 0))
+    return 0;
+  /* A step of 2 has halves, one of 1 or 5 fifths. */
+  parts = step / pow (10, floor (log10 (step * 1.001))) > 1.5 && step / pow (10, floor (log10 (step * 1.001))) < 3 ? 4 : 5;
+  minor = step / parts;
+  for (double k = ceil (low / minor - 1e-6); k * minor <= high + 1e-6 * minor && n < max; k++)
+    {
+      BtTick *tick = &ticks[n++];
+
+      *tick = (BtTick){ .x = bt_figure_x_from_ev (figure, k * minor), .minor = fmod (fabs (k) + 0.5, parts) >= 1 };
+      if (tick->minor)
+        continue;
+      g_snprintf (tick->label, sizeof tick->label, "%.*f", decimals, k * minor);
+      text_size (figure, tick->label, &tick->width, &h);
+      if (!inside (figure, tick->x, tick->width))
+        tick->label[0] = '\0';
+    }
+  return n;
+}
+
 static void
 draw_energy_axis (BtFigure *figure, cairo_t *cr)
 {
   const BtBox *box = floor_panel (figure);
-  const double font = figure->view.font_pt, base = box->y + box->height, tick = font * TICK;
-  double w, h, step, minor;
-  int decimals;
+  const double font = figure->view.font_pt, base = box->y + box->height, length = font * TICK;
+  BtTick ticks[512];
+  gsize n = bt_figure_energy_ticks (figure, ticks, G_N_ELEMENTS (ticks));
 
-  text_size (figure, "0.00", &w, &h);
-  step = bt_ticks_step (figure->view.low_ev, figure->view.high_ev, box->width, 1.7 * w, &decimals);
-  minor = step / 5;
-  if (!(step > 0))
-    return;
-  for (double k = ceil (figure->view.low_ev / minor); k * minor <= figure->view.high_ev; k++)
-    {
-      double x = bt_figure_x_from_ev (figure, k * minor);
-
-      tick_line (cr, x, base, 0, fmod (fabs (k) + 0.5, 5) < 1 ? tick : tick / 2);
-    }
+  for (gsize i = 0; i < n; i++)
+    tick_line (cr, ticks[i].x, base, 0, ticks[i].minor ? length / 2 : length);
   cairo_stroke (cr);
-  for (double k = ceil (figure->view.low_ev / step); k * step <= figure->view.high_ev; k++)
-    {
-      g_autofree char *label = g_strdup_printf ("%.*f", decimals, k * step);
-
-      draw_text (figure, cr, label, bt_figure_x_from_ev (figure, k * step), base + tick + 0.15 * font, 0.5, 0);
-    }
+  for (gsize i = 0; i < n; i++)
+    if (ticks[i].label[0] != '\0')
+      draw_text (figure, cr, ticks[i].label, ticks[i].x, base + length + 0.15 * font, 0.5, 0);
   draw_text (figure, cr, _ ("Energy / eV"), box->x + box->width / 2, figure->height - 0.15 * font, 0.5, 1);
 }
 
-/* Labels go to the roundest wavelengths that find room; the rest of the hundreds get ticks. */
+/* Whether a label of this width at x stands clear of those placed. */
+static gboolean
+is_free (const BtTick *ticks, gsize n, double x, double width, double gap)
+{
+  for (gsize i = 0; i < n; i++)
+    if (!ticks[i].minor && fabs (x - ticks[i].x) < (width + ticks[i].width) / 2 + gap)
+      return FALSE;
+  return TRUE;
+}
+
+/* Wavelengths crowd to the left. The roundest come first; a less round one gets a label only where its neighbours of the same roundness would
+ * have room beside it, so that labels are never odd ones out, and otherwise a minor tick where those stand apart. */
+gsize
+bt_figure_wavelength_ticks (BtFigure *figure, BtTick *ticks, gsize max)
+{
+  const double font = figure->view.font_pt, gap = 0.8 * font;
+  BtRoundNm values[768];
+  gsize n = 0, n_values = bt_ticks_wavelengths (bt_nm_from_ev (figure->view.high_ev), bt_nm_from_ev (fmax (figure->view.low_ev, 0.05)), values,
+                                                G_N_ELEMENTS (values));
+
+  for (gsize i = 0; i < n_values && n < max; i++)
+    {
+      BtTick tick = { .x = bt_figure_x_from_ev (figure, bt_ev_from_nm (values[i].nm)), .minor = TRUE };
+      double room = tick.x - bt_figure_x_from_ev (figure, bt_ev_from_nm (values[i].nm + values[i].round_nm)), h;
+
+      if (room < 0.55 * font)
+        continue;
+      if (room > 2 * font)
+        {
+          g_snprintf (tick.label, sizeof tick.label, "%.*f", values[i].decimals, values[i].nm);
+          text_size (figure, tick.label, &tick.width, &h);
+          tick.minor = room < tick.width + gap || !inside (figure, tick.x, tick.width) || !is_free (ticks, n, tick.x, tick.width, gap);
+        }
+      if (tick.minor)
+        tick.label[0] = '\0';
+      ticks[n++] = tick;
+    }
+  return n;
+}
+
 static void
 draw_wavelength_axis (BtFigure *figure, cairo_t *cr)
 {
   const BtBox *box = &figure->panels[BT_PANEL_SPECTRUM];
-  const double font = figure->view.font_pt, tick = font * TICK;
-  double values[256], placed[256][2];
-  gsize n_placed = 0, n = bt_ticks_wavelengths (bt_nm_from_ev (figure->view.high_ev), bt_nm_from_ev (fmax (figure->view.low_ev, 0.05)), values,
-                                                G_N_ELEMENTS (values));
+  const double font = figure->view.font_pt, length = font * TICK;
+  BtTick ticks[768];
+  gsize n = bt_figure_wavelength_ticks (figure, ticks, G_N_ELEMENTS (ticks));
 
   for (gsize i = 0; i < n; i++)
-    {
-      g_autofree char *label = g_strdup_printf ("%.0f", values[i]);
-      double x = bt_figure_x_from_ev (figure, bt_ev_from_nm (values[i])), w, h;
-      gboolean free_place = TRUE, near_other = FALSE;
-
-      text_size (figure, label, &w, &h);
-      for (gsize k = 0; k < n_placed; k++)
-        {
-          free_place = free_place && (x + w * 0.95 < placed[k][0] || x - w * 0.95 > placed[k][1]);
-          near_other = near_other || fabs (x - (placed[k][0] + placed[k][1]) / 2) < 0.35 * font;
-        }
-      if (free_place && n_placed < G_N_ELEMENTS (placed))
-        {
-          draw_text (figure, cr, label, x, box->y - tick - 0.1 * font, 0.5, 1);
-          placed[n_placed][0] = x - w / 2;
-          placed[n_placed++][1] = x + w / 2;
-          tick_line (cr, x, box->y, 0, -tick);
-        }
-      else if (!near_other && fmod (values[i], 100) < 0.5)
-        tick_line (cr, x, box->y, 0, -tick / 2);
-    }
+    tick_line (cr, ticks[i].x, box->y, 0, ticks[i].minor ? -length / 2 : -length);
   cairo_stroke (cr);
+  for (gsize i = 0; i < n; i++)
+    if (!ticks[i].minor)
+      draw_text (figure, cr, ticks[i].label, ticks[i].x, box->y - length - 0.1 * font, 0.5, 1);
   draw_text (figure, cr, _ ("Wavelength / nm"), box->x + box->width / 2, 0.1 * font, 0.5, 0);
 }
 

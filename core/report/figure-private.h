@@ -31,7 +31,14 @@ struct _BtFigure
   double width, height;
   const BtPalette *palette;
   PangoFontDescription *font;
+  PangoContext *context; /* for all text, drawn or only measured */
 };
+
+/* A tick of the energy or the wavelength axis. @label: empty at a minor tick, and where the label would be cut; @width: of the label. */
+typedef struct { double x, width; gboolean minor; char label[24]; } BtTick;
+/* Fill @ticks with at most @max, of labels that stand clear of each other and inside the figure. After layout. */
+gsize bt_figure_energy_ticks (BtFigure *figure, BtTick *ticks, gsize max);
+gsize bt_figure_wavelength_ticks (BtFigure *figure, BtTick *ticks, gsize max);
 
 /* Axes, ticks, labels and frames of all panels. */
 void bt_figure_draw_axes (BtFigure *figure, cairo_t *cr);

@@ -67,32 +67,69 @@ bt_figure_draw_veils (BtFigure *figure, cairo_t *cr, const BtBox *box)
     }
 }
 
-/* The reading as a line; where many points fall on one column only its lowest and highest are drawn. */
-static void
-draw_reading (BtFigure *figure, cairo_t *cr)
+typedef double (*PointY) (BtFigure *figure, gsize i);
+
+static double
+reading_y (BtFigure *figure, gsize i)
 {
-  const BtCurve *curve = figure->curve;
-  const BtBox *box = &figure->panels[BT_PANEL_SPECTRUM];
-  gboolean started = FALSE;
+  return bt_figure_y_from_absorbance (figure, figure->curve->absorbance[i]);
+}
 
-  for (gsize i = 0; i < curve->n;)
+static double
+residual_y (BtFigure *figure, gsize i)
+{
+  return bt_figure_residual_y (figure, (figure->tally->absorbance[i] - figure->tally->fit[i]) / figure->tally->noise[i]);
+}
+
+/* First of n ascending energies that is not below. */
+static gsize
+first_from (const double *energy_ev, gsize n, double from_ev)
+{
+  gsize low = 0, high = n;
+
+  while (low < high)
     {
-      double x = bt_figure_x_from_ev (figure, curve->energy_ev[i]), column = floor (2 * x), low, high, first, last;
+      gsize middle = (low + high) / 2;
 
-      first = last = low = high = bt_figure_y_from_absorbance (figure, curve->absorbance[i]);
-      for (i++; i < curve->n && floor (2 * bt_figure_x_from_ev (figure, curve->energy_ev[i])) <= column; i++)
+      if (energy_ev[middle] < from_ev)
+        low = middle + 1;
+      else
+        high = middle;
+    }
+  return low;
+}
+
+/* Where the line from point i - 1 to point i crosses the edge of the view. */
+static void
+line_to_edge (BtFigure *figure, cairo_t *cr, const double *energy_ev, gsize i, double edge_ev, PointY y_of)
+{
+  double t = (edge_ev - energy_ev[i - 1]) / (energy_ev[i] - energy_ev[i - 1]), y = y_of (figure, i - 1);
+
+  cairo_line_to (cr, bt_figure_x_from_ev (figure, edge_ev), y + t * (y_of (figure, i) - y));
+}
+
+/* The line through the points in view and on to its edges, however few they are. Where many points fall on half a unit only the first, lowest,
+ * highest and last are drawn. */
+static void
+path_of_points (BtFigure *figure, cairo_t *cr, const double *energy_ev, gsize n, PointY y_of)
+{
+  const gsize from = first_from (energy_ev, n, figure->view.low_ev), to = first_from (energy_ev, n, figure->view.high_ev);
+
+  cairo_new_path (cr);
+  if (from > 0 && from < n)
+    line_to_edge (figure, cr, energy_ev, from, figure->view.low_ev, y_of);
+  for (gsize i = from; i < to;)
+    {
+      double x = bt_figure_x_from_ev (figure, energy_ev[i]), column = floor (2 * x), low, high, last;
+
+      last = low = high = y_of (figure, i);
+      cairo_line_to (cr, x, last);
+      for (i++; i < to && floor (2 * bt_figure_x_from_ev (figure, energy_ev[i])) <= column; i++)
         {
-          last = bt_figure_y_from_absorbance (figure, curve->absorbance[i]);
+          last = y_of (figure, i);
           low = fmin (low, last);
           high = fmax (high, last);
         }
-      if (x < box->x - 50 || x > box->x + box->width + 50)
-        continue;
-      if (started)
-        cairo_line_to (cr, x, first);
-      else
-        cairo_move_to (cr, x, first);
-      started = TRUE;
       if (high - low > 0.5)
         {
           cairo_line_to (cr, x, low);
@@ -100,10 +137,38 @@ draw_reading (BtFigure *figure, cairo_t *cr)
           cairo_line_to (cr, x, last);
         }
     }
+  if (to > 0 && to < n)
+    line_to_edge (figure, cr, energy_ev, to, figure->view.high_ev, y_of);
+}
+
+/* The points themselves, where they stand far enough apart to be seen. */
+static void
+draw_points (BtFigure *figure, cairo_t *cr, const double *energy_ev, gsize n, PointY y_of)
+{
+  const gsize from = first_from (energy_ev, n, figure->view.low_ev), to = first_from (energy_ev, n, figure->view.high_ev);
+  const double radius = 0.2 * figure->view.font_pt;
+
+  if (to == from || figure->panels[BT_PANEL_SPECTRUM].width / (double) (to - from) < 5 * radius)
+    return;
+  for (gsize i = from; i < to; i++)
+    {
+      cairo_new_sub_path (cr);
+      cairo_arc (cr, bt_figure_x_from_ev (figure, energy_ev[i]), y_of (figure, i), radius, 0, 2 * G_PI);
+    }
+  cairo_fill (cr);
+}
+
+static void
+draw_reading (BtFigure *figure, cairo_t *cr)
+{
+  const BtCurve *curve = figure->curve;
+
+  path_of_points (figure, cr, curve->energy_ev, curve->n, reading_y);
   bt_colour_set (cr, figure->palette->data, 1);
   cairo_set_line_width (cr, fmax (0.7, figure->view.font_pt * 0.12));
   cairo_set_line_join (cr, CAIRO_LINE_JOIN_BEVEL);
   cairo_stroke (cr);
+  draw_points (figure, cr, curve->energy_ev, curve->n, reading_y);
 }
 
 typedef struct { gsize n; double *energy_ev, *x, *tail, *sum, *band; } Grid;
@@ -389,12 +454,12 @@ bt_figure_draw_residual (BtFigure *figure, cairo_t *cr)
     {
       const BtTally *tally = figure->tally;
 
-      for (gsize i = 0; i < tally->n; i++)
-        cairo_line_to (cr, bt_figure_x_from_ev (figure, tally->energy_ev[i]),
-                       bt_figure_residual_y (figure, (tally->absorbance[i] - tally->fit[i]) / tally->noise[i]));
+      path_of_points (figure, cr, tally->energy_ev, tally->n, residual_y);
       bt_colour_set (cr, figure->palette->data, 0.9);
       cairo_set_line_width (cr, fmax (0.6, figure->view.font_pt * 0.08));
+      cairo_set_line_join (cr, CAIRO_LINE_JOIN_BEVEL);
       cairo_stroke (cr);
+      draw_points (figure, cr, tally->energy_ev, tally->n, residual_y);
     }
   cairo_restore (cr);
 }

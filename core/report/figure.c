@@ -34,6 +34,9 @@ bt_figure_new (BtFilm *film, BtTally *tally, const BtBandPlan *plan, const BtRec
                            ? BT_LN10
                            : bt_alpha_per_cm (1, bt_film_get_thickness_nm (film));
   figure->font = pango_font_description_from_string ("Sans");
+  figure->context = pango_font_map_create_context (pango_cairo_font_map_get_default ());
+  /* At 72 dpi a point is a unit of the surface; sizes in points let Pango scale superscripts. */
+  pango_cairo_context_set_resolution (figure->context, 72);
   bt_figure_view_init (&figure->view);
   figure->palette = bt_palette_get (BT_THEME_LIGHT);
   return figure;
@@ -49,6 +52,7 @@ bt_figure_free (BtFigure *figure)
   bt_curve_free (figure->own_curve);
   bt_recipe_free (figure->recipe);
   pango_font_description_free (figure->font);
+  g_object_unref (figure->context);
   g_free (figure);
 }
 
