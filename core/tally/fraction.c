@@ -383,7 +383,8 @@ average_fractions (BtTally *tally, const BtCandidate *candidates, gsize n)
             spread += w * ((g - f) * (g - f) + candidate_variance (&candidates[c], k));
           }
       tally->tails[t].fraction = f;
-      tally->tails[t].fraction_u = sqrt (spread);
+      /* No quantity between 0 and 1 has a larger standard deviation than 0.5. */
+      tally->tails[t].fraction_u = fmin (sqrt (spread), 0.5);
     }
   return stated_fraction (all_s, all_m, k);
 }
@@ -456,7 +457,11 @@ bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const
   detection_limits (tally, candidates, n, &area_m);
   /* Neither kind of tube is seen: any number would be invented. */
   if (area_m < tally->m11_decision && !sees_s22 (candidates, n))
-    return;
+    {
+      for (guint t = 0; t < tally->n_tails; t++)
+        tally->tails[t].fraction = tally->tails[t].fraction_u = NAN;
+      return;
+    }
   variance = fill_budget (tally, candidates, n, mean);
 
   draws = g_new (double, DRAWS);
