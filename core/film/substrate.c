@@ -5,6 +5,7 @@
 
 #include <gio/gio.h>
 
+#include "../spectrum/reference-table.h"
 #include "bt-substrate-resource.h"
 
 typedef struct { char *name; double b[3], c[3], from_um, to_um; char *source; } Substrate;
@@ -13,13 +14,10 @@ static GArray *substrates;
 static GPtrArray *names;
 
 static void
-read_row (const char *line)
+read_row (char **fields)
 {
-  g_auto (GStrv) fields = g_strsplit (line, ",", 10);
   Substrate row;
 
-  if (*line == '#' || g_strv_length (fields) < 10)
-    return;
   row.name = g_strdup (fields[0]);
   for (int i = 0; i < 3; i++)
     {
@@ -28,8 +26,7 @@ read_row (const char *line)
     }
   row.from_um = g_ascii_strtod (fields[7], NULL);
   row.to_um = g_ascii_strtod (fields[8], NULL);
-  row.source = g_strdup (g_strdelimit (fields[9], "\"", ' '));
-  g_strstrip (row.source);
+  row.source = g_strdup (fields[9]);
   g_array_append_val (substrates, row);
   g_ptr_array_add (names, row.name);
 }
@@ -41,16 +38,9 @@ read_table (void)
 
   if (g_once_init_enter (&done))
     {
-      g_autoptr (GBytes) bytes = g_resource_lookup_data (bt_substrate_get_resource (), "/org/bandtally/substrate/substrates.csv",
-                                                         G_RESOURCE_LOOKUP_FLAGS_NONE, NULL);
-      g_auto (GStrv) lines = NULL;
-
-      g_assert (bytes != NULL);
-      lines = g_strsplit (g_bytes_get_data (bytes, NULL), "\n", -1);
       substrates = g_array_new (FALSE, FALSE, sizeof (Substrate));
       names = g_ptr_array_new ();
-      for (gsize i = 0; lines[i] != NULL; i++)
-        read_row (lines[i]);
+      bt_reference_table_read (bt_substrate_get_resource (), "/org/bandtally/substrate/substrates.csv", 10, read_row);
       g_ptr_array_add (names, NULL);
       g_once_init_leave (&done, 1);
     }

@@ -7,6 +7,7 @@
 #include <glib/gi18n-lib.h>
 
 #include "bt-instrument-resource.h"
+#include "reference-table.h"
 
 /* How far from its published position a band is looked for, nm: twice the widest tolerance. */
 #define SEARCH_NM 6.0
@@ -24,20 +25,17 @@ number_or_nan (const char *text)
 }
 
 static void
-read_row (const char *line)
+read_row (char **fields)
 {
-  g_auto (GStrv) fields = g_strsplit (line, ",", 7);
   Row row;
 
-  if (*line == '#' || g_strv_length (fields) < 7)
-    return;
   row.standard = g_str_equal (fields[0], "holmium") ? BT_STANDARD_HOLMIUM : BT_STANDARD_DICHROMATE;
   row.concentration = number_or_nan (fields[1]);
   row.wavelength = number_or_nan (fields[2]);
   row.absorbance = number_or_nan (fields[3]);
   row.low = number_or_nan (fields[4]);
   row.high = number_or_nan (fields[5]);
-  row.source = g_strstrip (g_strdup (g_strdelimit (fields[6], "\"", ' ')));
+  row.source = g_strdup (fields[6]);
   g_array_append_val (rows, row);
 }
 
@@ -56,15 +54,8 @@ read_table (void)
 
   if (g_once_init_enter (&done))
     {
-      g_autoptr (GBytes) bytes = g_resource_lookup_data (bt_instrument_get_resource (), "/org/bandtally/instrument/instrument.csv",
-                                                         G_RESOURCE_LOOKUP_FLAGS_NONE, NULL);
-      g_auto (GStrv) lines = NULL;
-
-      g_assert (bytes != NULL);
-      lines = g_strsplit (g_bytes_get_data (bytes, NULL), "\n", -1);
       rows = g_array_new (FALSE, FALSE, sizeof (Row));
-      for (gsize i = 0; lines[i] != NULL; i++)
-        read_row (lines[i]);
+      bt_reference_table_read (bt_instrument_get_resource (), "/org/bandtally/instrument/instrument.csv", 7, read_row);
       g_array_sort (rows, by_wavelength);
       g_once_init_leave (&done, 1);
     }

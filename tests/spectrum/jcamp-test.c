@@ -4,6 +4,8 @@
 #include <math.h>
 #include <string.h>
 
+#include "flag-codes.h"
+
 /* A block with @n points from 400 on, one nanometre apart, and the table @data. */
 static char *
 block (const char *title, guint n, const char *labels, const char *form, const char *data)
@@ -20,17 +22,6 @@ read_text (const char *text, GError **error)
   g_autoptr (GBytes) bytes = g_bytes_new (text, strlen (text));
 
   return bt_spectrum_read_bytes (bytes, "film.jdx", NULL, error);
-}
-
-static char *
-flag_codes (BtSpectrum *spectrum)
-{
-  const GPtrArray *flags = bt_spectrum_get_flags (spectrum);
-  GString *codes = g_string_new (NULL);
-
-  for (guint i = 0; i < flags->len; i++)
-    g_string_append_printf (codes, "%s%s", i > 0 ? " " : "", ((const BtFlag *) g_ptr_array_index (flags, i))->code);
-  return g_string_free (codes, FALSE);
 }
 
 static void

@@ -4,9 +4,10 @@
 #include <math.h>
 #include <stdlib.h>
 #include <string.h>
-#include <time.h>
 
 #include <glib/gstdio.h>
+
+#include "flag-codes.h"
 
 /* Points as "x y x y", separated by blanks; of several spectra one string each. */
 typedef struct {
@@ -84,17 +85,6 @@ check_points (BtSpectrum *spectrum, const char *points)
       else
         g_assert_cmpfloat (y[i], ==, expected);
     }
-}
-
-static char *
-flag_codes (BtSpectrum *spectrum)
-{
-  const GPtrArray *flags = bt_spectrum_get_flags (spectrum);
-  GString *codes = g_string_new (NULL);
-
-  for (guint i = 0; i < flags->len; i++)
-    g_string_append_printf (codes, "%s%s", i > 0 ? " " : "", ((const BtFlag *) g_ptr_array_index (flags, i))->code);
-  return g_string_free (codes, FALSE);
 }
 
 static void
@@ -220,6 +210,23 @@ test_places (void)
   g_rmdir (folder);
 }
 
+/* The text is read as a table whose second column is @expected, to the last bit. Takes @text. */
+static void
+check_readings (GString *text, const GArray *expected)
+{
+  g_autoptr (GBytes) bytes = g_string_free_to_bytes (text);
+  g_autoptr (GPtrArray) spectra = bt_spectrum_read_bytes (bytes, "numbers.csv", NULL, NULL);
+  const double *y;
+  gsize n;
+
+  g_assert_nonnull (spectra);
+  y = bt_spectrum_get_raw_y (g_ptr_array_index (spectra, 0), &n);
+  g_assert_cmpuint (n, ==, expected->len);
+  for (gsize i = 0; i < n; i++)
+    if (memcmp (&y[i], &g_array_index (expected, double, i), sizeof *y) != 0)
+      g_assert_cmpfloat (y[i], ==, g_array_index (expected, double, i));
+}
+
 /* Numbers by the short way are those of the C library, to the last bit. */
 static void
 test_numbers (void)
@@ -227,10 +234,6 @@ test_numbers (void)
   g_autoptr (GRand) random = g_rand_new_with_seed (7);
   GString *text = g_string_new ("nm,A\n");
   g_autoptr (GArray) expected = g_array_new (FALSE, FALSE, sizeof (double));
-  g_autoptr (GBytes) bytes = NULL;
-  g_autoptr (GPtrArray) spectra = NULL;
-  const double *y;
-  gsize n;
 
   for (guint i = 0; i < 20000; i++)
     {
@@ -243,14 +246,7 @@ test_numbers (void)
       g_string_append_printf (text, "%u,%s\n", 300 + i, number);
       g_array_append_val (expected, value);
     }
-  bytes = g_string_free_to_bytes (text);
-  spectra = bt_spectrum_read_bytes (bytes, "numbers.csv", NULL, NULL);
-  g_assert_nonnull (spectra);
-  y = bt_spectrum_get_raw_y (g_ptr_array_index (spectra, 0), &n);
-  g_assert_cmpuint (n, ==, expected->len);
-  for (gsize i = 0; i < n; i++)
-    if (memcmp (&y[i], &g_array_index (expected, double, i), sizeof *y) != 0)
-      g_assert_cmpfloat (y[i], ==, g_array_index (expected, double, i));
+  check_readings (text, expected);
 }
 
 /* Whatever the bytes: a spectrum or a sentence. */
@@ -293,10 +289,6 @@ test_halves (void)
   g_autoptr (GRand) random = g_rand_new_with_seed (8);
   GString *text = g_string_new ("nm,alpha (1/cm)\n");
   g_autoptr (GArray) expected = g_array_new (FALSE, FALSE, sizeof (double));
-  g_autoptr (GBytes) bytes = NULL;
-  g_autoptr (GPtrArray) spectra = NULL;
-  const double *y;
-  gsize n;
 
   for (guint i = 0; i < 8000; i++)
     {
@@ -308,59 +300,7 @@ test_halves (void)
       g_string_append_printf (text, "%u,%s\n", 300 + i, number);
       g_array_append_val (expected, value);
     }
-  bytes = g_string_free_to_bytes (text);
-  spectra = bt_spectrum_read_bytes (bytes, "halves.csv", NULL, NULL);
-  g_assert_nonnull (spectra);
-  y = bt_spectrum_get_raw_y (g_ptr_array_index (spectra, 0), &n);
-  g_assert_cmpuint (n, ==, expected->len);
-  for (gsize i = 0; i < n; i++)
-    if (memcmp (&y[i], &g_array_index (expected, double, i), sizeof *y) != 0)
-      g_assert_cmpfloat (y[i], ==, g_array_index (expected, double, i));
-}
-
-static double
-seconds (void)
-{
-  struct timespec now;
-
-  clock_gettime (CLOCK_PROCESS_CPUTIME_ID, &now);
-  return (double) now.tv_sec + 1e-9 * (double) now.tv_nsec;
-}
-
-/* Reading 4,000 points, decoding and sniffing included, takes a third of what strtod alone takes (2.8 to 3.2 measured on a quiet machine); half is
- * asked for here, where others may be at work. The best of many runs counts. */
-static void
-test_speed (void)
-{
-  GString *text = g_string_new ("# film = made up\nwavelength_nm,absorbance\n");
-  g_autoptr (GBytes) bytes = NULL;
-  double best_strtod = 1, best_read = 1, sum = 0;
-  gsize preamble = text->len;
-
-  for (guint i = 0; i < 4000; i++)
-    g_string_append_printf (text, "%.1f,%.6f\n", 300 + 0.5 * i, 0.4 + 0.2 * sin (0.01 * i));
-  bytes = g_bytes_new (text->str, text->len);
-  for (guint run = 0; run < 200; run++)
-    {
-      g_autoptr (GPtrArray) spectra = NULL;
-      char *at = text->str + preamble;
-      double start = seconds (), middle;
-
-      while (*at != '\0')
-        {
-          sum += strtod (at, &at);
-          at++;
-        }
-      middle = seconds ();
-      spectra = bt_spectrum_read_bytes (bytes, "speed.csv", NULL, NULL);
-      best_read = fmin (best_read, seconds () - middle);
-      best_strtod = fmin (best_strtod, middle - start);
-      g_assert_cmpuint (bt_spectrum_get_n_points (g_ptr_array_index (spectra, 0)), ==, 4000);
-    }
-  g_assert_cmpfloat (sum, >, 0);
-  g_test_message ("strtod %.1f us, reading %.1f us: %.2f times as fast", 1e6 * best_strtod, 1e6 * best_read, best_strtod / best_read);
-  g_assert_cmpfloat (best_read, <, best_strtod / 2);
-  g_string_free (text, TRUE);
+  check_readings (text, expected);
 }
 
 int
@@ -385,6 +325,5 @@ main (int argc, char **argv)
   g_test_add_func ("/spectrum/numbers", test_numbers);
   g_test_add_func ("/spectrum/halves", test_halves);
   g_test_add_func ("/spectrum/mutilated", test_mutilated);
-  g_test_add_func ("/spectrum/speed", test_speed);
   return g_test_run ();
 }
