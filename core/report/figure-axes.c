@@ -239,7 +239,8 @@ bt_figure_wavelength_ticks (BtFigure *figure, BtTick *ticks, gsize max)
         {
           g_snprintf (tick.label, sizeof tick.label, "%.*f", values[i].decimals, values[i].nm);
           text_size (figure, tick.label, &tick.width, &h);
-          tick.minor = room < tick.width + gap || !inside (figure, tick.x, tick.width) || !is_free (ticks, n, tick.x, tick.width, gap);
+          /* The very roundest are landmarks of their own and need no room for neighbours. */
+          tick.minor = (values[i].round_nm < 500 && room < tick.width + gap) || !inside (figure, tick.x, tick.width) || !is_free (ticks, n, tick.x, tick.width, gap);
         }
       if (tick.minor)
         tick.label[0] = '\0';
