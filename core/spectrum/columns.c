@@ -258,6 +258,22 @@ column_of (const BtRows *rows, const BtTable *table, gsize column)
   return out;
 }
 
+/* Whether a reflectance is in per cent: by its header, by its values' signs, or by its size. */
+static gboolean
+reads_percent (const BtRows *rows, const BtTable *table, const BtColumns *columns, gsize c)
+{
+  g_autofree double *y = NULL;
+  BtYUnit unit;
+  double high = 0;
+
+  if (rows->percent || (y_unit_of (columns, c, &unit) && (unit == BT_Y_REFLECTANCE_PERCENT || unit == BT_Y_TRANSMITTANCE_PERCENT)))
+    return TRUE;
+  y = column_of (rows, table, c);
+  for (gsize i = 0; i < table->n_rows; i++)
+    high = y[i] > high ? y[i] : high;
+  return high > 1.5;
+}
+
 static void
 decide_units (const BtRows *rows, const BtTable *table, const BtColumns *columns, GHashTable *notes, const BtReadOptions *options,
               BtChoice *choice)
@@ -283,6 +299,8 @@ decide_units (const BtRows *rows, const BtTable *table, const BtColumns *columns
     {
       choice->y_unit = (BtYUnit) options->y_unit;
       choice->y_origin = BT_ORIGIN_SAID;
+      if (bt_read_options_reflectance (options) && reads_percent (rows, table, columns, choice->y))
+        choice->y_unit = BT_Y_REFLECTANCE_PERCENT;
     }
   else if (!y_unit_of (columns, choice->y, &choice->y_unit) && (y_note == NULL || !bt_text_y_unit (y_note, &choice->y_unit)))
     choice->y_origin = BT_ORIGIN_VALUES;
@@ -363,6 +381,26 @@ refuse_foreign (const BtColumns *columns, gsize c, GError **error)
   return TRUE;
 }
 
+/* Where a reflectance is wanted and columns say that they hold one, only those. */
+static gboolean
+choose_reflectance (const BtRows *rows, const BtTable *table, BtColumns *columns, GHashTable *notes, const BtReadOptions *options, gsize x,
+                    const gsize *counts, gsize enough)
+{
+  gboolean any = FALSE;
+  BtYUnit unit;
+
+  for (gsize c = 0; c < columns->n_columns; c++)
+    if (c != x && counts[c] >= enough && y_unit_of (columns, c, &unit) && (unit == BT_Y_REFLECTANCE || unit == BT_Y_REFLECTANCE_PERCENT))
+      {
+        choose (rows, table, columns, notes, options, x, c, FALSE);
+        any = TRUE;
+      }
+  for (gsize c = 0; c < columns->n_columns && any; c++)
+    if (c != x && counts[c] > 0 && !(y_unit_of (columns, c, &unit) && (unit == BT_Y_REFLECTANCE || unit == BT_Y_REFLECTANCE_PERCENT)))
+      leave_out (columns, c);
+  return any;
+}
+
 gboolean
 bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, const BtReadOptions *options, BtColumns *columns,
                  GError **error)
@@ -400,6 +438,8 @@ bt_text_columns (const BtRows *rows, const BtTable *table, GHashTable *notes, co
           leave_out (columns, c + 1);
       return TRUE;
     }
+  if (bt_read_options_reflectance (options) && choose_reflectance (rows, table, columns, notes, options, x, counts, enough))
+    return TRUE;
   for (gsize c = 0; c < columns->n_columns; c++)
     if (c != x && !names_x (columns, c) && (c > x || columns->headers[c][0] != '\0'))
       {

@@ -248,6 +248,12 @@ decide_units (const Jcamp *jcamp, const Table *table, BtXUnit *x_unit, BtYUnit *
     high = y[i] > high ? y[i] : high;
   if (*y_unit == BT_Y_TRANSMITTANCE && high > 2 && !(jcamp->options != NULL && jcamp->options->y_unit >= 0))
     *y_unit = BT_Y_TRANSMITTANCE_PERCENT;
+  if (bt_read_options_reflectance (jcamp->options))
+    {
+      if (high > 1.5)
+        *y_unit = BT_Y_REFLECTANCE_PERCENT;
+      return TRUE;
+    }
   if (*y_unit == BT_Y_REFLECTANCE || *y_unit == BT_Y_REFLECTANCE_PERCENT)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,

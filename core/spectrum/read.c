@@ -188,7 +188,7 @@ make_spectrum (const BtText *text, const BtRows *rows, const BtTable *table, con
   BtSpectrum *spectrum;
   gsize n;
 
-  if (choice->y_unit == BT_Y_REFLECTANCE || choice->y_unit == BT_Y_REFLECTANCE_PERCENT)
+  if ((choice->y_unit == BT_Y_REFLECTANCE || choice->y_unit == BT_Y_REFLECTANCE_PERCENT) && choice->y_origin != BT_ORIGIN_SAID)
     {
       fail (error, BT_SPECTRUM_ERROR_UNITS,
             _ ("it holds a reflectance, from which no absorbance follows; choose a file of absorbance or transmittance."));
@@ -357,6 +357,15 @@ BtSpectrum *
 bt_spectrum_new_from_file (const char *path, GError **error)
 {
   g_autoptr (GPtrArray) spectra = bt_spectrum_read_file (path, NULL, error);
+
+  return spectra != NULL ? g_object_ref (g_ptr_array_index (spectra, 0)) : NULL;
+}
+
+BtSpectrum *
+bt_reflectance_new_from_file (const char *path, GError **error)
+{
+  const BtReadOptions options = { -1, BT_Y_REFLECTANCE };
+  g_autoptr (GPtrArray) spectra = bt_spectrum_read_file (path, &options, error);
 
   return spectra != NULL ? g_object_ref (g_ptr_array_index (spectra, 0)) : NULL;
 }

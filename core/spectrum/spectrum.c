@@ -114,9 +114,11 @@ absorbance_of (double y, BtYUnit unit, double *absorbance)
     case BT_Y_ALPHA_PER_CM:
       *absorbance = y / BT_LN10;
       return TRUE;
+    case BT_Y_REFLECTANCE_PERCENT:
+      *absorbance = y / 100;
+      return TRUE;
     case BT_Y_ABSORBANCE:
     case BT_Y_REFLECTANCE:
-    case BT_Y_REFLECTANCE_PERCENT:
     default:
       *absorbance = y;
       return TRUE;

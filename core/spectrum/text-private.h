@@ -92,6 +92,13 @@ bt_rows_value (const BtRows *rows, gsize row, gsize column)
   return column < r->n ? rows->values[r->start + column] : (double) NAN;
 }
 
+/* Whether the user wants the reflectance of a file. */
+static inline gboolean
+bt_read_options_reflectance (const BtReadOptions *options)
+{
+  return options != NULL && (options->y_unit == BT_Y_REFLECTANCE || options->y_unit == BT_Y_REFLECTANCE_PERCENT);
+}
+
 typedef enum { BT_ORIGIN_SAID, BT_ORIGIN_HEADER, BT_ORIGIN_VALUES } BtOrigin;
 /* Columns of a table that make one spectrum, and how their units are known. @title is owned, and "" where there is none. */
 typedef struct { gsize x, y; BtXUnit x_unit; BtYUnit y_unit; BtOrigin x_origin, y_origin; char *title; } BtChoice;

@@ -143,23 +143,40 @@ read_max_bands (BtRecipe *recipe, JsonObject *object, GError **error)
 }
 
 static gboolean
-read_wavelengths (BtRecipe *recipe, JsonObject *object, GError **error)
+read_numbers (JsonObject *object, const char *member, GArray *numbers, GError **error)
 {
   gboolean ok;
-  JsonArray *array = member_array (object, "wavelengths_nm", &ok, error);
+  JsonArray *array = member_array (object, member, &ok, error);
 
   if (array == NULL)
     return ok;
-  g_array_set_size (recipe->wavelengths_nm, 0);
+  g_array_set_size (numbers, 0);
   for (guint i = 0; i < json_array_get_length (array); i++)
     {
       double value;
 
-      if (!node_number (json_array_get_element (array, i), "wavelengths_nm", &value, error))
+      if (!node_number (json_array_get_element (array, i), member, &value, error))
         return FALSE;
-      g_array_append_val (recipe->wavelengths_nm, value);
+      g_array_append_val (numbers, value);
     }
   return TRUE;
+}
+
+static gboolean
+read_accuracy (BtRecipe *recipe, JsonObject *object, GError **error)
+{
+  const char *name;
+
+  if (json_object_has_member (object, "detector_correction"))
+    {
+      if (!node_text (json_object_get_member (object, "detector_correction"), "detector_correction", &name, error))
+        return FALSE;
+      if (!bt_step_correction_from_name (name, &recipe->step_correction))
+        return refuse (error, "detector_correction", _ ("none, visible or infrared"));
+    }
+  return read_numbers (object, "detector_changes_nm", recipe->steps_nm, error) && read_number (object, "photometric_u", &recipe->photometric_u, error)
+         && read_number (object, "wavelength_u_nm", &recipe->wavelength_u_nm, error)
+         && read_number (object, "stray_light", &recipe->stray_light, error);
 }
 
 static gboolean
@@ -235,15 +252,16 @@ read_light_path (BtRecipe *recipe, JsonObject *object, GError **error)
     recipe->light_path.reflectance = NAN;
   else if (!read_number (object, "reflectance", &recipe->light_path.reflectance, error))
     return FALSE;
-  return read_number (object, "substrate_index", &recipe->light_path.substrate_index, error);
+  return read_number (object, "reflectance_u", &recipe->light_path.reflectance_u, error) && read_number (object, "substrate_index", &recipe->light_path.substrate_index, error);
 }
 
 static gboolean
 known_members (JsonObject *object, GError **error)
 {
-  static const char *const known[] = { "name", "light_path", "reflectance", "substrate_index", "range_ev", "tails", "diameter_nm", "diameter_spread_nm", "shift_ev", "max_bands",
+  static const char *const known[] = { "name", "light_path", "reflectance", "reflectance_u", "substrate_index", "range_ev", "tails", "diameter_nm", "diameter_spread_nm", "shift_ev", "max_bands",
                                        "strength_ratio", "strength_ratio_u", "strength_ratio_source", "level", "limit",
-                                       "wavelengths_nm", "mean_range_nm", "max_absorbance", "excluded_ev", "held", NULL };
+                                       "wavelengths_nm", "mean_range_nm", "max_absorbance", "detector_changes_nm",
+                                       "detector_correction", "photometric_u", "wavelength_u_nm", "stray_light", "excluded_ev", "held", NULL };
   g_autoptr (GList) members = json_object_get_members (object);
 
   for (GList *l = members; l != NULL; l = l->next)
@@ -275,9 +293,9 @@ read_object (BtRecipe *recipe, JsonObject *object, GError **error)
          && read_number (object, "strength_ratio", &recipe->strength_ratio, error)
          && read_number (object, "strength_ratio_u", &recipe->strength_ratio_u, error)
          && read_text (object, "strength_ratio_source", &recipe->strength_ratio_source, error)
-         && read_number (object, "level", &recipe->level, error) && read_wavelengths (recipe, object, error)
+         && read_number (object, "level", &recipe->level, error) && read_numbers (object, "wavelengths_nm", recipe->wavelengths_nm, error)
          && read_pair (object, "mean_range_nm", &recipe->mean_low_nm, &recipe->mean_high_nm, error)
-         && read_number (object, "max_absorbance", &recipe->max_absorbance, error) && read_excluded (recipe, object, error)
+         && read_number (object, "max_absorbance", &recipe->max_absorbance, error) && read_accuracy (recipe, object, error) && read_excluded (recipe, object, error)
          && read_held (recipe, object, error) && bt_recipe_check (recipe, error);
 }
 
@@ -349,6 +367,16 @@ add_pair (JsonBuilder *builder, double low, double high)
 }
 
 static void
+add_numbers (JsonBuilder *builder, const char *member, const GArray *numbers)
+{
+  json_builder_set_member_name (builder, member);
+  json_builder_begin_array (builder);
+  for (guint i = 0; i < numbers->len; i++)
+    json_builder_add_double_value (builder, g_array_index (numbers, double, i));
+  json_builder_end_array (builder);
+}
+
+static void
 add_held (JsonBuilder *builder, const BtRecipe *recipe)
 {
   json_builder_set_member_name (builder, "held");
@@ -378,6 +406,7 @@ bt_recipe_to_json (const BtRecipe *recipe)
   add_text (builder, "name", recipe->name);
   add_text (builder, "light_path", bt_light_path_name (recipe->light_path.kind));
   add_number (builder, "reflectance", recipe->light_path.reflectance);
+  add_number (builder, "reflectance_u", recipe->light_path.reflectance_u);
   add_number (builder, "substrate_index", recipe->light_path.substrate_index);
   json_builder_set_member_name (builder, "range_ev");
   add_pair (builder, recipe->range.low_ev, recipe->range.high_ev);
@@ -403,14 +432,15 @@ bt_recipe_to_json (const BtRecipe *recipe)
   add_text (builder, "strength_ratio_source", recipe->strength_ratio_source);
   add_number (builder, "level", recipe->level);
   add_number (builder, "limit", recipe->limit);
-  json_builder_set_member_name (builder, "wavelengths_nm");
-  json_builder_begin_array (builder);
-  for (guint i = 0; i < recipe->wavelengths_nm->len; i++)
-    json_builder_add_double_value (builder, g_array_index (recipe->wavelengths_nm, double, i));
-  json_builder_end_array (builder);
+  add_numbers (builder, "wavelengths_nm", recipe->wavelengths_nm);
   json_builder_set_member_name (builder, "mean_range_nm");
   add_pair (builder, recipe->mean_low_nm, recipe->mean_high_nm);
   add_number (builder, "max_absorbance", recipe->max_absorbance);
+  add_numbers (builder, "detector_changes_nm", recipe->steps_nm);
+  add_text (builder, "detector_correction", bt_step_correction_name (recipe->step_correction));
+  add_number (builder, "photometric_u", recipe->photometric_u);
+  add_number (builder, "wavelength_u_nm", recipe->wavelength_u_nm);
+  add_number (builder, "stray_light", recipe->stray_light);
   json_builder_set_member_name (builder, "excluded_ev");
   json_builder_begin_array (builder);
   for (guint i = 0; i < recipe->excluded->len; i++)

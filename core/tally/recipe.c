@@ -9,6 +9,27 @@
 G_DEFINE_BOXED_TYPE (BtRecipe, bt_recipe, bt_recipe_copy, bt_recipe_free)
 G_DEFINE_QUARK (bt-recipe-error-quark, bt_recipe_error)
 
+static const char *const correction_names[BT_N_STEP_CORRECTIONS] = { "none", "visible", "infrared" };
+
+const char *
+bt_step_correction_name (BtStepCorrection correction)
+{
+  g_return_val_if_fail (correction < BT_N_STEP_CORRECTIONS, NULL);
+  return correction_names[correction];
+}
+
+gboolean
+bt_step_correction_from_name (const char *name, BtStepCorrection *correction)
+{
+  for (guint i = 0; i < BT_N_STEP_CORRECTIONS; i++)
+    if (g_ascii_strcasecmp (name, correction_names[i]) == 0)
+      {
+        *correction = (BtStepCorrection) i;
+        return TRUE;
+      }
+  return FALSE;
+}
+
 BtRecipe *
 bt_recipe_new (void)
 {
@@ -32,6 +53,7 @@ bt_recipe_new (void)
   recipe->mean_low_nm = 600;
   recipe->mean_high_nm = 1100;
   recipe->max_absorbance = 3.0;
+  recipe->steps_nm = g_array_new (FALSE, FALSE, sizeof (double));
   recipe->excluded = g_array_new (FALSE, FALSE, sizeof (BtRange));
   recipe->held = g_array_new (FALSE, FALSE, sizeof (BtHeld));
   return recipe;
@@ -45,6 +67,7 @@ bt_recipe_copy (const BtRecipe *recipe)
   copy->name = g_strdup (recipe->name);
   copy->strength_ratio_source = g_strdup (recipe->strength_ratio_source);
   copy->wavelengths_nm = g_array_copy (recipe->wavelengths_nm);
+  copy->steps_nm = g_array_copy (recipe->steps_nm);
   copy->excluded = g_array_copy (recipe->excluded);
   copy->held = g_array_copy (recipe->held);
   return copy;
@@ -58,6 +81,7 @@ bt_recipe_free (BtRecipe *recipe)
   g_free (recipe->name);
   g_free (recipe->strength_ratio_source);
   g_array_unref (recipe->wavelengths_nm);
+  g_array_unref (recipe->steps_nm);
   g_array_unref (recipe->excluded);
   g_array_unref (recipe->held);
   g_free (recipe);
@@ -96,6 +120,9 @@ bt_recipe_equal (const BtRecipe *a, const BtRecipe *b)
 {
   return g_strcmp0 (a->name, b->name) == 0 && a->light_path.kind == b->light_path.kind
          && same_number (a->light_path.reflectance, b->light_path.reflectance)
+         && same_number (a->light_path.reflectance_u, b->light_path.reflectance_u) && same_array (a->steps_nm, b->steps_nm)
+         && a->step_correction == b->step_correction && same_number (a->photometric_u, b->photometric_u)
+         && same_number (a->wavelength_u_nm, b->wavelength_u_nm) && same_number (a->stray_light, b->stray_light)
          && same_number (a->light_path.substrate_index, b->light_path.substrate_index) && same_number (a->range.low_ev, b->range.low_ev)
          && same_number (a->range.high_ev, b->range.high_ev) && a->tails == b->tails
          && same_number (a->window.mean_nm, b->window.mean_nm) && same_number (a->window.spread_nm, b->window.spread_nm)
@@ -197,6 +224,17 @@ bt_recipe_check (const BtRecipe *recipe, GError **error)
     REFUSE (_ ("limit: the least semiconducting fraction has to lie between 0 and 1, for instance 0.98."));
   if (!(recipe->max_absorbance > 0))
     REFUSE (_ ("max_absorbance: the photometric limit has to be above 0."));
+  if (!(recipe->light_path.reflectance_u >= 0 && recipe->light_path.reflectance_u < 0.5))
+    REFUSE (_ ("reflectance_u: the uncertainty of the reflectance has to lie between 0 and 0.5; 0 where it is unknown."));
+  if (!(recipe->photometric_u >= 0 && recipe->photometric_u < 1))
+    REFUSE (_ ("photometric_u: the uncertainty of an absorbance has to lie between 0 and 1; 0 where it is unknown."));
+  if (!(recipe->wavelength_u_nm >= 0 && recipe->wavelength_u_nm < 50))
+    REFUSE (_ ("wavelength_u_nm: the uncertainty of the wavelength scale has to lie between 0 and 50 nm; 0 where it is unknown."));
+  if (!(recipe->stray_light >= 0 && recipe->stray_light < 0.5))
+    REFUSE (_ ("stray_light: the share of stray light has to lie between 0 and 0.5, for instance 0.0005; 0 where it is unknown."));
+  for (guint i = 0; i < recipe->steps_nm->len; i++)
+    if (!(g_array_index (recipe->steps_nm, double, i) > 0))
+      REFUSE (_ ("detector_changes_nm: a wavelength has to be above 0 nm."));
   if (!(recipe->mean_low_nm > 0 && recipe->mean_high_nm > recipe->mean_low_nm))
     REFUSE (_ ("mean_range_nm: the range of the mean has to go from a shorter to a longer wavelength above 0 nm."));
   for (guint i = 0; i < recipe->wavelengths_nm->len; i++)

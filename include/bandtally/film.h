@@ -12,8 +12,9 @@ G_BEGIN_DECLS
 G_DECLARE_FINAL_TYPE (BtFilm, bt_film, BT, FILM, GObject)
 
 /* Properties (all with notify): "label", "lot", "substrate", "notes" (strings), "thickness-nm", "thickness-u-nm" (0 = unknown),
- * "blank" (BtSpectrum, nullable). Taken from the file's preamble where it states them ("lot", "film", "thickness nm",
- * "thickness u nm", "substrate"). */
+ * "blank", "reflectance" (BtSpectrum, nullable), "sheet-resistance-ohm", "sheet-resistance-u-ohm" (0 = unknown). Taken from the file's preamble where it
+ * states them ("lot", "film", "thickness nm", "thickness u nm", "thickness readings nm", "sheet resistance ohm", "sheet resistance u ohm",
+ * "substrate"). */
 BtFilm *bt_film_new (BtSpectrum *spectrum);
 /* (transfer full): with the same spectrum and blank. */
 BtFilm *bt_film_copy (BtFilm *self);
@@ -29,6 +30,22 @@ void bt_film_set_notes (BtFilm *self, const char *notes);
 double bt_film_get_thickness_nm (BtFilm *self);
 double bt_film_get_thickness_u_nm (BtFilm *self);
 void bt_film_set_thickness (BtFilm *self, double thickness_nm, double thickness_u_nm);
+/**
+ * bt_film_set_thickness_readings:
+ * @nm: (array length=n): readings across the film, above 0; none to forget them
+ *
+ * The thickness becomes their mean and its uncertainty s / sqrt (n) (JCGM 100:2008 4.2; one reading: unknown). bt_film_set_thickness() forgets them.
+ */
+void bt_film_set_thickness_readings (BtFilm *self, const double *nm, gsize n);
+/* (array length=n) (nullable): owned by the film. */
+const double *bt_film_get_thickness_readings (BtFilm *self, gsize *n);
+/* Of the film, dc, in ohm per square; 0 = unknown. */
+double bt_film_get_sheet_resistance_ohm (BtFilm *self);
+double bt_film_get_sheet_resistance_u_ohm (BtFilm *self);
+void bt_film_set_sheet_resistance (BtFilm *self, double ohm, double u_ohm);
+/* Reflectance of film and substrate as measured from the film's side; a spectrum in BT_Y_REFLECTANCE or BT_Y_REFLECTANCE_PERCENT. */
+BtSpectrum *bt_film_get_reflectance (BtFilm *self);
+void bt_film_set_reflectance (BtFilm *self, BtSpectrum *reflectance);
 BtSpectrum *bt_film_get_blank (BtFilm *self);
 void bt_film_set_blank (BtFilm *self, BtSpectrum *blank);
 
@@ -47,11 +64,13 @@ typedef enum { BT_LIGHT_PATH_BLANK_RATIO, BT_LIGHT_PATH_REFLECTION, BT_LIGHT_PAT
  * BtLightPath:
  * @reflectance: of one face, 0 to 1, the same at all energies; NAN: from the substrate's published index
  * @substrate_index: refractive index of the substrate where its dispersion is not published; 0: from the substrate's name
+ * @reflectance_u: its standard uncertainty, or that of a measured reflectance; 0: unknown, left out
  *
- * How a reading becomes the film's own absorbance.
+ * How a reading becomes the film's own absorbance. Where the film has a measured reflectance, the reflection path uses that instead of
+ * @reflectance.
  */
-typedef struct { BtLightPathKind kind; double reflectance, substrate_index; } BtLightPath;
-#define BT_LIGHT_PATH_INIT { BT_LIGHT_PATH_BLANK_RATIO, NAN, 0 }
+typedef struct { BtLightPathKind kind; double reflectance, substrate_index, reflectance_u; } BtLightPath;
+#define BT_LIGHT_PATH_INIT { BT_LIGHT_PATH_BLANK_RATIO, NAN, 0, 0 }
 
 /* "blank ratio", "reflection", "thin film": in files. FALSE where @name is none. */
 const char *bt_light_path_name (BtLightPathKind kind);

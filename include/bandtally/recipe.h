@@ -25,6 +25,17 @@ typedef enum { BT_BAND_CENTRE, BT_BAND_FWHM, BT_BAND_HEIGHT } BtBandField;
 typedef struct { BtGroup group; guint index; BtBandField field; double value; } BtHeld;
 
 /**
+ * BtStepCorrection:
+ * @BT_STEP_LEFT: curves and readings keep the steps of the detector; the fit takes them into account all the same
+ * @BT_STEP_TO_VISIBLE: the side of longer wavelengths is moved onto that of shorter ones
+ * @BT_STEP_TO_INFRARED: the side of shorter wavelengths is moved onto that of longer ones
+ */
+typedef enum { BT_STEP_LEFT, BT_STEP_TO_VISIBLE, BT_STEP_TO_INFRARED, BT_N_STEP_CORRECTIONS } BtStepCorrection;
+/* "none", "visible", "infrared": in files. */
+const char *bt_step_correction_name (BtStepCorrection correction);
+gboolean bt_step_correction_from_name (const char *name, BtStepCorrection *correction);
+
+/**
  * BtRecipe:
  * @name: what it is called
  * @light_path: how the reading became the film's own absorbance
@@ -39,6 +50,11 @@ typedef struct { BtGroup group; guint index; BtBandField field; double value; } 
  * @wavelengths_nm: (element-type double): wavelengths of interest
  * @mean_low_nm, @mean_high_nm: range of the mean absorption coefficient
  * @max_absorbance: photometric limit; readings above are left out
+ * @steps_nm: (element-type double): wavelengths at which the instrument changes detector, grating or lamp: a step there is measured however small
+ * @step_correction: what becomes of steps in curves and readings
+ * @photometric_u: standard uncertainty of an absorbance beyond its noise, from a check of the instrument; 0: unknown, left out
+ * @wavelength_u_nm: standard uncertainty of the wavelength scale; 0: unknown, left out
+ * @stray_light: share of the light that reaches the detector without passing the film, 0 to 1; 0: unknown
  * @excluded: (element-type BtRange): energies left out of the fit
  * @held: (element-type BtHeld): what the user holds
  *
@@ -58,6 +74,9 @@ typedef struct {
   GArray *wavelengths_nm;
   double mean_low_nm, mean_high_nm;
   double max_absorbance;
+  GArray *steps_nm;
+  BtStepCorrection step_correction;
+  double photometric_u, wavelength_u_nm, stray_light;
   GArray *excluded;
   GArray *held;
 } BtRecipe;

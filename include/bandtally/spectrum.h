@@ -55,6 +55,15 @@ GPtrArray *bt_spectrum_read_bytes (GBytes *bytes, const char *name, const BtRead
 /* (transfer full): the first spectrum of a file, or NULL with @error set. */
 BtSpectrum *bt_spectrum_new_from_file (const char *path, GError **error);
 /**
+ * bt_reflectance_new_from_file:
+ *
+ * Reads a measured reflectance: the file's column of reflectance, or its only curve, taken for per cent where header or values say so. The
+ * other readers refuse such a file, for no absorbance follows from it.
+ *
+ * Returns: (transfer full): the first one; its "absorbance" is the reflectance, 0 to 1. NULL with @error set
+ */
+BtSpectrum *bt_reflectance_new_from_file (const char *path, GError **error);
+/**
  * bt_spectrum_new:
  * @x: (array length=n): abscissa in @x_unit, any order
  * @y: (array length=n): reading in @y_unit
