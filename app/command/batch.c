@@ -70,20 +70,22 @@ add_failure (BatchResult *result, const char *file, const char *title, GError *e
   g_error_free (error);
 }
 
+/* What the user states takes the place of what the file says. */
 static void
-set_thickness (BtFilm *film, const BatchSettings *settings)
+state_film (BtFilm *film, const BatchSettings *settings)
 {
-  double thickness_nm = bt_film_get_thickness_nm (film);
-  double thickness_u_nm = bt_film_get_thickness_u_nm (film);
-
-  if (!isnan (settings->thickness_nm))
-    {
-      thickness_nm = settings->thickness_nm;
-      thickness_u_nm = 0;
-    }
+  if (settings->thicknesses_nm != NULL)
+    bt_film_set_thickness_readings (film, (const double *)(void *)settings->thicknesses_nm->data, settings->thicknesses_nm->len);
   if (!isnan (settings->thickness_u_nm))
-    thickness_u_nm = settings->thickness_u_nm;
-  bt_film_set_thickness (film, thickness_nm, thickness_u_nm);
+    bt_film_set_thickness (film, bt_film_get_thickness_nm (film), settings->thickness_u_nm);
+  if (!isnan (settings->sheet_resistance_ohm))
+    bt_film_set_sheet_resistance (film, settings->sheet_resistance_ohm, 0);
+  if (!isnan (settings->sheet_resistance_u_ohm))
+    bt_film_set_sheet_resistance (film, bt_film_get_sheet_resistance_ohm (film), settings->sheet_resistance_u_ohm);
+  bt_film_set_blank (film, settings->blank);
+  bt_film_set_reflectance (film, settings->reflectance);
+  if (settings->substrate != NULL)
+    bt_film_set_substrate (film, settings->substrate);
 }
 
 static void
@@ -103,10 +105,7 @@ grade_file (Job *job, const BatchSettings *settings, GCancellable *cancellable)
       BtFilm *film = bt_film_new (spectrum);
       BtTally *tally;
 
-      set_thickness (film, settings);
-      bt_film_set_blank (film, settings->blank);
-      if (settings->substrate != NULL)
-        bt_film_set_substrate (film, settings->substrate);
+      state_film (film, settings);
       tally = bt_tally_film (film, settings->recipe, BT_EFFORT_FULL, NULL, NULL, NULL, cancellable, &error);
       if (tally != NULL)
         {

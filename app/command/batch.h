@@ -12,17 +12,20 @@ G_BEGIN_DECLS
  * @reading: what the user states about the files
  * @blank: (nullable): for all films
  * @substrate: (nullable): for all films; NULL: as the files say
- * @thickness_nm: for all films; NAN: as the files say
- * @thickness_u_nm: NAN: as the files say, or unknown with a thickness of the user's
+ * @reflectance: (nullable): measured, for all films
+ * @thicknesses_nm: (nullable) (element-type double): readings of a film's thickness, for all films; NULL: as the files say
+ * @thickness_u_nm: NAN: as the files say, or from the readings
+ * @sheet_resistance_ohm, @sheet_resistance_u_ohm: for all films; NAN: as the files say
  * @jobs: threads
  */
 typedef struct
 {
   const BtRecipe *recipe;
   BtReadOptions reading;
-  BtSpectrum *blank;
+  BtSpectrum *blank, *reflectance;
   const char *substrate;
-  double thickness_nm, thickness_u_nm;
+  GArray *thicknesses_nm;
+  double thickness_u_nm, sheet_resistance_ohm, sheet_resistance_u_ohm;
   int jobs;
 } BatchSettings;
 

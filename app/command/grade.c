@@ -16,7 +16,9 @@ typedef struct
   char *blank, *recipe, *json, *csv, *report;
   char *thickness_nm, *thickness_u_nm, *diameter_nm, *diameter_spread_nm;
   char *strength_ratio, *strength_ratio_u, *limit, *level, *wavelengths_nm;
-  char *light_path, *reflectance, *substrate, *substrate_index;
+  char *light_path, *reflectance, *reflectance_u, *reflectance_file, *substrate, *substrate_index;
+  char *sheet_resistance_ohm, *sheet_resistance_u_ohm;
+  char *detector_changes_nm, *detector_correction, *photometric_u, *wavelength_u_nm, *stray_light;
   char *x_unit, *y_unit, *jobs, *paper;
 } Options;
 
@@ -44,7 +46,16 @@ options_clear (Options *options)
                        &options->light_path,
                        &options->reflectance,
                        &options->substrate,
-                       &options->substrate_index };
+                       &options->substrate_index,
+                       &options->reflectance_u,
+                       &options->reflectance_file,
+                       &options->sheet_resistance_ohm,
+                       &options->sheet_resistance_u_ohm,
+                       &options->detector_changes_nm,
+                       &options->detector_correction,
+                       &options->photometric_u,
+                       &options->wavelength_u_nm,
+                       &options->stray_light };
 
   for (gsize i = 0; i < G_N_ELEMENTS (strings); i++)
     g_clear_pointer (strings[i], g_free);
@@ -56,7 +67,7 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
 {
   const GOptionEntry entries[] = {
     { "thickness-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_nm,
-      N_ ("thickness of the films; without it the files' own"), "X" },
+      N_ ("thickness of the films, or several readings of it; without it the files' own"), "X,X,…" },
     { "thickness-u-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_u_nm, N_ ("its standard uncertainty"), "X" },
     { "blank", 0, 0, G_OPTION_ARG_FILENAME, &options->blank, N_ ("spectrum of the substrate alone, taken off every film"),
       "FILE" },
@@ -65,6 +76,20 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
     { "light-path", 0, 0, G_OPTION_ARG_STRING, &options->light_path, N_ ("blank-ratio (default), reflection or thin-film"),
       N_ ("PATH") },
     { "reflectance", 0, 0, G_OPTION_ARG_STRING, &options->reflectance, N_ ("of one face, for the light path reflection"), "X" },
+    { "reflectance-u", 0, 0, G_OPTION_ARG_STRING, &options->reflectance_u, N_ ("standard uncertainty of the reflectance"), "X" },
+    { "reflectance-file", 0, 0, G_OPTION_ARG_FILENAME, &options->reflectance_file,
+      N_ ("measured reflectance of film and substrate, for the light path reflection"), "FILE" },
+    { "sheet-resistance-ohm", 0, 0, G_OPTION_ARG_STRING, &options->sheet_resistance_ohm,
+      N_ ("dc sheet resistance, for the figures of a transparent conductor"), "X" },
+    { "sheet-resistance-u-ohm", 0, 0, G_OPTION_ARG_STRING, &options->sheet_resistance_u_ohm, N_ ("its standard uncertainty"), "X" },
+    { "detector-changes-nm", 0, 0, G_OPTION_ARG_STRING, &options->detector_changes_nm,
+      N_ ("where the instrument changes detector: a step there is measured however small"), "X,X,…" },
+    { "detector-correction", 0, 0, G_OPTION_ARG_STRING, &options->detector_correction,
+      N_ ("side that is kept where a step is taken off: none (default), visible or infrared"), N_ ("SIDE") },
+    { "photometric-u", 0, 0, G_OPTION_ARG_STRING, &options->photometric_u,
+      N_ ("standard uncertainty of an absorbance from a check of the instrument"), "X" },
+    { "wavelength-u-nm", 0, 0, G_OPTION_ARG_STRING, &options->wavelength_u_nm, N_ ("standard uncertainty of the wavelength scale"), "X" },
+    { "stray-light", 0, 0, G_OPTION_ARG_STRING, &options->stray_light, N_ ("share of stray light, 0 to 0.5"), "X" },
     { "substrate-index", 0, 0, G_OPTION_ARG_STRING, &options->substrate_index,
       N_ ("refractive index of a substrate without a known one"), "X" },
     { "diameter-nm", 0, 0, G_OPTION_ARG_STRING, &options->diameter_nm, N_ ("mean diameter; without it proposed from the data"),
@@ -138,8 +163,8 @@ check_outputs (const Options *options, GError **error)
                          _ ("“%s” is to be graded and to be written; name another file for the output."), *file);
             return FALSE;
           }
-      if (same_file (outputs[i], options->recipe) || same_file (outputs[i], options->blank))
-        return usage (error, _ ("An output would overwrite the recipe or the blank; name another file for it."));
+      if (same_file (outputs[i], options->recipe) || same_file (outputs[i], options->blank) || same_file (outputs[i], options->reflectance_file))
+        return usage (error, _ ("An output would overwrite the recipe, the blank or the reflectance; name another file for it."));
     }
   if (n_standard > 1)
     return usage (error, _ ("Only one of --json, --csv and --report can go to standard output."));
@@ -156,6 +181,10 @@ parse_recipe_numbers (const Options *options, BtRecipe *recipe, GError **error)
     { "--strength-ratio", options->strength_ratio, &recipe->strength_ratio, 0.01, 100, N_ ("a number from 0.01 to 100") },
     { "--strength-ratio-u", options->strength_ratio_u, &recipe->strength_ratio_u, 0, 100, N_ ("a number from 0 to 100") },
     { "--reflectance", options->reflectance, &recipe->light_path.reflectance, 0, 0.9, N_ ("a reflectance from 0 to 0.9") },
+    { "--reflectance-u", options->reflectance_u, &recipe->light_path.reflectance_u, 0, 0.5, N_ ("a number from 0 to 0.5") },
+    { "--photometric-u", options->photometric_u, &recipe->photometric_u, 0, 1, N_ ("a number from 0 to 1") },
+    { "--wavelength-u-nm", options->wavelength_u_nm, &recipe->wavelength_u_nm, 0, 50, N_ ("a number from 0 to 50 (nm)") },
+    { "--stray-light", options->stray_light, &recipe->stray_light, 0, 0.499, N_ ("a share from 0 to 0.5 (0.0005 for 0.05 %)") },
     { "--substrate-index", options->substrate_index, &recipe->light_path.substrate_index, 1, 6, N_ ("an index from 1 to 6") },
     { "--limit", options->limit, &recipe->limit, 0, 1, N_ ("a share from 0 to 1 (0.9 for 90 %)") },
     { "--level", options->level, &recipe->level, 0.5, 0.9999, N_ ("a level from 0.5 to 0.9999 (0.95 for 95 %)") },
@@ -190,6 +219,30 @@ parse_light_path (const char *text, BtRecipe *recipe, GError **error)
   return known || bad_value ("--light-path", _ ("blank-ratio, reflection or thin-film"), text, error);
 }
 
+/* Wavelengths that the user gives in place of the recipe's. */
+static gboolean
+replace_list (const char *option, const char *text, GArray **list, GError **error)
+{
+  GArray *wavelengths_nm;
+
+  if (text == NULL)
+    return TRUE;
+  wavelengths_nm = parse_list (option, text, 100, 20000, _ ("wavelengths from 100 to 20000 (nm) between commas"), error);
+  if (wavelengths_nm == NULL)
+    return FALSE;
+  g_array_unref (*list);
+  *list = wavelengths_nm;
+  return TRUE;
+}
+
+static gboolean
+parse_detector (const Options *options, BtRecipe *recipe, GError **error)
+{
+  if (options->detector_correction != NULL && !bt_step_correction_from_name (options->detector_correction, &recipe->step_correction))
+    return bad_value ("--detector-correction", _ ("none, visible or infrared"), options->detector_correction, error);
+  return replace_list ("--detector-changes-nm", options->detector_changes_nm, &recipe->steps_nm, error);
+}
+
 /* (transfer full): the recipe of the file, or the default one, with the options' own values. */
 static BtRecipe *
 make_recipe (const Options *options, GError **error)
@@ -198,20 +251,11 @@ make_recipe (const Options *options, GError **error)
 
   if (recipe == NULL)
     return NULL;
-  if (options->wavelengths_nm != NULL)
-    {
-      GArray *wavelengths_nm = parse_list ("--wavelengths-nm", options->wavelengths_nm, 100, 20000,
-                                           _ ("wavelengths from 100 to 20000 (nm) between commas"), error);
-
-      if (wavelengths_nm == NULL)
-        {
-          bt_recipe_free (recipe);
-          return NULL;
-        }
-      g_array_unref (recipe->wavelengths_nm);
-      recipe->wavelengths_nm = wavelengths_nm;
-    }
-  if (!parse_recipe_numbers (options, recipe, error) || !parse_light_path (options->light_path, recipe, error)
+  /* A measured reflectance is of use on one light path only. */
+  if (options->reflectance_file != NULL)
+    recipe->light_path.kind = BT_LIGHT_PATH_REFLECTION;
+  if (!replace_list ("--wavelengths-nm", options->wavelengths_nm, &recipe->wavelengths_nm, error) || !parse_detector (options, recipe, error)
+      || !parse_recipe_numbers (options, recipe, error) || !parse_light_path (options->light_path, recipe, error)
       || !bt_recipe_check (recipe, error))
     {
       bt_recipe_free (recipe);
@@ -225,12 +269,14 @@ make_settings (const Options *options, BatchSettings *settings, GError **error)
 {
   double jobs = g_get_num_processors ();
   const NumberOption numbers[] = {
-    { "--thickness-nm", options->thickness_nm, &settings->thickness_nm, DBL_MIN, 1e9, N_ ("a number above 0 (nm)") },
     { "--thickness-u-nm", options->thickness_u_nm, &settings->thickness_u_nm, 0, 1e9, N_ ("a number not below 0 (nm)") },
+    { "--sheet-resistance-ohm", options->sheet_resistance_ohm, &settings->sheet_resistance_ohm, DBL_MIN, 1e15, N_ ("a number above 0 (ohm)") },
+    { "--sheet-resistance-u-ohm", options->sheet_resistance_u_ohm, &settings->sheet_resistance_u_ohm, 0, 1e15,
+      N_ ("a number not below 0 (ohm)") },
     { "--jobs", options->jobs, &jobs, 1, MOST_JOBS, N_ ("a whole number from 1 to 256") },
   };
 
-  settings->thickness_nm = settings->thickness_u_nm = NAN;
+  settings->thickness_u_nm = settings->sheet_resistance_ohm = settings->sheet_resistance_u_ohm = NAN;
   settings->substrate = options->substrate;
   settings->reading = (BtReadOptions)BT_READ_OPTIONS_INIT;
   if (!parse_numbers (numbers, G_N_ELEMENTS (numbers), error)
@@ -239,9 +285,16 @@ make_settings (const Options *options, BatchSettings *settings, GError **error)
   if (jobs != floor (jobs))
     return bad_value ("--jobs", _ ("a whole number from 1 to 256"), options->jobs, error);
   settings->jobs = (int)MIN (jobs, MOST_JOBS);
-  if (options->blank != NULL)
-    settings->blank = bt_spectrum_new_from_file (options->blank, error);
-  return options->blank == NULL || settings->blank != NULL;
+  if (options->thickness_nm != NULL)
+    {
+      settings->thicknesses_nm = parse_list ("--thickness-nm", options->thickness_nm, DBL_MIN, 1e9,
+                                             _ ("a number above 0 (nm), or several readings between commas"), error);
+      if (settings->thicknesses_nm == NULL)
+        return FALSE;
+    }
+  if (options->blank != NULL && (settings->blank = bt_spectrum_new_from_file (options->blank, error)) == NULL)
+    return FALSE;
+  return options->reflectance_file == NULL || (settings->reflectance = bt_reflectance_new_from_file (options->reflectance_file, error)) != NULL;
 }
 
 static gboolean
@@ -374,6 +427,8 @@ grade_command (int argc, char **argv)
     status = command_usage_error ("grade", error);
   g_clear_pointer (&recipe, bt_recipe_free);
   g_clear_object (&settings.blank);
+  g_clear_object (&settings.reflectance);
+  g_clear_pointer (&settings.thicknesses_nm, g_array_unref);
   options_clear (&options);
   return status;
 }

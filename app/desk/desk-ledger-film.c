@@ -123,7 +123,7 @@ static void
 fill_reading (DeskSection *section, guint i, const BtReading *reading)
 {
   g_autofree char *name = g_strdup_printf (_("%g nm"), reading->wavelength_nm);
-  g_autofree char *alpha = desk_text_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm, "cm⁻¹");
+  g_autofree char *alpha = desk_text_uncertain (reading->alpha.value, reading->alpha.u, "cm⁻¹");
   g_autofree char *absorbance = desk_text_uncertain (reading->absorbance, reading->absorbance_u, NULL);
   g_autofree char *absorptance = desk_text_percent (reading->absorptance, 1);
   DeskLine *line = desk_section_line (section, name, "reading %u", i);
@@ -133,10 +133,10 @@ fill_reading (DeskSection *section, guint i, const BtReading *reading)
       desk_line_set_detail (line, NULL);
       return;
     }
-  g_autofree char *detail = isnan (reading->alpha_per_cm)
+  g_autofree char *detail = isnan (reading->alpha.value)
                                 ? g_strdup_printf (_("absorptance %s"), absorptance)
                                 : g_strdup_printf (_("absorbance %s, absorptance %s"), absorbance, absorptance);
-  desk_line_set_value (line, "%s", isnan (reading->alpha_per_cm) ? absorbance : alpha);
+  desk_line_set_value (line, "%s", isnan (reading->alpha.value) ? absorbance : alpha);
   desk_line_set_detail (line, detail);
 }
 
@@ -159,11 +159,11 @@ desk_ledger_fill_readings (DeskSection *section, const DeskAccount *account)
 
   if (tally)
     {
-      g_autofree char *mean = desk_text_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm, "cm⁻¹");
+      g_autofree char *mean = desk_text_uncertain (tally->mean_alpha.value, tally->mean_alpha.u, "cm⁻¹");
       line = desk_section_line (section, _("Mean absorption coefficient"), "mean");
       desk_line_set_value (line, "%s", has_alpha ? mean : _("needs the thickness"));
       g_autofree char *covered = NULL;
-      if (!isnan (tally->mean_alpha_per_cm))
+      if (!isnan (tally->mean_alpha.value))
         covered = g_strdup_printf (_("over %.0f to %.0f nm, as far as the data go"), bt_nm_from_ev (tally->mean_range.high_ev),
                                    bt_nm_from_ev (tally->mean_range.low_ev));
       desk_line_set_detail (line, covered);

@@ -2,8 +2,11 @@
 #include <bandtally/film.h>
 
 #include <math.h>
+#include <string.h>
 
 #include <glib/gi18n-lib.h>
+
+#include "point.h"
 
 double
 bt_alpha_per_cm (double absorbance, double thickness_nm)
@@ -32,47 +35,12 @@ bt_curve_free (BtCurve *curve)
   g_free (curve->energy_ev);
   g_free (curve->absorbance);
   g_free (curve->absorbance_u);
+  for (guint k = 0; k < BT_N_PARTS; k++)
+    g_free (curve->parts[k]);
   g_free (curve->path);
+  g_free (curve->alpha);
   g_ptr_array_unref (curve->flags);
   g_free (curve);
-}
-
-static double
-noise_at (BtSpectrum *spectrum, double energy_ev)
-{
-  gsize n, low = 0, high;
-  const double *energy = bt_spectrum_get_energy_ev (spectrum, &n), *noise = bt_spectrum_get_noise (spectrum, NULL);
-
-  for (high = n - 1; high - low > 1;)
-    {
-      gsize middle = (low + high) / 2;
-
-      if (energy[middle] <= energy_ev)
-        low = middle;
-      else
-        high = middle;
-    }
-  return fmax (noise[low], noise[high]);
-}
-
-/* Subtracts the blank where it reaches; returns how many points it does not cover. */
-static gsize
-subtract_blank (BtCurve *curve, BtSpectrum *blank)
-{
-  gsize n = 0;
-
-  for (gsize i = 0; i < curve->n; i++)
-    {
-      double a = bt_spectrum_absorbance_at (blank, curve->energy_ev[i]);
-
-      if (isnan (a))
-        continue;
-      curve->energy_ev[n] = curve->energy_ev[i];
-      curve->absorbance[n] = curve->absorbance[i] - a;
-      curve->absorbance_u[n] = hypot (curve->absorbance_u[i], noise_at (blank, curve->energy_ev[i]));
-      n++;
-    }
-  return curve->n - n;
 }
 
 static const char *const path_names[BT_N_LIGHT_PATHS] = { "blank ratio", "reflection", "thin film" };
@@ -111,61 +79,86 @@ index_at (BtFilm *self, const BtLightPath *how, double energy_ev)
                                   : bt_substrate_index (bt_film_get_substrate (self), BT_HC_EV_NM / energy_ev);
 }
 
-/* Applies a formula that turns a transmittance into an absorbance, point by point; drops what it cannot. Returns how many. */
-static gsize
-apply (BtCurve *curve, BtFilm *self, const BtLightPath *how, double (*formula) (double transmittance, double energy_ev, BtFilm *, const BtLightPath *))
+static const char *
+substrate_words (BtFilm *self, const BtLightPath *how)
 {
+  return how->substrate_index > 0 ? _ ("a substrate of the index stated") : bt_film_get_substrate (self);
+}
+
+typedef struct { gsize n_blank, n_reflectance, n_formula; } Dropped;
+
+/* Takes every point along the path, with the uncertainty of each source; drops what cannot be taken, counted by reason. */
+static void
+take_points (BtCurve *curve, BtFilm *self, const BtLightPath *how, const BtAccuracy *accuracy, Dropped *dropped)
+{
+  const gboolean blank = how->kind != BT_LIGHT_PATH_REFLECTION && bt_film_get_blank (self) != NULL;
+  const gboolean reflectance = how->kind == BT_LIGHT_PATH_REFLECTION
+                               && (how->reflectance_u > 0 || bt_film_get_reflectance (self) != NULL);
   gsize n = 0;
 
+  curve->parts[BT_PART_NOISE] = g_new (double, curve->n);
+  if (blank)
+    curve->parts[BT_PART_BLANK] = g_new (double, curve->n);
+  if (reflectance)
+    curve->parts[BT_PART_REFLECTANCE] = g_new (double, curve->n);
+  if (accuracy != NULL && accuracy->photometric_u > 0)
+    curve->parts[BT_PART_PHOTOMETRIC] = g_new (double, curve->n);
   for (gsize i = 0; i < curve->n; i++)
     {
-      const double t = pow (10, -curve->absorbance[i]), h = 1e-4;
-      double a = formula (t, curve->energy_ev[i], self, how);
-      /* Slope of the new absorbance by the old one, for the noise. */
-      double slope = (formula (t * pow (10, -h), curve->energy_ev[i], self, how) - a) / h;
+      double a, by_film, by_blank, by_reflectance, u[3];
+      BtPoint point;
 
-      if (!isfinite (a) || !isfinite (slope))
-        continue;
+      if (!bt_point_at (&point, self, how, curve->energy_ev[i], curve->absorbance[i], u))
+        {
+          *(blank ? &dropped->n_blank : &dropped->n_reflectance) += 1;
+          continue;
+        }
+      a = bt_point_absorbance (&point);
+      if (isfinite (a))
+        bt_point_slopes (&point, &by_film, &by_blank, &by_reflectance);
+      if (!isfinite (a) || !isfinite (by_film) || !isfinite (by_reflectance))
+        {
+          dropped->n_formula++;
+          continue;
+        }
+      curve->parts[BT_PART_NOISE][n] = fabs (by_film) * curve->absorbance_u[i];
+      if (blank)
+        curve->parts[BT_PART_BLANK][n] = fabs (by_blank) * u[1];
+      if (reflectance)
+        curve->parts[BT_PART_REFLECTANCE][n] = fabs (by_reflectance) * hypot (u[2], how->reflectance_u);
+      if (curve->parts[BT_PART_PHOTOMETRIC] != NULL)
+        curve->parts[BT_PART_PHOTOMETRIC][n] = fabs (by_film) * accuracy->photometric_u;
       curve->energy_ev[n] = curve->energy_ev[i];
-      curve->absorbance_u[n] = fabs (slope) * curve->absorbance_u[i];
+      curve->absorbance_u[n] = hypot (curve->parts[BT_PART_NOISE][n], blank ? curve->parts[BT_PART_BLANK][n] : 0);
       curve->absorbance[n++] = a;
     }
-  return curve->n - n;
+  curve->n = n;
 }
 
-static double
-slab_formula (double transmittance, double energy_ev, BtFilm *self, const BtLightPath *how)
-{
-  double r = isnan (how->reflectance) ? bt_face_reflectance (index_at (self, how, energy_ev)) : how->reflectance;
-
-  return bt_slab_depth (r, transmittance) / BT_LN10;
-}
-
-static double
-sheet_formula (double transmittance, double energy_ev, BtFilm *self, const BtLightPath *how)
-{
-  double index = index_at (self, how, energy_ev);
-
-  return 2 * BT_Z0_OHM * bt_sheet_conductance (transmittance, index) / ((1 + index) * BT_LN10);
-}
-
-/* Without a blank the reading stands for the whole, and the flag says so. */
+/* What an error of the wavelength scale does on a slope, from the neighbours of each point. */
 static void
-take_blank (BtCurve *curve, BtSpectrum *blank)
+take_wavelength (BtCurve *curve, double wavelength_u_nm)
 {
-  gsize left_out;
+  double *part = curve->parts[BT_PART_WAVELENGTH] = g_new0 (double, MAX (curve->n, 1));
 
-  if (blank == NULL)
+  for (gsize i = 0; i < curve->n && curve->n > 1; i++)
     {
-      g_ptr_array_add (curve->flags,
-                       bt_flag_new ("no-blank", _ ("No blank was given: what the substrate takes up and reflects is counted as the film's. Measure the "
-                                                   "bare substrate and choose it as the blank, unless the instrument has subtracted it.")));
-      return;
+      gsize a = i > 0 ? i - 1 : 0, b = MIN (i + 1, curve->n - 1);
+      double e = curve->energy_ev[i], slope = (curve->absorbance[b] - curve->absorbance[a]) / (curve->energy_ev[b] - curve->energy_ev[a]);
+
+      /* The neighbours' noise is no slope. */
+      double noise = hypot (curve->absorbance_u[a], curve->absorbance_u[b]) / (curve->energy_ev[b] - curve->energy_ev[a]);
+
+      part[i] = sqrt (fmax (0, slope * slope - noise * noise)) * wavelength_u_nm * e * e / BT_HC_EV_NM;
     }
-  left_out = subtract_blank (curve, blank);
-  curve->n -= left_out;
-  flag_dropped (curve, "blank-short", left_out, _ ("%u point lies outside the blank's range and was left out; measure the blank over the film's whole range."),
-                _ ("%u points lie outside the blank's range and were left out; measure the blank over the film's whole range."));
+}
+
+static void
+flag_no_blank (BtCurve *curve)
+{
+  g_ptr_array_add (curve->flags,
+                   bt_flag_new ("no-blank", _ ("No blank was given: what the substrate takes up and reflects is counted as the film's. Measure the "
+                                               "bare substrate and choose it as the blank, unless the instrument has subtracted it.")));
 }
 
 static void
@@ -180,30 +173,27 @@ flag_without_index (BtCurve *curve, BtFilm *self)
 }
 
 static void
-take_slab (BtCurve *curve, BtFilm *self, const BtLightPath *how)
+say_slab (BtCurve *curve, BtFilm *self, const BtLightPath *how)
 {
-  gsize dropped = apply (curve, self, how, slab_formula);
-
-  curve->n -= dropped;
-  curve->path = isnan (how->reflectance)
-                  ? g_strdup_printf (_ ("slab with reflection at both faces taken off, T = (1-R)² e^-αt / (1 - R² e^-2αt); R from the index of %s"),
-                                     how->substrate_index > 0 ? _ ("the value stated") : bt_film_get_substrate (self))
-                  : g_strdup_printf (_ ("slab with reflection at both faces taken off, T = (1-R)² e^-αt / (1 - R² e^-2αt); R = %.4g"), how->reflectance);
-  flag_dropped (curve, "outside-index", dropped, _ ("%u point lies outside the published range of the substrate's index and was left out."),
-                _ ("%u points lie outside the published range of the substrate's index and were left out."));
+  if (bt_film_get_reflectance (self) != NULL)
+    curve->path = g_strdup (_ ("slab with reflection at both faces taken off, T = (1-R)² e^-αt / (1 - R² e^-2αt); R from the measured reflectance and T "
+                               "together"));
+  else if (isnan (how->reflectance))
+    curve->path = g_strdup_printf (_ ("slab with reflection at both faces taken off, T = (1-R)² e^-αt / (1 - R² e^-2αt); R from the index of %s"),
+                                   how->substrate_index > 0 ? _ ("the value stated") : bt_film_get_substrate (self));
+  else
+    curve->path = g_strdup_printf (_ ("slab with reflection at both faces taken off, T = (1-R)² e^-αt / (1 - R² e^-2αt); R = %.4g"), how->reflectance);
+  curve->alpha = g_strdup (_ ("α of the slab's inside, base e: what plate and film take up together, over the film's thickness"));
 }
 
 static void
-take_sheet (BtCurve *curve, BtFilm *self, const BtLightPath *how)
+say_sheet (BtCurve *curve, BtFilm *self, const BtLightPath *how)
 {
-  const double t = bt_film_get_thickness_nm (self), shortest_nm = bt_nm_from_ev (curve->energy_ev[curve->n - 1]);
-  gsize dropped = apply (curve, self, how, sheet_formula);
+  const double t = bt_film_get_thickness_nm (self), shortest_nm = bt_nm_from_ev (curve->energy_ev[curve->n > 0 ? curve->n - 1 : 0]);
 
-  curve->n -= dropped;
   curve->path = g_strdup_printf (_ ("thin conducting film on a substrate, T/T_blank = |1 + Z0 s/(1 + n)|^-2; absorbance 2 Z0 s/((1 + n) ln 10), on %s"),
-                                 how->substrate_index > 0 ? _ ("a substrate of the index stated") : bt_film_get_substrate (self));
-  flag_dropped (curve, "outside-index", dropped, _ ("%u point lies outside the published range of the substrate's index and was left out."),
-                _ ("%u points lie outside the published range of the substrate's index and were left out."));
+                                 substrate_words (self, how));
+  curve->alpha = g_strdup_printf (_ ("α of a thin film on %s, base e, 2 Z0 s/((1 + n_s) t): 2n/(1 + n_s) times the bulk value"), substrate_words (self, how));
   /* The formula needs a film much thinner than lambda / (2 pi n); a nanotube film's index is about 1.5 (common practice). */
   if (t > 0 && t > 0.5 * shortest_nm / (2 * G_PI * 1.5))
     g_ptr_array_add (curve->flags,
@@ -212,12 +202,53 @@ take_sheet (BtCurve *curve, BtFilm *self, const BtLightPath *how)
                                   t, shortest_nm));
 }
 
+static void
+say_ratio (BtCurve *curve, BtFilm *self, const BtLightPath *how)
+{
+  const double index = curve->n > 0 ? index_at (self, how, curve->energy_ev[curve->n / 2]) : NAN;
+
+  curve->path = g_strdup (bt_film_get_blank (self) == NULL
+                            ? _ ("absorbance as read, without a blank; reflection left out")
+                            : _ ("blank ratio: absorbance of the film less that of the blank; reflection beyond the blank's left out"));
+  /* 2n / (1 + n_s): a film much thinner than the wavelength. Its index of about 1.5 is common practice. */
+  curve->alpha = isnan (index)
+                   ? g_strdup (_ ("blank-ratio α, base e, ln(10) A/t: for a film much thinner than the wavelength 2n/(1 + n_s) times the bulk value"))
+                   : g_strdup_printf (_ ("blank-ratio α, base e, ln(10) A/t, on %s: for a film much thinner than the wavelength 2n/(1 + n_s) times the bulk "
+                                         "value, %.2f for a film index of 1.5"),
+                                      substrate_words (self, how), 2 * 1.5 / (1 + index));
+  if (bt_film_get_reflectance (self) != NULL)
+    g_ptr_array_add (curve->flags, bt_flag_new ("reflectance-unused", _ ("A measured reflectance is there but this light path does not use it; choose the "
+                                                                         "light path \"reflection\" to have it taken off.")));
+}
+
+static void
+flag_all_dropped (BtCurve *curve, const BtLightPath *how, gboolean measured, const Dropped *dropped)
+{
+  flag_dropped (curve, "blank-short", dropped->n_blank,
+                _ ("%u point lies outside the blank's range and was left out; measure the blank over the film's whole range."),
+                _ ("%u points lie outside the blank's range and were left out; measure the blank over the film's whole range."));
+  flag_dropped (curve, "reflectance-short", dropped->n_reflectance,
+                _ ("%u point lies outside the range of the measured reflectance and was left out; measure it over the film's whole range."),
+                _ ("%u points lie outside the range of the measured reflectance and were left out; measure it over the film's whole range."));
+  if (measured)
+    flag_dropped (curve, "reflectance-impossible", dropped->n_formula,
+                  _ ("%u point was left out where reflectance and transmittance add up to more than 1: check the units of both files and the mirror's "
+                     "calibration."),
+                  _ ("%u points were left out where reflectance and transmittance add up to more than 1: check the units of both files and the mirror's "
+                     "calibration."));
+  else if (how->kind != BT_LIGHT_PATH_BLANK_RATIO)
+    flag_dropped (curve, "outside-index", dropped->n_formula, _ ("%u point lies outside the published range of the substrate's index and was left out."),
+                  _ ("%u points lie outside the published range of the substrate's index and were left out."));
+}
+
 BtCurve *
-bt_film_light_path (BtFilm *self, const BtLightPath *how)
+bt_film_light_path (BtFilm *self, const BtLightPath *how, const BtAccuracy *accuracy)
 {
   static const BtLightPath blank_ratio = BT_LIGHT_PATH_INIT;
   BtCurve *curve = g_new0 (BtCurve, 1);
+  Dropped dropped = { 0 };
   BtSpectrum *spectrum;
+  gboolean measured;
   gsize n;
 
   g_return_val_if_fail (BT_IS_FILM (self), NULL);
@@ -231,32 +262,37 @@ bt_film_light_path (BtFilm *self, const BtLightPath *how)
   curve->flags = bt_flags_new ();
   if (bt_spectrum_get_y_unit (spectrum) == BT_Y_ALPHA_PER_CM)
     {
+      curve->parts[BT_PART_NOISE] = g_memdup2 (curve->absorbance_u, sizeof (double) * n);
       curve->path = g_strdup (_ ("the file states the absorption coefficient itself (base e, 1/cm)"));
+      curve->alpha = g_strdup (_ ("α as the file states it, base e"));
       return curve;
     }
-  if ((how->kind == BT_LIGHT_PATH_THIN_FILM || (how->kind == BT_LIGHT_PATH_REFLECTION && isnan (how->reflectance))) && curve->n > 0
+  measured = how->kind == BT_LIGHT_PATH_REFLECTION && bt_film_get_reflectance (self) != NULL;
+  if ((how->kind == BT_LIGHT_PATH_THIN_FILM || (how->kind == BT_LIGHT_PATH_REFLECTION && isnan (how->reflectance) && !measured)) && curve->n > 0
       && isnan (index_at (self, how, curve->energy_ev[curve->n / 2])))
     {
       flag_without_index (curve, self);
       how = &blank_ratio;
     }
-  /* The slab's own reflection is in its formula; a blank would take it off twice. */
-  if (how->kind != BT_LIGHT_PATH_REFLECTION)
-    take_blank (curve, bt_film_get_blank (self));
+  curve->kind = how->kind;
+  if (how->kind != BT_LIGHT_PATH_REFLECTION && bt_film_get_blank (self) == NULL)
+    flag_no_blank (curve);
+  take_points (curve, self, how, accuracy, &dropped);
+  if (accuracy != NULL && accuracy->wavelength_u_nm > 0)
+    take_wavelength (curve, accuracy->wavelength_u_nm);
   switch (how->kind)
     {
     case BT_LIGHT_PATH_REFLECTION:
-      take_slab (curve, self, how);
+      say_slab (curve, self, how);
       break;
     case BT_LIGHT_PATH_THIN_FILM:
-      take_sheet (curve, self, how);
+      say_sheet (curve, self, how);
       break;
     case BT_LIGHT_PATH_BLANK_RATIO:
     case BT_N_LIGHT_PATHS:
     default:
-      curve->path = g_strdup (bt_film_get_blank (self) == NULL
-                                ? _ ("absorbance as read, without a blank; reflection left out")
-                                : _ ("blank ratio: absorbance of the film less that of the blank; reflection beyond the blank's left out"));
+      say_ratio (curve, self, how);
     }
+  flag_all_dropped (curve, how, measured, &dropped);
   return curve;
 }

@@ -23,7 +23,7 @@ bt_figure_new (BtFilm *film, BtTally *tally, const BtBandPlan *plan, const BtRec
   if (tally != NULL)
     figure->tally = bt_tally_ref (tally);
   else
-    figure->own_curve = bt_film_light_path (film, recipe != NULL ? &recipe->light_path : NULL);
+    figure->own_curve = bt_film_light_path (film, recipe != NULL ? &recipe->light_path : NULL, NULL);
   figure->curve = tally != NULL ? tally->curve : figure->own_curve;
   figure->has_plan = plan != NULL || tally != NULL;
   if (figure->has_plan)

@@ -164,7 +164,7 @@ add_mean (BtFlow *flow, PangoContext *context, const BtTally *tally, double widt
 {
   g_autofree char *alpha = NULL, *text = NULL;
 
-  if (isnan (tally->mean_alpha_per_cm))
+  if (isnan (tally->mean_alpha.value))
     {
       bt_flow_add (
           flow,
@@ -175,10 +175,49 @@ add_mean (BtFlow *flow, PangoContext *context, const BtTally *tally, double widt
           3);
       return;
     }
-  alpha = bt_format_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm);
+  alpha = bt_format_uncertain (tally->mean_alpha.value, tally->mean_alpha.u);
   text = g_strdup_printf (_ ("Mean absorption coefficient from %.0f to %.0f nm: %s 1/cm"),
                           bt_nm_from_ev (tally->mean_range.high_ev), bt_nm_from_ev (tally->mean_range.low_ev), alpha);
   bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, text, width), 3);
+}
+
+static void
+add_note (BtFlow *flow, PangoContext *context, const char *text, double width)
+{
+  if (text != NULL)
+    bt_flow_add (flow, bt_block_new_text (context, BT_FACE_NOTE, text, width), 3);
+}
+
+/* Which coefficient it is, how sure the first one is and why; and what a thin conducting film is besides. */
+static void
+add_reasoning (BtFlow *flow, PangoContext *context, const BtTally *tally, double width)
+{
+  const BtReading *first = NULL;
+  g_autofree char *conductor = bt_conductor_text (&tally->conductor);
+
+  for (guint i = tally->readings->len; i-- > 0;)
+    if (!isnan (g_array_index (tally->readings, BtReading, i).alpha.value))
+      first = &g_array_index (tally->readings, BtReading, i);
+  if (tally->curve != NULL && first != NULL)
+    add_note (flow, context, tally->curve->alpha, width);
+  if (first != NULL && !isnan (first->alpha.low))
+    {
+      g_autofree char *interval = bt_alpha_interval_text (&first->alpha), *parts = bt_alpha_parts_text (&first->alpha);
+      g_autofree char *text
+          = g_strdup_printf (_ ("At %.6g nm %.4g %% interval %s 1/cm (Monte Carlo); standard uncertainty from %s"), first->wavelength_nm,
+                             100 * tally->recipe->level, interval, parts);
+
+      add_note (flow, context, text, width);
+    }
+  for (guint i = 0; i < tally->readings->len; i++)
+    {
+      const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+      g_autofree char *sheet = bt_sheet_text (reading);
+      g_autofree char *text = sheet != NULL ? g_strdup_printf (_ ("Sheet conductance at %.6g nm: %s"), reading->wavelength_nm, sheet) : NULL;
+
+      add_note (flow, context, text, width);
+    }
+  add_note (flow, context, conductor, width);
 }
 
 void
@@ -200,13 +239,14 @@ bt_report_add_readings (BtFlow *flow, PangoContext *context, const BtTally *tall
           const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
 
           bt_grid_take (grid, BT_FACE_BODY, g_strdup_printf ("%.6g", reading->wavelength_nm));
-          bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm));
+          bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (reading->alpha.value, reading->alpha.u));
           bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (reading->absorbance, reading->absorbance_u));
           bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (reading->absorptance, reading->absorptance_u));
         }
       bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
     }
   add_mean (flow, context, tally, width);
+  add_reasoning (flow, context, tally, width);
 }
 
 static char *
@@ -275,6 +315,44 @@ window_text (const BtTally *tally)
                           window->mean_nm, window->spread_nm);
 }
 
+/* What is known of the instrument; (nullable) where nothing is. */
+static char *
+instrument_text (const BtRecipe *recipe)
+{
+  GString *text = g_string_new (NULL);
+
+  if (recipe->photometric_u > 0)
+    g_string_append_printf (text, _ ("photometric %.2g"), recipe->photometric_u);
+  if (recipe->wavelength_u_nm > 0)
+    {
+      g_string_append (text, text->len > 0 ? "; " : "");
+      g_string_append_printf (text, _ ("wavelength %.2g nm"), recipe->wavelength_u_nm);
+    }
+  if (recipe->stray_light > 0)
+    {
+      g_string_append (text, text->len > 0 ? "; " : "");
+      g_string_append_printf (text, _ ("stray light %.2g %%"), 100 * recipe->stray_light);
+    }
+  return text->len > 0 ? g_string_free (text, FALSE) : (g_string_free (text, TRUE), NULL);
+}
+
+/* (nullable) where none is stated. */
+static char *
+steps_text (const BtRecipe *recipe)
+{
+  static const char *const sides[BT_N_STEP_CORRECTIONS] = { N_ ("not taken off"), N_ ("taken off, visible side kept"), N_ ("taken off, infrared side kept") };
+  GString *text = g_string_new (NULL);
+
+  for (guint i = 0; i < recipe->steps_nm->len; i++)
+    g_string_append_printf (text, "%s%.6g", i > 0 ? ", " : "", g_array_index (recipe->steps_nm, double, i));
+  if (recipe->steps_nm->len > 0)
+    g_string_append (text, " nm; ");
+  else if (recipe->step_correction == BT_STEP_LEFT)
+    return g_string_free (text, TRUE);
+  g_string_append (text, _ (sides[recipe->step_correction]));
+  return g_string_free (text, FALSE);
+}
+
 static char *
 ratio_text (const BtRecipe *recipe)
 {
@@ -298,6 +376,7 @@ bt_report_add_recipe (BtFlow *flow, PangoContext *context, const BtTally *tally,
 {
   const BtRecipe *recipe = tally->recipe;
   BtGrid *grid = bt_grid_new (2, pair_kinds);
+  g_autofree char *instrument = instrument_text (recipe), *steps = steps_text (recipe);
 
   if (recipe->name != NULL && recipe->name[0] != '\0')
     bt_grid_take_pair (grid, _ ("Recipe"), g_strdup (recipe->name));
@@ -313,6 +392,10 @@ bt_report_add_recipe (BtFlow *flow, PangoContext *context, const BtTally *tally,
                                            : g_strdup_printf (_ ("at least %.1f %% semiconducting"), 100 * recipe->limit));
   bt_grid_take_pair (grid, _ ("Intervals"), g_strdup_printf (_ ("%.4g %% confidence"), 100 * recipe->level));
   bt_grid_take_pair (grid, _ ("Left out above"), g_strdup_printf (_ ("absorbance %.3g"), recipe->max_absorbance));
+  if (instrument != NULL)
+    bt_grid_take_pair (grid, _ ("Instrument"), g_steal_pointer (&instrument));
+  if (steps != NULL)
+    bt_grid_take_pair (grid, _ ("Detector changes"), g_steal_pointer (&steps));
   bt_grid_take_pair (grid, _ ("Excluded"), excluded_text (recipe));
   bt_grid_take_pair (grid, _ ("Held by hand"), held_text (recipe));
   bt_flow_add (flow, bt_block_new_heading (context, _ ("Recipe"), width), 11);

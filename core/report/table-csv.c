@@ -130,6 +130,8 @@ put_header (GString *out, const GArray *wavelengths_nm)
     }
   put_text (out, "mean_alpha_per_cm");
   put_text (out, "mean_alpha_u_per_cm");
+  put_text (out, "dc_to_optical_550nm");
+  put_text (out, "dc_to_optical_550nm_u");
   for (guint i = 0; i < wavelengths_nm->len; i++)
     {
       char nm[G_ASCII_DTOSTR_BUF_SIZE];
@@ -137,6 +139,8 @@ put_header (GString *out, const GArray *wavelengths_nm)
       g_ascii_formatd (nm, sizeof nm, "%.10g", g_array_index (wavelengths_nm, double, i));
       put_name (out, "alpha_%snm_per_cm", nm);
       put_name (out, "alpha_%snm_u_per_cm", nm);
+      put_name (out, "alpha_%snm_low_per_cm", nm);
+      put_name (out, "alpha_%snm_high_per_cm", nm);
       put_name (out, "absorbance_%snm", nm);
       put_name (out, "absorptance_%snm", nm);
     }
@@ -202,14 +206,18 @@ put_record (GString *out, BtFilm *film, const BtTally *tally, const GArray *wave
 
   put_reading (out, film);
   put_result (out, tally);
-  put_number (out, tally->mean_alpha_per_cm);
-  put_number (out, tally->mean_alpha_u_per_cm);
+  put_number (out, tally->mean_alpha.value);
+  put_number (out, tally->mean_alpha.u);
+  put_number (out, tally->conductor.ratio);
+  put_number (out, tally->conductor.ratio_u);
   for (guint i = 0; i < wavelengths_nm->len; i++)
     {
       const BtReading *reading = reading_at (tally, g_array_index (wavelengths_nm, double, i));
 
-      put_number (out, reading != NULL ? reading->alpha_per_cm : NAN);
-      put_number (out, reading != NULL ? reading->alpha_u_per_cm : NAN);
+      put_number (out, reading != NULL ? reading->alpha.value : NAN);
+      put_number (out, reading != NULL ? reading->alpha.u : NAN);
+      put_number (out, reading != NULL ? reading->alpha.low : NAN);
+      put_number (out, reading != NULL ? reading->alpha.high : NAN);
       put_number (out, reading != NULL ? reading->absorbance : NAN);
       put_number (out, reading != NULL ? reading->absorptance : NAN);
     }

@@ -92,7 +92,7 @@ put_reading (JsonBuilder *builder, BtFilm *film)
 {
   BtSpectrum *spectrum = bt_film_get_spectrum (film);
   gsize n;
-  const double *energy_ev = bt_spectrum_get_energy_ev (spectrum, &n);
+  const double *energy_ev = bt_spectrum_get_energy_ev (spectrum, &n), *thicknesses_nm;
 
   put_file (builder, bt_spectrum_get_file (spectrum));
   put_string (builder, "sha256", bt_spectrum_get_sha256 (spectrum));
@@ -103,6 +103,13 @@ put_reading (JsonBuilder *builder, BtFilm *film)
   put_pair (builder, "range_nm", bt_nm_from_ev (energy_ev[n - 1]), bt_nm_from_ev (energy_ev[0]));
   put_number (builder, "thickness_nm", bt_film_get_thickness_nm (film) > 0 ? bt_film_get_thickness_nm (film) : NAN);
   put_number (builder, "thickness_u_nm", bt_film_get_thickness_nm (film) > 0 ? bt_film_get_thickness_u_nm (film) : NAN);
+  thicknesses_nm = bt_film_get_thickness_readings (film, &n);
+  begin_array (builder, "thickness_readings_nm");
+  for (gsize i = 0; i < n; i++)
+    json_builder_add_double_value (builder, thicknesses_nm[i]);
+  json_builder_end_array (builder);
+  put_number (builder, "sheet_resistance_ohm", bt_film_get_sheet_resistance_ohm (film) > 0 ? bt_film_get_sheet_resistance_ohm (film) : NAN);
+  put_number (builder, "sheet_resistance_u_ohm", bt_film_get_sheet_resistance_ohm (film) > 0 ? bt_film_get_sheet_resistance_u_ohm (film) : NAN);
 }
 
 static void
@@ -193,10 +200,36 @@ put_tails (JsonBuilder *builder, const BtTally *tally)
 
 typedef enum
 {
+  COLUMN_SHEET,
   COLUMN_ALPHA,
   COLUMN_ABSORBANCE,
   COLUMN_ABSORPTANCE
 } Column;
+
+/* What each source gives to an absorption coefficient's standard uncertainty, 1/cm. */
+static void
+put_alpha_parts (JsonBuilder *builder, const BtAlpha *alpha)
+{
+  begin_object (builder, "parts_per_cm");
+  for (guint k = 0; k < BT_N_PARTS; k++)
+    put_number (builder, bt_part_name ((BtPart) k), isnan (alpha->value) ? NAN : alpha->parts[k]);
+  json_builder_end_object (builder);
+}
+
+static void
+put_conductor (JsonBuilder *builder, const BtConductor *conductor)
+{
+  begin_object (builder, "transparent_conductor");
+  put_number (builder, "wavelength_nm", BT_CONDUCTOR_NM);
+  put_number (builder, "substrate_index", conductor->substrate_index);
+  put_number (builder, "transmittance", conductor->transmittance);
+  put_number (builder, "transmittance_u", conductor->transmittance_u);
+  put_number (builder, "dc_to_optical", conductor->ratio);
+  put_number (builder, "dc_to_optical_u", conductor->ratio_u);
+  put_number (builder, "haacke_siemens", conductor->haacke_s);
+  put_number (builder, "haacke_u_siemens", conductor->haacke_u_s);
+  json_builder_end_object (builder);
+}
 
 static void
 put_readings (JsonBuilder *builder, const char *name, const BtTally *tally, Column column)
@@ -211,8 +244,19 @@ put_readings (JsonBuilder *builder, const char *name, const BtTally *tally, Colu
       switch (column)
         {
         case COLUMN_ALPHA:
-          put_number (builder, "per_cm", reading->alpha_per_cm);
-          put_number (builder, "u_per_cm", reading->alpha_u_per_cm);
+          put_number (builder, "per_cm", reading->alpha.value);
+          put_number (builder, "u_per_cm", reading->alpha.u);
+          put_alpha_parts (builder, &reading->alpha);
+          put_number (builder, "monte_carlo_mean_per_cm", reading->alpha.mean);
+          put_number (builder, "monte_carlo_u_per_cm", reading->alpha.spread);
+          put_number (builder, "low_per_cm", reading->alpha.low);
+          put_number (builder, "high_per_cm", reading->alpha.high);
+          break;
+        case COLUMN_SHEET:
+          put_number (builder, "siemens", reading->sheet_conductance_s);
+          put_number (builder, "u_siemens", reading->sheet_conductance_u_s);
+          put_number (builder, "universal", reading->sheet_conductance_s / BT_UNIVERSAL_CONDUCTANCE_S);
+          put_number (builder, "u_universal", reading->sheet_conductance_u_s / BT_UNIVERSAL_CONDUCTANCE_S);
           break;
         case COLUMN_ABSORBANCE:
           put_number (builder, "value", reading->absorbance);
@@ -296,6 +340,7 @@ put_film (JsonBuilder *builder, BtFilm *film, const BtTally *tally)
   json_builder_begin_object (builder);
   put_reading (builder, film);
   put_string (builder, "light_path", tally->curve != NULL ? tally->curve->path : NULL);
+  put_string (builder, "absorption_coefficient_meaning", tally->curve != NULL ? tally->curve->alpha : NULL);
   put_pair (builder, "fitted_range_ev", tally->range.low_ev, tally->range.high_ev);
   put_fraction (builder, &tally->fraction);
   put_bands (builder, tally);
@@ -308,11 +353,14 @@ put_film (JsonBuilder *builder, BtFilm *film, const BtTally *tally)
   json_builder_add_double_value (builder, tally->recipe->mean_low_nm);
   json_builder_add_double_value (builder, tally->recipe->mean_high_nm);
   json_builder_end_array (builder);
-  put_number (builder, "per_cm", tally->mean_alpha_per_cm);
-  put_number (builder, "u_per_cm", tally->mean_alpha_u_per_cm);
+  put_number (builder, "per_cm", tally->mean_alpha.value);
+  put_number (builder, "u_per_cm", tally->mean_alpha.u);
+  put_alpha_parts (builder, &tally->mean_alpha);
   json_builder_end_object (builder);
   put_readings (builder, "absorbance", tally, COLUMN_ABSORBANCE);
   put_readings (builder, "absorptance", tally, COLUMN_ABSORPTANCE);
+  put_readings (builder, "sheet_conductance", tally, COLUMN_SHEET);
+  put_conductor (builder, &tally->conductor);
   begin_object (builder, "diameter_nm");
   put_number (builder, "mean", tally->diameter.mean_nm);
   put_number (builder, "spread", tally->diameter.spread_nm);

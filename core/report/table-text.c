@@ -222,11 +222,11 @@ append_mean_alpha (GString *out, const BtTally *tally)
 {
   char *low, *high, *alpha, *line;
 
-  if (isnan (tally->mean_alpha_per_cm))
+  if (isnan (tally->mean_alpha.value))
     return;
   low = wavelength_text (bt_nm_from_ev (tally->mean_range.high_ev));
   high = wavelength_text (bt_nm_from_ev (tally->mean_range.low_ev));
-  alpha = bt_format_uncertain (tally->mean_alpha_per_cm, tally->mean_alpha_u_per_cm);
+  alpha = bt_format_uncertain (tally->mean_alpha.value, tally->mean_alpha.u);
   line = g_strdup_printf (_ ("Mean absorption coefficient from %s to %s nm: %s 1/cm"), low, high, alpha);
   g_string_append_printf (out, "  %s\n", line);
   g_free (line);
@@ -235,8 +235,65 @@ append_mean_alpha (GString *out, const BtTally *tally)
   g_free (low);
 }
 
+/* Where each absorption coefficient's uncertainty comes from, and what the draws make of it. */
 static void
-append_readings (GString *out, const BtTally *tally)
+append_alpha (GString *out, const BtTally *tally)
+{
+  BtColumns *columns = bt_columns_new (3);
+  guint n = 0;
+
+  bt_columns_set_right (columns, 0, TRUE);
+  bt_columns_set_right (columns, 1, TRUE);
+  bt_columns_take (columns, g_strdup (_ ("Wavelength nm")));
+  bt_columns_take (columns, g_strdup_printf (_ ("%.4g %% interval 1/cm"), 100 * tally->recipe->level));
+  bt_columns_take (columns, g_strdup (_ ("Standard uncertainty from")));
+  for (guint i = 0; i < tally->readings->len; i++)
+    {
+      const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+      char *interval;
+
+      if (isnan (reading->alpha.value))
+        continue;
+      interval = bt_alpha_interval_text (&reading->alpha);
+      bt_columns_take (columns, wavelength_text (reading->wavelength_nm));
+      bt_columns_take (columns, interval != NULL ? interval : g_strdup ("-"));
+      bt_columns_take (columns, bt_alpha_parts_text (&reading->alpha));
+      n++;
+    }
+  if (n > 0)
+    {
+      append_heading (out, _ ("Where the absorption coefficient's uncertainty comes from (interval by Monte Carlo)"));
+      bt_columns_append (columns, 3, 2, out);
+    }
+  bt_columns_free (columns);
+}
+
+/* What a thin conducting film is besides. */
+static void
+append_sheet (GString *out, const BtTally *tally)
+{
+  char *conductor = bt_conductor_text (&tally->conductor);
+
+  for (guint i = 0; i < tally->readings->len; i++)
+    {
+      const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
+      char *sheet = bt_sheet_text (reading);
+
+      if (sheet == NULL)
+        continue;
+      /* Translators: a wavelength and the sheet conductance there. */
+      g_string_append_printf (out, "  ");
+      g_string_append_printf (out, _ ("Sheet conductance at %.6g nm: %s"), reading->wavelength_nm, sheet);
+      g_string_append_c (out, '\n');
+      g_free (sheet);
+    }
+  if (conductor != NULL)
+    g_string_append_printf (out, "  %s\n", conductor);
+  g_free (conductor);
+}
+
+static void
+append_readings (GString *out, const BtTally *tally, int width)
 {
   BtColumns *columns;
 
@@ -254,7 +311,7 @@ append_readings (GString *out, const BtTally *tally)
       const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
 
       bt_columns_take (columns, wavelength_text (reading->wavelength_nm));
-      bt_columns_take (columns, bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm));
+      bt_columns_take (columns, bt_format_uncertain (reading->alpha.value, reading->alpha.u));
       bt_columns_take (columns, bt_format_uncertain (reading->absorbance, reading->absorbance_u));
       bt_columns_take (columns, bt_format_uncertain (reading->absorptance, reading->absorptance_u));
     }
@@ -262,6 +319,15 @@ append_readings (GString *out, const BtTally *tally)
   bt_columns_append (columns, 4, 2, out);
   bt_columns_free (columns);
   append_mean_alpha (out, tally);
+  append_sheet (out, tally);
+  if (tally->curve != NULL && tally->curve->alpha != NULL)
+    {
+      char *wrapped = bt_wrap_text ("  ", tally->curve->alpha, width);
+
+      g_string_append (out, wrapped);
+      g_free (wrapped);
+    }
+  append_alpha (out, tally);
 }
 
 static void
@@ -297,7 +363,7 @@ append_account (GString *out, BtFilm *film, const BtTally *tally, int width)
   append_groups (out, film, tally);
   append_tails (out, tally);
   append_budget (out, tally);
-  append_readings (out, tally);
+  append_readings (out, tally, width);
   append_flags (out, tally, width);
   g_free (diameter);
   g_free (answer);
@@ -323,7 +389,7 @@ any_alpha (GPtrArray *tallies)
       const BtTally *tally = g_ptr_array_index (tallies, i);
 
       for (guint j = 0; j < tally->readings->len; j++)
-        if (!isnan (g_array_index (tally->readings, BtReading, j).alpha_per_cm))
+        if (!isnan (g_array_index (tally->readings, BtReading, j).alpha.value))
           return TRUE;
     }
   return FALSE;
@@ -366,7 +432,7 @@ take_line (BtColumns *columns, const char *name, const BtTally *tally, guint n_r
       {
         const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
 
-        bt_columns_take (columns, alpha ? bt_format_uncertain (reading->alpha_per_cm, reading->alpha_u_per_cm)
+        bt_columns_take (columns, alpha ? bt_format_uncertain (reading->alpha.value, reading->alpha.u)
                                         : bt_format_uncertain (reading->absorbance, reading->absorbance_u));
       }
     else

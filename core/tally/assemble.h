@@ -4,8 +4,9 @@
 
 #include "fraction.h"
 
-/* Absorbance, absorptance and alpha at the recipe's wavelengths, and the mean alpha over its range. */
-void bt_tally_fill_readings (BtTally *tally, BtFilm *film);
+/* Absorbance, absorptance and alpha at the recipe's wavelengths (drawn where the effort is full), the mean alpha over its range, and the figures of a
+ * transparent conductor. */
+void bt_tally_fill_readings (BtTally *tally, BtFilm *film, BtEffort effort);
 /* Bands, curves and tail share of the best fit. */
 void bt_tally_fill_best (BtTally *tally, const BtCandidate *best, const BtPrepared *prepared);
 /* Group sums averaged over the candidates, and the diameter that the groups' centres mean. */

@@ -224,11 +224,12 @@ BtPrepared *
 bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GError **error)
 {
   g_autoptr (BtPrepared) prepared = g_new0 (BtPrepared, 1);
+  const BtAccuracy accuracy = { recipe->photometric_u, recipe->wavelength_u_nm };
   BtDiameterWindow window = recipe->window;
   BtRange all;
   double level = 0;
 
-  prepared->curve = bt_film_light_path (film, &recipe->light_path);
+  prepared->curve = bt_film_light_path (film, &recipe->light_path, &accuracy);
   if (prepared->curve == NULL || prepared->curve->n < BT_SPECTRUM_MIN_POINTS)
     {
       g_set_error (error, BT_TALLY_ERROR, BT_TALLY_ERROR_DATA,

@@ -153,7 +153,7 @@ flag_readings (BtTally *tally)
     {
       const BtReading *reading = &g_array_index (tally->readings, BtReading, i);
 
-      if (isnan (reading->alpha_per_cm) && isnan (reading->absorbance))
+      if (isnan (reading->alpha.value) && isnan (reading->absorbance))
         g_string_append_printf (names, "%s%.6g", names->len > 0 ? ", " : "", reading->wavelength_nm);
     }
   if (names->len > 0)

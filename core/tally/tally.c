@@ -353,7 +353,7 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
       bt_fraction_tally (tally, (const BtCandidate *) (void *) candidates->data, candidates->len, prepared);
     }
   tally->curve = g_steal_pointer (&prepared->curve);
-  bt_tally_fill_readings (tally, film);
+  bt_tally_fill_readings (tally, film, effort);
   prepared->curve = tally->curve;
   bt_tally_fill_flags (tally, film, prepared);
   prepared->curve = NULL;

@@ -92,20 +92,65 @@ double bt_slab_depth (double reflectance, double transmittance);
 /* Impedance of free space, ohm (CODATA 2022), and the universal sheet conductance e^2 / (4 hbar), S. */
 #define BT_Z0_OHM 376.730313412
 #define BT_UNIVERSAL_CONDUCTANCE_S 6.085337e-5
+/* Reflectance of one face and optical depth of a slab from its whole reflectance R = r (1 + T e^-at) and transmittance T together, an exact inverse (both
+ * bounces summed; the same textbooks). Depths down to -0.03 pass, as
+ * noise may lift R + T a little above 1. FALSE where no slab gives both (R + T well above 1, or values below 0). */
+gboolean bt_slab_invert (double reflectance, double transmittance, double *face, double *depth);
 /* T / T_blank of a thin film of this sheet conductance (S) on a substrate of this index (1: free-standing), and its inverse. */
 double bt_sheet_transmittance (double conductance_s, double substrate_index);
 double bt_sheet_conductance (double transmittance_ratio, double substrate_index);
 /* Ratio of dc to optical conductivity: Z0 / (R (1 + n_s) ((T / T_blank)^-1/2 - 1)) at 550 nm, R the sheet resistance in ohm (Dressel and Gruner;
  * De and Coleman, MRS Bull. 36, 774 (2011), free-standing form for n_s = 1). */
 double bt_conductivity_ratio (double sheet_resistance_ohm, double transmittance_ratio, double substrate_index);
+/* Figure of merit of a transparent conductor, T^10 / R in siemens (Haacke, J. Appl. Phys. 47, 4086 (1976)), at 550 nm. */
+double bt_haacke_merit (double sheet_resistance_ohm, double transmittance);
+
+/**
+ * BtAccuracy:
+ * @photometric_u: standard uncertainty of an absorbance as read, beyond its noise; 0: unknown, left out
+ * @wavelength_u_nm: of the wavelength scale; 0: unknown, left out
+ *
+ * What a check of the instrument says of its readings; the same error at all points.
+ */
+typedef struct { double photometric_u, wavelength_u_nm; } BtAccuracy;
+
+/**
+ * BtPart:
+ * @BT_PART_NOISE: the reading's own scatter, from point to point
+ * @BT_PART_BLANK: that of the blank
+ * @BT_PART_PHOTOMETRIC: #BtAccuracy, common to all points
+ * @BT_PART_WAVELENGTH: #BtAccuracy times the slope, common to all points
+ * @BT_PART_REFLECTANCE: that of the reflectance stated or measured, common to all points
+ * @BT_PART_STEP: that of detector steps taken off, common to the side that was moved
+ * @BT_PART_THICKNESS: of an absorption coefficient only
+ *
+ * Where the uncertainty of a film's absorbance or absorption coefficient comes from.
+ */
+typedef enum {
+  BT_PART_NOISE,
+  BT_PART_BLANK,
+  BT_PART_PHOTOMETRIC,
+  BT_PART_WAVELENGTH,
+  BT_PART_REFLECTANCE,
+  BT_PART_STEP,
+  BT_PART_THICKNESS,
+  BT_N_PARTS
+} BtPart;
+/* "noise", "blank", ...: in files. */
+const char *bt_part_name (BtPart part);
+/* Translated. */
+const char *bt_part_title (BtPart part);
 
 /**
  * BtCurve:
  * @n: number of points
  * @energy_ev: (array length=n): ascending
  * @absorbance: (array length=n): of the film alone, decadic
- * @absorbance_u: (array length=n): standard uncertainty from noise (film and blank)
+ * @absorbance_u: (array length=n): standard uncertainty from noise (film and blank), independent from point to point
+ * @parts: by #BtPart, (nullable) (array length=n): each source's standard uncertainty of @absorbance; %NULL where it has none
+ * @kind: the light path taken in the end
  * @path: one translated sentence naming the light path taken
+ * @alpha: one translated sentence saying which absorption coefficient follows from it
  * @flags: (element-type BtFlag): what the light path had to leave out
  *
  * A film's own absorbance after its light path.
@@ -113,21 +158,53 @@ double bt_conductivity_ratio (double sheet_resistance_ohm, double transmittance_
 typedef struct {
   gsize n;
   double *energy_ev, *absorbance, *absorbance_u;
-  char *path;
+  double *parts[BT_N_PARTS];
+  BtLightPathKind kind;
+  char *path, *alpha;
   GPtrArray *flags;
 } BtCurve;
 
 /**
  * bt_film_light_path:
  * @how: (nullable): blank ratio where %NULL
+ * @accuracy: (nullable): of the instrument
  *
- * Takes the film's reading along its light path. The blank is interpolated onto the film's axis with its noise; without one A = A_film,
- * flagged "no-blank". Points that the blank does not cover, or that no film could give, are dropped and flagged.
+ * Takes the film's reading along its light path. The blank and a measured reflectance are interpolated onto the film's axis with their noise;
+ * without a blank A = A_film, flagged "no-blank". Points that the blank or the reflectance does not cover, or that no film could give, are dropped
+ * and flagged.
  *
  * Returns: (transfer full): the film's own absorbance
  */
-BtCurve *bt_film_light_path (BtFilm *self, const BtLightPath *how);
+BtCurve *bt_film_light_path (BtFilm *self, const BtLightPath *how, const BtAccuracy *accuracy);
 void bt_curve_free (BtCurve *curve);
+/* Linear interpolation of a curve's absorbance and, where wanted, of its parts ((nullable): @parts of BT_N_PARTS, 0 where there is none; noise and
+ * blank of two independent neighbours). FALSE outside its range. */
+gboolean bt_curve_at (const BtCurve *curve, double energy_ev, double *absorbance, double *parts);
+
+/**
+ * BtAlpha:
+ * @value, @u: absorption coefficient and its standard uncertainty, 1/cm, by first-order propagation (JCGM 100:2008)
+ * @parts: by #BtPart: what each source gives to @u, 1/cm
+ * @mean, @spread: mean and standard deviation of the Monte Carlo distribution (JCGM 101:2008); NAN where not made
+ * @low, @high: probabilistically symmetric coverage interval from it; NAN where not made
+ *
+ * An absorption coefficient, base e. All NAN where the film has no thickness.
+ */
+typedef struct { double value, u, parts[BT_N_PARTS], mean, spread, low, high; } BtAlpha;
+/**
+ * bt_film_alpha:
+ * @curve: the film's own after @how and @accuracy
+ * @n_draws: Monte Carlo draws; 0: first order only
+ * @level: of the interval
+ *
+ * The absorption coefficient at one energy. The draws go through the light path itself: readings, blank, reflectance and scale are normal,
+ * a thickness of n readings follows Student's t of n - 1 degrees of freedom (JCGM 101:2008 6.4.9), any other a normal distribution cut at 0. The same
+ * input gives the same draws.
+ *
+ * Returns: %FALSE outside the curve's range
+ */
+gboolean bt_film_alpha (BtFilm *self, const BtCurve *curve, const BtLightPath *how, const BtAccuracy *accuracy, double energy_ev, guint n_draws, double level,
+                        BtAlpha *alpha);
 
 /* alpha = ln(10) A / t, base e, in 1/cm; t in nm. NAN where @thickness_nm is not above 0. */
 double bt_alpha_per_cm (double absorbance, double thickness_nm);

@@ -45,6 +45,15 @@ char *bt_format_number (double value, int digits, gboolean localised);
 /* (transfer full): the fewest digits, with a point, that read back as the same double: for files. */
 char *bt_format_exact (double value);
 
+/* (transfer full): what an absorption coefficient's uncertainty is made of, largest first, translated: "thickness 4.2 %, noise of the reading 0.02 %". */
+char *bt_alpha_parts_text (const BtAlpha *alpha);
+/* (transfer full) (nullable): "91000 to 104000", the Monte Carlo interval in 1/cm; NULL where none was drawn. */
+char *bt_alpha_interval_text (const BtAlpha *alpha);
+/* (transfer full) (nullable): optical sheet conductance in S and in e^2 / (4 hbar); NULL where the light path gives none. */
+char *bt_sheet_text (const BtReading *reading);
+/* (transfer full) (nullable): one translated sentence; NULL where nothing is known of it. */
+char *bt_conductor_text (const BtConductor *conductor);
+
 G_END_DECLS
 
 #endif

@@ -54,13 +54,25 @@ typedef struct { double value, u, low, high, level; BtBound bound; } BtFraction;
  * "residual structure"); @title translated. */
 typedef struct { const char *source; const char *title; double u; } BtBudgetLine;
 
-/* Reading at a wavelength of interest; NAN where out of range (or, for alpha, without a thickness). */
+/* Reading at a wavelength of interest; NAN where out of range (or, for alpha, without a thickness; for the sheet conductance, on another light path
+ * than that of a thin film). Uncertainties hold every source that is known, noise and common ones. */
 typedef struct {
   double wavelength_nm;
   double absorbance, absorbance_u;
   double absorptance, absorptance_u;
-  double alpha_per_cm, alpha_u_per_cm;
+  BtAlpha alpha;
+  double sheet_conductance_s, sheet_conductance_u_s; /* optical; BT_UNIVERSAL_CONDUCTANCE_S is its other unit */
 } BtReading;
+
+/* The film as a transparent conductor at BT_CONDUCTOR_NM; NAN where it has no sheet resistance, was not measured there, or its substrate's index is not
+ * known. */
+#define BT_CONDUCTOR_NM 550
+typedef struct {
+  double substrate_index;
+  double transmittance, transmittance_u;     /* of the film over its blank */
+  double ratio, ratio_u;                     /* dc over optical conductivity, bt_conductivity_ratio() */
+  double haacke_s, haacke_u_s;               /* bt_haacke_merit() */
+} BtConductor;
 
 typedef enum { BT_VERDICT_NOT_JUDGED, BT_VERDICT_ACCEPTED, BT_VERDICT_REFUSED, BT_VERDICT_UNDECIDED } BtVerdict;
 
@@ -94,8 +106,9 @@ typedef struct {
   BtDiameterWindow diameter;       /* from the fitted bands; NAN where not to be had */
   double diameter_u_nm;
   GArray *readings;                /* (element-type BtReading) */
-  double mean_alpha_per_cm, mean_alpha_u_per_cm; /* over the recipe's range; NAN */
+  BtAlpha mean_alpha;              /* over the recipe's range, by first order; NAN */
   BtRange mean_range;              /* the part of it that the data cover */
+  BtConductor conductor;
   GPtrArray *flags;                /* (element-type BtFlag): reading, light path and fit */
   BtVerdict verdict;
   double conformance;              /* probability that the fraction is at least the limit (JCGM 106); NAN */

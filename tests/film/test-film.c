@@ -36,7 +36,7 @@ test_blank (void)
   const double *noise = bt_spectrum_get_noise (spectrum, &n);
 
   bt_film_set_blank (film, blank);
-  curve = bt_film_light_path (film, NULL);
+  curve = bt_film_light_path (film, NULL, NULL);
   g_assert_cmpuint (curve->n, ==, N);
   g_assert_cmpuint (curve->flags->len, ==, 0);
   for (guint i = 0; i < N; i++)
@@ -58,7 +58,7 @@ test_blank_too_short (void)
   BtCurve *curve;
 
   bt_film_set_blank (film, blank);
-  curve = bt_film_light_path (film, NULL);
+  curve = bt_film_light_path (film, NULL, NULL);
   /* 705 to 1100 nm of 600 to 1100 nm: the blank goes from 702 to 1101 nm. */
   g_assert_cmpuint (curve->n, ==, 80);
   g_assert_nonnull (bt_flags_find (curve->flags, "blank-short"));
@@ -71,7 +71,7 @@ test_without_blank (void)
 {
   g_autoptr (BtSpectrum) spectrum = make (600, 5, 0.3, BT_Y_ABSORBANCE);
   g_autoptr (BtFilm) film = bt_film_new (spectrum);
-  BtCurve *curve = bt_film_light_path (film, NULL);
+  BtCurve *curve = bt_film_light_path (film, NULL, NULL);
 
   g_assert_nonnull (bt_flags_find (curve->flags, "no-blank"));
   g_assert_cmpmem (curve->absorbance, sizeof (double) * N, bt_spectrum_get_absorbance (spectrum, NULL), sizeof (double) * N);
@@ -84,7 +84,7 @@ test_alpha_file (void)
 {
   g_autoptr (BtSpectrum) spectrum = make (600, 5, 0.3, BT_Y_ALPHA_PER_CM);
   g_autoptr (BtFilm) film = bt_film_new (spectrum);
-  BtCurve *curve = bt_film_light_path (film, NULL);
+  BtCurve *curve = bt_film_light_path (film, NULL, NULL);
   const double *raw = bt_spectrum_get_raw_y (spectrum, NULL);
 
   for (guint i = 0; i < N; i++)

@@ -112,7 +112,7 @@ test_blank_noise (void)
           BtCurve *curve;
 
           bt_film_set_blank (film, blank);
-          curve = bt_film_light_path (film, NULL);
+          curve = bt_film_light_path (film, NULL, NULL);
           g_assert_cmpuint (curve->n, >=, 1000);
           for (gsize i = 0; i < curve->n; i++)
             {
@@ -142,7 +142,7 @@ test_blank_other_axis (void)
   BtCurve *curve;
 
   bt_film_set_blank (film, blank);
-  curve = bt_film_light_path (film, NULL);
+  curve = bt_film_light_path (film, NULL, NULL);
   g_assert_cmpuint (curve->n, ==, bt_spectrum_get_n_points (reading));
   g_assert_null (bt_flags_find (curve->flags, "blank-short"));
   for (gsize i = 0; i < curve->n; i++)
@@ -174,7 +174,7 @@ test_blank_short (void)
       BtCurve *curve;
 
       bt_film_set_blank (film, blank);
-      curve = bt_film_light_path (film, NULL);
+      curve = bt_film_light_path (film, NULL, NULL);
       g_assert_cmpuint (curve->n, ==, rows[r].left);
       for (gsize i = 0; i < curve->n; i++)
         {
@@ -198,7 +198,7 @@ test_no_blank (void)
   g_autoptr (BtFilm) film = bt_film_new (reading), second = NULL;
   g_autoptr (GError) error = NULL;
   double x[20], y[20];
-  BtCurve *curve = bt_film_light_path (film, NULL);
+  BtCurve *curve = bt_film_light_path (film, NULL, NULL);
 
   g_assert_cmpuint (curve->n, ==, bt_spectrum_get_n_points (reading));
   for (gsize i = 0; i < curve->n; i++)
@@ -214,7 +214,7 @@ test_no_blank (void)
   alpha = bt_spectrum_new (x, y, 20, BT_X_NM, BT_Y_ALPHA_PER_CM, "alpha", &error);
   g_assert_no_error (error);
   second = bt_film_new (alpha);
-  curve = bt_film_light_path (second, NULL);
+  curve = bt_film_light_path (second, NULL, NULL);
   g_assert_null (bt_flags_find (curve->flags, "no-blank"));
   g_assert_cmpfloat_with_epsilon (curve->absorbance[19] * BT_LN10, 1e5, 1e-6);
   bt_curve_free (curve);

@@ -126,14 +126,14 @@ test_paths (void)
   BtCurve *curve;
 
   how.kind = BT_LIGHT_PATH_REFLECTION;
-  curve = bt_film_light_path (slab, &how);
+  curve = bt_film_light_path (slab, &how, NULL);
   g_assert_cmpuint (curve->n, ==, 101);
   for (gsize i = 0; i < curve->n; i++)
     g_assert_cmpfloat_with_epsilon (curve->absorbance[i] * BT_LN10, depth_at (bt_nm_from_ev (curve->energy_ev[i])), 1e-9);
   bt_curve_free (curve);
 
   how.kind = BT_LIGHT_PATH_THIN_FILM;
-  curve = bt_film_light_path (sheet, &how);
+  curve = bt_film_light_path (sheet, &how, NULL);
   for (gsize i = 0; i < curve->n; i++)
     {
       double nm = bt_nm_from_ev (curve->energy_ev[i]), index = bt_substrate_index ("fused silica", nm);
@@ -146,14 +146,14 @@ test_paths (void)
 
   /* Without an index nothing is invented: the blank ratio stands, and the flag says why. */
   bt_film_set_substrate (sheet, "oilcloth");
-  curve = bt_film_light_path (sheet, &how);
+  curve = bt_film_light_path (sheet, &how, NULL);
   g_assert_nonnull (bt_flags_find (curve->flags, "no-substrate-index"));
   g_assert_cmpfloat_with_epsilon (curve->absorbance[50], bt_spectrum_get_absorbance (bt_film_get_spectrum (sheet), NULL)[50], 1e-15);
   bt_curve_free (curve);
 
   /* Blank ratio: A less the blank's A, their noises in quadrature. */
   bt_film_set_blank (slab, bt_film_get_spectrum (blank));
-  curve = bt_film_light_path (slab, NULL);
+  curve = bt_film_light_path (slab, NULL, NULL);
   for (gsize i = 0; i < curve->n; i++)
     {
       double nm = bt_nm_from_ev (curve->energy_ev[i]);

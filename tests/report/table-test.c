@@ -109,7 +109,7 @@ check_film (JsonObject *object, const BtTally *tally)
   g_assert_cmpuint (json_array_get_length (alpha), ==, 4);
   for (guint i = 0; i < 4; i++)
     assert_member (json_array_get_object_element (alpha, i), "per_cm",
-                   g_array_index (tally->readings, BtReading, i).alpha_per_cm);
+                   g_array_index (tally->readings, BtReading, i).alpha.value);
 }
 
 static void

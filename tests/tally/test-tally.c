@@ -66,7 +66,7 @@ test_measured_film (void)
   g_assert_cmpfloat (tally->fraction.high, >, 2.0 / 3);
   /* Without a thickness the file's own absorption coefficient is passed on: its row at 550 nm says 97377.948 1/cm. */
   g_assert_cmpfloat_with_epsilon (g_array_index (tally->readings, BtReading, 0).wavelength_nm, 550, 1e-12);
-  g_assert_cmpfloat_with_epsilon (g_array_index (tally->readings, BtReading, 0).alpha_per_cm, 97377.948, 0.01);
+  g_assert_cmpfloat_with_epsilon (g_array_index (tally->readings, BtReading, 0).alpha.value, 97377.948, 0.01);
   bt_tally_unref (tally);
   bt_recipe_free (recipe);
 }
@@ -153,13 +153,13 @@ test_thickness_cancels (void)
   with = tally_of (film, recipe);
   g_assert_cmpfloat (with->fraction.value, ==, without->fraction.value);
   g_assert_cmpfloat (with->fraction.u, ==, without->fraction.u);
-  g_assert_true (isnan (g_array_index (without->readings, BtReading, 0).alpha_per_cm));
+  g_assert_true (isnan (g_array_index (without->readings, BtReading, 0).alpha.value));
   g_assert_nonnull (bt_flags_find (without->flags, "no-thickness"));
   g_assert_null (bt_flags_find (with->flags, "no-thickness"));
   reading = &g_array_index (with->readings, BtReading, 0);
   /* Beer and Lambert: alpha = ln(10) A / t; the relative uncertainty is at least the thickness's 5 %. */
-  g_assert_cmpfloat_with_epsilon (reading->alpha_per_cm, reading->absorbance * log (10) / 50e-7, 1e-6 * reading->alpha_per_cm);
-  g_assert_cmpfloat_with_epsilon (reading->alpha_u_per_cm / reading->alpha_per_cm, 0.05, 0.002);
+  g_assert_cmpfloat_with_epsilon (reading->alpha.value, reading->absorbance * log (10) / 50e-7, 1e-6 * reading->alpha.value);
+  g_assert_cmpfloat_with_epsilon (reading->alpha.u / reading->alpha.value, 0.05, 0.002);
   bt_tally_unref (without);
   bt_tally_unref (with);
   bt_recipe_free (recipe);
