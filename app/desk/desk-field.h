@@ -16,6 +16,8 @@ typedef enum {
   DESK_FIELD_NOTES,
   DESK_FIELD_THICKNESS,
   DESK_FIELD_THICKNESS_U,
+  DESK_FIELD_SHEET_RESISTANCE,
+  DESK_FIELD_SHEET_RESISTANCE_U, /* the last one of the film's own */
   DESK_FIELD_DIAMETER_MEAN,
   DESK_FIELD_DIAMETER_SPREAD,
   DESK_FIELD_SHIFT,
@@ -25,6 +27,7 @@ typedef enum {
   DESK_FIELD_MEAN_HIGH,
   DESK_FIELD_MAX_ABSORBANCE,
   DESK_FIELD_REFLECTANCE,
+  DESK_FIELD_REFLECTANCE_U,
   DESK_FIELD_SUBSTRATE_INDEX,
   DESK_FIELD_RATIO,
   DESK_FIELD_RATIO_U,
@@ -32,6 +35,10 @@ typedef enum {
   DESK_FIELD_LEVEL,
   DESK_FIELD_LIMIT,
   DESK_FIELD_WAVELENGTHS,
+  DESK_FIELD_STEPS,
+  DESK_FIELD_PHOTOMETRIC_U,
+  DESK_FIELD_WAVELENGTH_U,
+  DESK_FIELD_STRAY_LIGHT,
   DESK_FIELD_EXCLUDED,  /* one more range to leave out: "0.95 to 1.05 eV" */
   DESK_FIELD_MAX_BANDS, /* of a group */
   DESK_FIELD_BAND       /* a number of a band: typing it holds it */
@@ -46,12 +53,16 @@ typedef struct { BtFilm *film; BtRecipe *recipe; const BtTally *tally; } DeskSub
 char *desk_field_title (const DeskField *field);
 /* Translated name of the edit: "Set thickness". (transfer full) */
 char *desk_field_command_name (const DeskField *field);
+/* The unit that a number without one is in. */
+DeskUnit desk_field_unit (const DeskField *field);
 /* Text to start editing from. (transfer full) */
 char *desk_field_text (const DeskField *field, const DeskSubject *subject);
 /* What an empty entry means, translated; NULL where it may not be empty. */
 const char *desk_field_empty_hint (const DeskField *field);
 /* Changes @subject by what was typed; FALSE with a sentence in @error, @subject may then be half changed and is thrown away. */
 gboolean desk_field_apply (const DeskField *field, const char *text, DeskSubject *subject, GError **error);
+/* Whether the field belongs to the film, not to its recipe. */
+gboolean desk_field_is_of_film (const DeskField *field);
 /* Whether the outcome depends on the field at all. */
 gboolean desk_field_is_text (const DeskField *field);
 /* (nullable) */

@@ -84,7 +84,7 @@ on_apply (DeskLine *line, const char *text, DeskLedger *self)
   DeskSubject subject = { film, recipe, desk_film_get_tally (self->film) };
   if (!desk_field_apply (field, text, &subject, &error))
     return g_strdup (error->message);
-  gboolean of_film = field->id <= DESK_FIELD_THICKNESS_U;
+  gboolean of_film = desk_field_is_of_film (field);
   desk_history_edit (self->history, self->film, name, of_film ? film : NULL, recipe, desk_field_is_text (field));
   return NULL;
 }

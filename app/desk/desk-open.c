@@ -235,13 +235,7 @@ on_read_again (GObject *window, GAsyncResult *result, gpointer data)
   for (guint i = 1; i < reading->spectra->len; i++)
     if (g_strcmp0 (bt_spectrum_get_title (reading->spectra->pdata[i]), title) == 0)
       spectrum = reading->spectra->pdata[i];
-  g_autoptr (BtFilm) film = bt_film_new (spectrum);
-  bt_film_set_label (film, bt_film_get_label (old));
-  bt_film_set_lot (film, bt_film_get_lot (old));
-  bt_film_set_substrate (film, bt_film_get_substrate (old));
-  bt_film_set_notes (film, bt_film_get_notes (old));
-  bt_film_set_thickness (film, bt_film_get_thickness_nm (old), bt_film_get_thickness_u_nm (old));
-  bt_film_set_blank (film, bt_film_get_blank (old));
+  g_autoptr (BtFilm) film = bt_film_copy_with_spectrum (old, spectrum);
   desk_history_edit (self->history, reading->film, _("Read in other units"), film, NULL, FALSE);
 }
 

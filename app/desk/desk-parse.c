@@ -14,6 +14,8 @@ static const UnitName share_units[] = { { "", 1, -1 }, { "%", 0.01, -1 }, { NULL
 static const UnitName plain_units[] = { { "", 1, -1 }, { NULL } };
 static const UnitName length_units[] = { { "", 1, -1 },        { "nm", 1, -1 }, { "um", 1e3, -1 }, { "µm", 1e3, -1 },
                                          { "μm", 1e3, -1 }, { NULL } };
+static const UnitName ohm_units[] = { { "", 1, -1 },     { "ohm", 1, -1 },      { "\316\251", 1, -1 },    { "\342\204\246", 1, -1 }, /* both signs of ohm */
+                                      { "kohm", 1e3, -1 }, { "k\316\251", 1e3, -1 }, { "k\342\204\246", 1e3, -1 }, { NULL } };
 static const UnitName width_units[] = { { "", 1, -1 }, { "ev", 1, -1 }, { "mev", 1e-3, -1 }, { NULL } };
 static const UnitName energy_units[]
     = { { "", 1, BT_X_EV },   { "ev", 1, BT_X_EV },      { "mev", 1e-3, BT_X_EV },    { "nm", 1, BT_X_NM },         { "um", 1, BT_X_UM },
@@ -37,6 +39,8 @@ units_of (DeskUnit unit)
       return width_units;
     case DESK_UNIT_WAVELENGTH:
       return wavelength_units;
+    case DESK_UNIT_OHM:
+      return ohm_units;
     case DESK_UNIT_NONE:
       break;
     }
@@ -54,6 +58,8 @@ desk_unit_name (DeskUnit unit)
     case DESK_UNIT_EV:
     case DESK_UNIT_EV_WIDTH:
       return "eV";
+    case DESK_UNIT_OHM:
+      return "Ω";
     case DESK_UNIT_NONE:
     case DESK_UNIT_SHARE:
       break;
@@ -180,6 +186,8 @@ list_units (DeskUnit unit)
       return g_strdup ("eV, meV");
     case DESK_UNIT_SHARE:
       return g_strdup ("%");
+    case DESK_UNIT_OHM:
+      return g_strdup ("Ω, kΩ");
     case DESK_UNIT_NONE:
       break;
     }

@@ -11,7 +11,8 @@ typedef enum {
   DESK_UNIT_NM,         /* a length */
   DESK_UNIT_EV,         /* an energy; a wavelength is converted */
   DESK_UNIT_EV_WIDTH,   /* a difference of energies: eV and meV only */
-  DESK_UNIT_WAVELENGTH  /* nm; an energy is converted */
+  DESK_UNIT_WAVELENGTH, /* nm; an energy is converted */
+  DESK_UNIT_OHM         /* a resistance */
 } DeskUnit;
 
 #define DESK_PARSE_ERROR (desk_parse_error_quark ())

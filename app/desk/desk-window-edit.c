@@ -145,6 +145,18 @@ act_light_path (GSimpleAction *action, GVariant *parameter, gpointer window)
 }
 
 static void
+act_step_correction (GSimpleAction *action, GVariant *parameter, gpointer window)
+{
+  DeskWindow *self = window;
+  BtStepCorrection correction;
+  if (!self->film || !bt_step_correction_from_name (g_variant_get_string (parameter, NULL), &correction))
+    return;
+  g_autoptr (BtRecipe) recipe = own_recipe (self);
+  recipe->step_correction = correction;
+  edit_recipe (self, _("Choose correction of detector steps"), recipe);
+}
+
+static void
 act_toggle_tail (GSimpleAction *action, GVariant *parameter, gpointer window)
 {
   DeskWindow *self = window;
@@ -229,6 +241,7 @@ desk_window_add_edit_actions (DeskWindow *self)
     { .name = "include-all", .activate = act_include_all },
     { .name = "propose-window", .activate = act_propose_window },
     { .name = "light-path", .parameter_type = "s", .activate = act_light_path },
+    { .name = "step-correction", .parameter_type = "s", .activate = act_step_correction },
     { .name = "toggle-tail", .parameter_type = "s", .activate = act_toggle_tail },
     { .name = "set-thickness", .activate = act_set_thickness },
     { .name = "set-limit", .activate = act_set_limit },

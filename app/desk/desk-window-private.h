@@ -36,6 +36,7 @@ void desk_window_keep_folder (DeskWindow *self, GtkFileChooser *chooser);
 void desk_window_add_view_actions (DeskWindow *self);
 void desk_window_add_edit_actions (DeskWindow *self);
 void desk_window_add_open_actions (DeskWindow *self);
+void desk_window_add_reflectance_actions (DeskWindow *self);
 void desk_window_add_save_actions (DeskWindow *self);
 void desk_window_add_print_actions (DeskWindow *self);
 void desk_window_accept_drops (DeskWindow *self);

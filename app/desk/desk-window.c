@@ -63,7 +63,7 @@ void
 desk_window_update_actions (DeskWindow *self)
 {
   static const char *const of_film[] = { "print",       "print-preview", "save-report", "save-figure", "save-recipe", "load-recipe",
-                                         "close-film",  "refit",         "read-as",     "as-read",       "set-blank",   "zoom-in",     "zoom-out",
+                                         "close-film",  "refit",         "read-as",     "as-read",       "set-blank",   "set-reflectance", "zoom-in",     "zoom-out",
                                          "zoom-all",          "set-thickness", "set-limit", "recipe-to-all", "next-film",
                                          "previous-film" };
   BtTally *tally = self->film ? desk_film_get_tally (self->film) : NULL;
@@ -197,6 +197,7 @@ desk_window_init (DeskWindow *self)
   desk_window_add_view_actions (self);
   desk_window_add_edit_actions (self);
   desk_window_add_open_actions (self);
+  desk_window_add_reflectance_actions (self);
   desk_window_add_save_actions (self);
   desk_window_add_print_actions (self);
   desk_window_accept_drops (self);

@@ -188,12 +188,12 @@ bt_film_new (BtSpectrum *spectrum)
 }
 
 BtFilm *
-bt_film_copy (BtFilm *self)
+bt_film_copy_with_spectrum (BtFilm *self, BtSpectrum *spectrum)
 {
   BtFilm *copy;
 
   g_return_val_if_fail (BT_IS_FILM (self), NULL);
-  copy = bt_film_new (self->spectrum);
+  copy = bt_film_new (spectrum);
   bt_film_set_label (copy, self->label);
   bt_film_set_lot (copy, self->lot);
   bt_film_set_substrate (copy, self->substrate);
@@ -205,6 +205,13 @@ bt_film_copy (BtFilm *self)
   bt_film_set_reflectance (copy, self->reflectance);
   bt_film_set_blank (copy, self->blank);
   return copy;
+}
+
+BtFilm *
+bt_film_copy (BtFilm *self)
+{
+  g_return_val_if_fail (BT_IS_FILM (self), NULL);
+  return bt_film_copy_with_spectrum (self, self->spectrum);
 }
 
 BtSpectrum *

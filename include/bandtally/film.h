@@ -18,6 +18,8 @@ G_DECLARE_FINAL_TYPE (BtFilm, bt_film, BT, FILM, GObject)
 BtFilm *bt_film_new (BtSpectrum *spectrum);
 /* (transfer full): with the same spectrum and blank. */
 BtFilm *bt_film_copy (BtFilm *self);
+/* (transfer full): all that is known of a film, with another reading of it. */
+BtFilm *bt_film_copy_with_spectrum (BtFilm *self, BtSpectrum *spectrum);
 BtSpectrum *bt_film_get_spectrum (BtFilm *self);
 const char *bt_film_get_label (BtFilm *self);
 void bt_film_set_label (BtFilm *self, const char *label);
