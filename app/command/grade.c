@@ -14,7 +14,7 @@ typedef struct
 {
   char **files;
   char *blank, *recipe, *json, *csv, *report;
-  char *thickness_nm, *thickness_u_nm, *diameter_nm, *diameter_spread_nm;
+  char *thickness_nm, *thickness_readings_nm, *thickness_u_nm, *diameter_nm, *diameter_spread_nm;
   char *strength_ratio, *strength_ratio_u, *limit, *level, *wavelengths_nm;
   char *light_path, *reflectance, *reflectance_u, *reflectance_file, *substrate, *substrate_index;
   char *sheet_resistance_ohm, *sheet_resistance_u_ohm;
@@ -31,6 +31,7 @@ options_clear (Options *options)
                        &options->csv,
                        &options->report,
                        &options->thickness_nm,
+                       &options->thickness_readings_nm,
                        &options->thickness_u_nm,
                        &options->diameter_nm,
                        &options->diameter_spread_nm,
@@ -67,7 +68,9 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
 {
   const GOptionEntry entries[] = {
     { "thickness-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_nm,
-      N_ ("thickness of the films, or several readings of it; without it the files' own"), "X,X,…" },
+      N_ ("thickness of the films; without it the files' own"), "X" },
+    { "thickness-readings-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_readings_nm,
+      N_ ("readings across the film: their mean and its standard uncertainty are taken"), "X,X,…" },
     { "thickness-u-nm", 0, 0, G_OPTION_ARG_STRING, &options->thickness_u_nm, N_ ("its standard uncertainty"), "X" },
     { "blank", 0, 0, G_OPTION_ARG_FILENAME, &options->blank, N_ ("spectrum of the substrate alone, taken off every film"),
       "FILE" },
@@ -267,9 +270,10 @@ make_recipe (const Options *options, GError **error)
 static gboolean
 make_settings (const Options *options, BatchSettings *settings, GError **error)
 {
-  double jobs = g_get_num_processors ();
+  double jobs = g_get_num_processors (), thickness_nm = NAN;
   const NumberOption numbers[] = {
     { "--thickness-u-nm", options->thickness_u_nm, &settings->thickness_u_nm, 0, 1e9, N_ ("a number not below 0 (nm)") },
+    { "--thickness-nm", options->thickness_nm, &thickness_nm, DBL_MIN, 1e9, N_ ("a number above 0 (nm)") },
     { "--sheet-resistance-ohm", options->sheet_resistance_ohm, &settings->sheet_resistance_ohm, DBL_MIN, 1e15, N_ ("a number above 0 (ohm)") },
     { "--sheet-resistance-u-ohm", options->sheet_resistance_u_ohm, &settings->sheet_resistance_u_ohm, 0, 1e15,
       N_ ("a number not below 0 (ohm)") },
@@ -285,10 +289,17 @@ make_settings (const Options *options, BatchSettings *settings, GError **error)
   if (jobs != floor (jobs))
     return bad_value ("--jobs", _ ("a whole number from 1 to 256"), options->jobs, error);
   settings->jobs = (int)MIN (jobs, MOST_JOBS);
-  if (options->thickness_nm != NULL)
+  if (!isnan (thickness_nm))
     {
-      settings->thicknesses_nm = parse_list ("--thickness-nm", options->thickness_nm, DBL_MIN, 1e9,
-                                             _ ("a number above 0 (nm), or several readings between commas"), error);
+      settings->thicknesses_nm = g_array_new (FALSE, FALSE, sizeof (double));
+      g_array_append_val (settings->thicknesses_nm, thickness_nm);
+    }
+  if (options->thickness_readings_nm != NULL && options->thickness_nm != NULL)
+    return usage (error, _ ("Give either --thickness-nm or --thickness-readings-nm, not both."));
+  if (options->thickness_readings_nm != NULL)
+    {
+      settings->thicknesses_nm = parse_list ("--thickness-readings-nm", options->thickness_readings_nm, DBL_MIN, 1e9,
+                                             _ ("thicknesses above 0 (nm) between commas"), error);
       if (settings->thicknesses_nm == NULL)
         return FALSE;
     }

@@ -56,7 +56,7 @@ fill_number (DeskSection *section, DeskFieldId id, double value, double factor, 
 {
   DeskLine *line = desk_section_field (section, (DeskField){ .id = id });
   if (value > 0)
-    desk_line_set_value (line, "%g%s", value * factor, unit);
+    desk_line_set_value (line, "%.4g%s", value * factor, unit);
   else
     desk_line_set_value (line, "%s", _("add"));
 }
@@ -164,7 +164,7 @@ desk_ledger_fill_path (DeskSection *section, const DeskAccount *account)
   gsize n;
   DeskLine *line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_THICKNESS });
   if (thickness > 0)
-    desk_line_set_value (line, "%g\u00a0nm", thickness);
+    desk_line_set_value (line, "%.5g\u00a0nm", thickness);
   else
     desk_line_set_value (line, "%s", _("add"));
   bt_film_get_thickness_readings (account->film, &n);

@@ -201,6 +201,81 @@ def test_light_path_is_taken():
         holds(named["light_path"], "sapphire")
 
 
+def write_table(folder, name, header, points, value):
+    """A file with one more column made of wavelength and absorbance."""
+    return folder.write(name, header + "\n" + "".join(f"{x!r},{value(x, a)!r}\n" for x, a in points))
+
+
+@test
+def test_measured_reflectance_is_taken_off():
+    # A slab whose inside takes up what the forecast film does, between faces that reflect 8 %: both bounces summed by hand.
+    face = 0.08
+    with Folder() as folder:
+        film = folder.film("film.csv")
+        points = read_film(film)
+
+        def inside(a):
+            return 10 ** -a
+
+        def transmittance(a):
+            return (1 - face) ** 2 * inside(a) / (1 - (face * inside(a)) ** 2)
+
+        slab = write_table(folder, "slab.csv", "wavelength nm,%T", points, lambda x, a: 100 * transmittance(a))
+        mirror = write_table(folder, "mirror.csv", "wavelength nm,%R", points, lambda x, a: 100 * face * (1 + transmittance(a) * inside(a)))
+        recipe = folder.write("recipe.json", QUICK)
+        made = grade_json(slab, "--recipe", recipe, "--reflectance-file", mirror, "--thickness-nm", "100", "--wavelengths-nm",
+                          "548,652,980")["films"][0]
+        holds(made["light_path"], "measured reflectance")
+        for reading in made["absorbance"]:
+            expected = interpolate(points, reading["wavelength_nm"])
+            assert abs(reading["value"] - expected) < 1e-6, (reading, expected)
+        # A reflectance is no film, and a file without one is no reflectance.
+        holds(run("grade", mirror, status=1).stderr, "reflectance")
+
+
+@test
+def test_thickness_readings_and_accuracy_make_the_budget():
+    with Folder() as folder:
+        film = folder.film("film.csv")
+        recipe = folder.write("recipe.json", QUICK)
+        made = grade_json(film, "--recipe", recipe, "--thickness-readings-nm", "96,100,104,100", "--photometric-u", "0.002",
+                          "--wavelength-u-nm", "0.5")["films"][0]
+        # s = sqrt (32 / 3), u = s / 2
+        assert abs(made["thickness_nm"] - 100) < 1e-9 and abs(made["thickness_u_nm"] - math.sqrt(32 / 3) / 2) < 1e-9, made["thickness_u_nm"]
+        assert made["thickness_readings_nm"] == [96, 100, 104, 100]
+        holds(made["absorption_coefficient_meaning"], "base e")
+        for reading, absorbance in zip(made["absorption_coefficient"], made["absorbance"]):
+            parts = reading["parts_per_cm"]
+            per_absorbance = math.log(10) / 100e-7
+            assert abs(parts["photometric"] - per_absorbance * 0.002) < 1e-6 * parts["photometric"]
+            assert abs(parts["thickness"] / reading["per_cm"] - made["thickness_u_nm"] / 100) < 1e-9
+            assert parts["blank"] == 0 and parts["reflectance"] == 0
+            assert abs(reading["u_per_cm"] ** 2 - sum(part ** 2 for part in parts.values())) < 1e-6 * reading["u_per_cm"] ** 2
+            # Student's t of 3 degrees of freedom: wider than two standard uncertainties.
+            assert reading["low_per_cm"] < reading["per_cm"] - 2 * reading["u_per_cm"] < reading["per_cm"] < reading["high_per_cm"]
+            assert absorbance["u"] >= 0.002
+
+
+@test
+def test_thin_film_is_judged_as_a_conductor():
+    with Folder() as folder:
+        film = folder.film("film.csv", "--step-nm", "2")
+        recipe = folder.write("recipe.json", QUICK)
+        made = grade_json(film, "--recipe", recipe, "--light-path", "thin-film", "--substrate", "fused silica", "--sheet-resistance-ohm", "400",
+                          "--sheet-resistance-u-ohm", "8", "--thickness-nm", "20")["films"][0]
+        conductor = made["transparent_conductor"]
+        index = 1.459911  # Malitson 1965 at 550 nm
+        transmittance = 10 ** -interpolate(read_film(film), 550)
+        assert abs(conductor["transmittance"] - transmittance) < 1e-6, (conductor, transmittance)
+        conductance = (1 + index) / 376.730313412 * (transmittance ** -0.5 - 1)
+        assert abs(conductor["dc_to_optical"] * 400 * conductance - 1) < 1e-4, conductor
+        assert abs(conductor["haacke_siemens"] - transmittance ** 10 / 400) < 1e-9
+        assert conductor["dc_to_optical_u"] > conductor["dc_to_optical"] * 8 / 400
+        sheet = next(reading for reading in made["sheet_conductance"] if reading["wavelength_nm"] == 550)
+        assert abs(sheet["siemens"] / conductance - 1) < 1e-4
+        assert abs(sheet["universal"] - sheet["siemens"] / 6.085337e-5) < 1e-9 * sheet["universal"]
+
+
 @test
 def test_without_a_thickness_there_is_a_fraction_but_no_alpha():
     with Folder() as folder:
