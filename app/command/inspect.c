@@ -2,6 +2,7 @@
 #include <glib/gi18n.h>
 #include <math.h>
 #include <stdlib.h>
+#include <sys/stat.h>
 
 #include "command.h"
 
@@ -11,15 +12,25 @@
 typedef struct
 {
   char **files;
-  char *points, *spectrum, *x_unit, *y_unit;
+  char *points, *jcamp, *jcamp_form, *spectrum, *x_unit, *y_unit;
   gboolean lines;
 } Options;
+
+/* @only: number of the one spectrum wanted, 0 for all. */
+typedef struct
+{
+  BtReadOptions reading;
+  guint only;
+  BtJcampForm form;
+} Request;
 
 static void
 options_clear (Options *options)
 {
   g_clear_pointer (&options->files, g_strfreev);
   g_free (options->points);
+  g_free (options->jcamp);
+  g_free (options->jcamp_form);
   g_free (options->spectrum);
   g_free (options->x_unit);
   g_free (options->y_unit);
@@ -32,6 +43,9 @@ parse_options (Options *options, int *argc, char ***argv, int *status)
     { "lines", 0, 0, G_OPTION_ARG_NONE, &options->lines, N_ ("show the file's first lines as they are"), NULL },
     { "points", 0, 0, G_OPTION_ARG_FILENAME, &options->points, N_ ("write the points as they were read; - is standard output"),
       "FILE" },
+    { "jcamp", 0, 0, G_OPTION_ARG_FILENAME, &options->jcamp, N_ ("write what was read as JCAMP-DX; - is standard output"), "FILE" },
+    { "jcamp-form", 0, 0, G_OPTION_ARG_STRING, &options->jcamp_form,
+      N_ ("how its ordinates are written: difdup (squeezed, the default) or affn (plain numbers)"), N_ ("FORM") },
     { "spectrum", 0, 0, G_OPTION_ARG_STRING, &options->spectrum, N_ ("only the N-th spectrum of a file that holds several"),
       "N" },
     { "x-unit", 0, 0, G_OPTION_ARG_STRING, &options->x_unit, N_ ("unit of the first column: nm, um, 1/cm, eV"), N_ ("UNIT") },
@@ -197,11 +211,31 @@ write_points (BtSpectrum *spectrum, const char *path, GError **error)
   return written;
 }
 
-/* @only: number of the one spectrum wanted, 0 for all. */
+/* One spectrum, or all of a file as the blocks of one; @file names the whole. */
 static gboolean
-inspect_file (const char *file, const BtReadOptions *reading, guint only, const char *points, gboolean lines, GError **error)
+write_jcamp (GPtrArray *spectra, guint only, const char *file, BtJcampForm form, const char *path, GError **error)
 {
-  GPtrArray *spectra = bt_spectrum_read_file (file, reading, error);
+  char *name = g_filename_display_basename (file);
+  char *text = only > 0 ? bt_spectrum_to_jcamp (g_ptr_array_index (spectra, only - 1), form) : bt_spectra_to_jcamp (spectra, name, form);
+  gboolean written = output_write (path, text, -1, error);
+
+  g_free (text);
+  g_free (name);
+  return written;
+}
+
+/* Whether standard output is taken for points. */
+static gboolean
+is_quiet (const Options *options)
+{
+  return is_standard_output (options->points) || is_standard_output (options->jcamp);
+}
+
+static gboolean
+inspect_file (const char *file, const Options *options, const Request *request, GError **error)
+{
+  const guint only = request->only;
+  GPtrArray *spectra = bt_spectrum_read_file (file, &request->reading, error);
   gboolean done = TRUE;
 
   if (spectra == NULL)
@@ -219,24 +253,26 @@ inspect_file (const char *file, const BtReadOptions *reading, guint only, const 
       {
         BtSpectrum *spectrum = g_ptr_array_index (spectra, i);
 
-        if (!is_standard_output (points))
+        if (!is_quiet (options))
           {
             print_spectrum (spectrum, file);
-            if (lines)
+            if (options->lines)
               print_beginning (file);
           }
-        if (points != NULL)
+        if (options->points != NULL)
           {
-            done = write_points (spectrum, points, error);
+            done = write_points (spectrum, options->points, error);
             break;
           }
       }
+  if (done && options->jcamp != NULL)
+    done = write_jcamp (spectra, only, file, request->form, options->jcamp, error);
   g_ptr_array_unref (spectra);
   return done;
 }
 
 static int
-inspect (const Options *options, const BtReadOptions *reading, guint only)
+inspect (const Options *options, const Request *request)
 {
   int status = STATUS_DONE;
 
@@ -244,9 +280,9 @@ inspect (const Options *options, const BtReadOptions *reading, guint only)
     {
       GError *error = NULL;
 
-      if (file != options->files && !is_standard_output (options->points))
+      if (file != options->files && !is_quiet (options))
         g_print ("\n");
-      if (!inspect_file (*file, reading, only, options->points, options->lines, &error))
+      if (!inspect_file (*file, options, request, &error))
         {
           complain (error->message);
           g_error_free (error);
@@ -256,31 +292,68 @@ inspect (const Options *options, const BtReadOptions *reading, guint only)
   return status;
 }
 
+static gboolean
+is_same_file (const char *a, const char *b)
+{
+  struct stat one, other;
+
+  return g_str_equal (a, b) || (stat (a, &one) == 0 && stat (b, &other) == 0 && one.st_dev == other.st_dev && one.st_ino == other.st_ino);
+}
+
+/* What is written takes one file, and may not take its place. */
+static void
+check_written (const Options *options, const char *option, const char *path, GError **error)
+{
+  if (path == NULL || *error != NULL)
+    return;
+  if (options->files[1] != NULL)
+    g_set_error (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("%s takes one file at a time."), option);
+  else if (is_same_file (path, options->files[0]))
+    g_set_error (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("%s would overwrite the file that is read; name another."), option);
+}
+
+static void
+check_options (const Options *options, Request *request, GError **error)
+{
+  double only = 0;
+  const NumberOption number = { "--spectrum", options->spectrum, &only, 1, 1e6, N_ ("a whole number from 1 up") };
+
+  if (options->files == NULL)
+    {
+      g_set_error_literal (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("No file was named: give at least one."));
+      return;
+    }
+  check_written (options, "--points", options->points, error);
+  check_written (options, "--jcamp", options->jcamp, error);
+  if (*error == NULL && options->points != NULL && options->jcamp != NULL && is_same_file (options->points, options->jcamp))
+    g_set_error_literal (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("--points and --jcamp need a place each."));
+  if (*error == NULL && options->jcamp_form != NULL && options->jcamp == NULL)
+    g_set_error_literal (error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("--jcamp-form says how --jcamp writes; give --jcamp too."));
+  if (*error != NULL)
+    return;
+  if (options->jcamp_form != NULL && g_str_equal (options->jcamp_form, "affn"))
+    request->form = BT_JCAMP_AFFN;
+  else if (options->jcamp_form != NULL && !g_str_equal (options->jcamp_form, "difdup"))
+    bad_value ("--jcamp-form", _ ("difdup or affn"), options->jcamp_form, error);
+  if (*error == NULL && parse_numbers (&number, 1, error) && only != floor (only))
+    bad_value (number.option, _ (number.wanted), options->spectrum, error);
+  if (*error == NULL)
+    parse_units (options->x_unit, options->y_unit, &request->reading, error);
+  request->only = (guint) only;
+}
+
 int
 inspect_command (int argc, char **argv)
 {
   Options options = { NULL };
-  BtReadOptions reading = BT_READ_OPTIONS_INIT;
-  double only = 0;
+  Request request = { BT_READ_OPTIONS_INIT, 0, BT_JCAMP_DIFDUP };
   GError *error = NULL;
   int status;
 
   if (parse_options (&options, &argc, &argv, &status))
     {
-      const NumberOption number = { "--spectrum", options.spectrum, &only, 1, 1e6, N_ ("a whole number from 1 up") };
-
-      if (options.files == NULL)
-        g_set_error_literal (&error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("No file was named: give at least one."));
-      else if (options.points != NULL && options.files[1] != NULL)
-        g_set_error_literal (&error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED, _ ("--points takes one file at a time."));
-      else if (options.points != NULL && g_str_equal (options.points, options.files[0]))
-        g_set_error_literal (&error, G_OPTION_ERROR, G_OPTION_ERROR_FAILED,
-                             _ ("--points would overwrite the file that is read; name another."));
-      else if (parse_numbers (&number, 1, &error) && only != floor (only))
-        bad_value (number.option, _ (number.wanted), options.spectrum, &error);
-      if (error == NULL)
-        parse_units (options.x_unit, options.y_unit, &reading, &error);
-      status = error != NULL ? command_usage_error ("inspect", error) : inspect (&options, &reading, (guint) only);
+      check_options (&options, &request, &error);
+      status = error != NULL ? command_usage_error ("inspect", error) : inspect (&options, &request);
     }
   options_clear (&options);
   return status;

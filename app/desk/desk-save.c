@@ -1,4 +1,4 @@
-/* Saving: the report as PDF, the figure, tables of all films, recipes. */
+/* Saving: the report as PDF, the figure, the reading, tables of all films, recipes. */
 #include <glib/gi18n.h>
 #include <math.h>
 
@@ -113,6 +113,15 @@ save_csv (DeskWindow *self, const char *path, GError **error)
 }
 
 static gboolean
+save_reading (DeskWindow *self, const char *path, GError **error)
+{
+  if (!self->film)
+    return TRUE;
+  g_autofree char *text = bt_spectrum_to_jcamp (bt_film_get_spectrum (desk_film_get_film (self->film)), BT_JCAMP_DIFDUP);
+  return g_file_set_contents (path, text, -1, error);
+}
+
+static gboolean
 save_recipe (DeskWindow *self, const char *path, GError **error)
 {
   if (!self->film)
@@ -131,6 +140,12 @@ static void
 act_save_figure (GSimpleAction *action, GVariant *parameter, gpointer window)
 {
   ask (window, _("Save figure as SVG, PDF or PNG"), ".svg", save_figure);
+}
+
+static void
+act_save_reading (GSimpleAction *action, GVariant *parameter, gpointer window)
+{
+  ask (window, _("Save reading as JCAMP-DX"), ".jdx", save_reading);
 }
 
 static void
@@ -183,6 +198,7 @@ desk_window_add_save_actions (DeskWindow *self)
   static const GActionEntry entries[] = {
     { .name = "save-report", .activate = act_save_report },     { .name = "save-figure", .activate = act_save_figure },
     { .name = "save-tables-json", .activate = act_save_json },  { .name = "save-tables-csv", .activate = act_save_csv },
+    { .name = "save-reading", .activate = act_save_reading },
     { .name = "save-recipe", .activate = act_save_recipe },     { .name = "load-recipe", .activate = act_load_recipe },
   };
   g_action_map_add_action_entries (G_ACTION_MAP (self), entries, G_N_ELEMENTS (entries), self);

@@ -62,7 +62,7 @@ on_went_to (DeskWindow *self, DeskFilm *film)
 void
 desk_window_update_actions (DeskWindow *self)
 {
-  static const char *const of_film[] = { "print",       "print-preview", "save-report", "save-figure", "save-recipe", "load-recipe",
+  static const char *const of_film[] = { "print",       "print-preview", "save-report", "save-figure", "save-reading", "save-recipe", "load-recipe",
                                          "close-film",  "refit",         "read-as",     "as-read",       "set-blank",   "set-reflectance", "zoom-in",     "zoom-out",
                                          "zoom-all",          "set-thickness", "set-limit", "recipe-to-all", "next-film",
                                          "previous-film" };

@@ -225,6 +225,16 @@ append_limits (GString *out, const char *axis, const double *values, gsize n)
   append_value (out, min, low);
 }
 
+/* The standard wants a title: where the spectrum has none it is the film's name, or the file's. */
+static void
+append_title (GString *out, BtSpectrum *self)
+{
+  const char *title = bt_spectrum_get_title (self), *film = bt_spectrum_get_note (self, "film"), *file = bt_spectrum_get_file (self);
+  g_autofree char *name = file != NULL ? g_filename_display_basename (file) : g_strdup ("spectrum");
+
+  append_text (out, "TITLE", title != NULL && title[0] != '\0' ? title : film != NULL && film[0] != '\0' ? film : name);
+}
+
 /* What the program itself reads from preambles. */
 static void
 append_notes (GString *out, BtSpectrum *self)
@@ -275,7 +285,7 @@ bt_spectrum_to_jcamp (BtSpectrum *self, BtJcampForm form)
   even = is_even (x, n);
   if (even && form == BT_JCAMP_DIFDUP)
     scale = integer_scale (y, n);
-  append_text (out, "TITLE", bt_spectrum_get_title (self));
+  append_title (out, self);
   g_string_append (out, "##JCAMP-DX= 4.24\r\n##DATA TYPE= UV/VIS SPECTRUM\r\n##ORIGIN= Bandtally\r\n##OWNER= as in the file it was read from\r\n");
   g_string_append_printf (out, "##XUNITS= %s\r\n##YUNITS= %s\r\n", x_names[bt_spectrum_get_x_unit (self)], y_names[bt_spectrum_get_y_unit (self)]);
   append_notes (out, self);
@@ -295,6 +305,28 @@ bt_spectrum_to_jcamp (BtSpectrum *self, BtJcampForm form)
     append_differences (out, x, y, n, scale);
   else
     append_ordinates (out, x, y, n);
+  g_string_append (out, "##END=\r\n");
+  return g_string_free (out, FALSE);
+}
+
+char *
+bt_spectra_to_jcamp (GPtrArray *spectra, const char *title, BtJcampForm form)
+{
+  GString *out;
+
+  g_return_val_if_fail (spectra != NULL && spectra->len > 0, NULL);
+  if (spectra->len == 1)
+    return bt_spectrum_to_jcamp (g_ptr_array_index (spectra, 0), form);
+  out = g_string_new (NULL);
+  append_text (out, "TITLE", title);
+  /* The block that holds the others counts as one. */
+  g_string_append_printf (out, "##JCAMP-DX= 4.24\r\n##DATA TYPE= LINK\r\n##BLOCKS= %u\r\n", spectra->len + 1);
+  for (guint i = 0; i < spectra->len; i++)
+    {
+      g_autofree char *block = bt_spectrum_to_jcamp (g_ptr_array_index (spectra, i), form);
+
+      g_string_append (out, block);
+    }
   g_string_append (out, "##END=\r\n");
   return g_string_free (out, FALSE);
 }

@@ -135,6 +135,17 @@ typedef enum { BT_JCAMP_AFFN, BT_JCAMP_DIFDUP } BtJcampForm;
  * Returns: (transfer full): the file's text, in ASCII, lines ended by CR LF
  */
 char *bt_spectrum_to_jcamp (BtSpectrum *self, BtJcampForm form);
+/**
+ * bt_spectra_to_jcamp:
+ * @spectra: (element-type BtSpectrum): one or more
+ * @title: of the whole, where there are several
+ * @form: as for bt_spectrum_to_jcamp()
+ *
+ * One spectrum as bt_spectrum_to_jcamp() writes it; several as the blocks of one compound file (DATA TYPE= LINK), in their order.
+ *
+ * Returns: (transfer full): the file's text, in ASCII, lines ended by CR LF
+ */
+char *bt_spectra_to_jcamp (GPtrArray *spectra, const char *title, BtJcampForm form);
 
 /**
  * BtStep:

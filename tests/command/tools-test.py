@@ -57,6 +57,52 @@ def test_inspect_gives_back_the_raw_points():
 
 
 @test
+def test_inspect_writes_jcamp():
+    with Folder() as folder:
+        raw = [(300 + 2 * i, round(0.3 + 0.2 * math.sin(i / 40), 5)) for i in range(900)]
+        film = folder.write("film.csv", "# film = Quay 3\nnm,A\n" + "".join(f"{x},{y!r}\n" for x, y in raw))
+        sizes = {}
+        for form in ("difdup", "affn"):
+            out = folder(form + ".jdx")
+            holds(run("inspect", film, "--jcamp", out, "--jcamp-form", form, status=0).stdout, "900 read")
+            sizes[form] = os.path.getsize(out)
+            assert points_of(run("inspect", out, "--points", "-", status=0).stdout) == raw, form
+            holds(run("inspect", out, status=0).stdout, "JCAMP-DX 4.24", "nm, absorbance")
+        assert 2 * sizes["difdup"] < sizes["affn"], sizes
+        text = run("inspect", film, "--jcamp", "-", status=0, binary=True).stdout
+        with open(folder("difdup.jdx"), "rb") as file:
+            assert text == file.read()
+        assert text.startswith(b"##TITLE= Quay 3\r\n") and text.endswith(b"##END=\r\n") and max(map(len, text.split(b"\r\n"))) <= 80
+
+
+@test
+def test_inspect_writes_all_spectra_of_a_file_as_jcamp():
+    with Folder() as folder:
+        film = folder.write("two.csv", "nm,Film 1 Abs,Film 2 Abs\n" + "".join(f"{900 + i},{0.1 + i / 1000},{0.9 - i / 1000}\n" for i in range(60)))
+        run("inspect", film, "--jcamp", folder("two.jdx"), status=0)
+        run("inspect", film, "--jcamp", folder("second.jdx"), "--spectrum", "2", status=0)
+        holds(run("inspect", folder("two.jdx"), status=0).stdout, "Film 1 Abs", "Film 2 Abs")
+        for number, made in (("1", ("two.jdx", "1")), ("2", ("two.jdx", "2")), ("2", ("second.jdx", "1"))):
+            expected = run("inspect", film, "--points", "-", "--spectrum", number, status=0).stdout
+            assert run("inspect", folder(made[0]), "--points", "-", "--spectrum", made[1], status=0).stdout == expected, made
+        result = run("inspect", folder("second.jdx"), "--spectrum", "2", status=1)
+        holds(result.stderr, "second.jdx", "1 spectrum")
+
+
+@test
+def test_inspect_never_overwrites_what_it_reads():
+    with Folder() as folder:
+        film = folder.film()
+        os.link(film, folder("other-name.csv"))
+        with open(film, "rb") as file:
+            before = file.read()
+        for option in ("--points", "--jcamp"):
+            holds(run("inspect", film, option, folder("other-name.csv"), status=2).stderr, option, "overwrite")
+        with open(film, "rb") as file:
+            assert file.read() == before
+
+
+@test
 def test_inspect_takes_one_spectrum_of_several():
     with Folder() as folder:
         film = folder.film()

@@ -120,6 +120,16 @@ def figure_is_saved(desk, folder):
             d.need(magic in file.read(400), f"a file of the kind {ending}")
 
 
+def reading_is_saved(desk, folder):
+    path = os.path.join(folder, "reading.jdx")
+    menu(desk, "Save reading as JCAMP-DX…")
+    choose(desk, "Save reading", path)
+    d.until(lambda: os.path.exists(path), "the reading")
+    points = [subprocess.run([command, "inspect", name, "--points", "-"], check=True, capture_output=True).stdout
+              for name in (path, os.path.join(folder, "a2.csv"))]
+    d.same(points[0], points[1], "points read from what was saved")
+
+
 def recipe_goes_out_and_in(desk, folder):
     path = os.path.join(folder, "own.recipe.json")
     desk.type_line("Limit, at least", "12.5 %")
@@ -258,7 +268,7 @@ def main():
             file.write("wavelength_nm,absorbance\n" + "".join(f"{nm},{0.01 + 1e-5 * (nm % 7)}\n" for nm in range(200, 2601, 2)))
         desk = d.Desk(program, cwd=folder, environment={"HOME": folder})
         for function in (opens_by_dialog, opening_is_undone, blank_is_chosen_and_removed, file_is_shown_as_read, tables_are_saved, figure_is_saved,
-                         recipe_goes_out_and_in, wrong_recipe_is_named, place_that_cannot_be_written_is_named,
+                         reading_is_saved, recipe_goes_out_and_in, wrong_recipe_is_named, place_that_cannot_be_written_is_named,
                          escape_ends_a_drag, flank_is_dragged, main_job_by_keyboard):
             if not tap.test(function.__name__.replace("_", " "), function, desk, folder):
                 desk.shot(os.path.join(shots, f"failed-{function.__name__}.png"))

@@ -187,6 +187,38 @@ test_words (void)
   g_assert_true (g_str_has_suffix (bt_spectrum_get_note (again, "film"), "two"));
 }
 
+/* Several spectra are the blocks of one file. */
+static void
+test_several (void)
+{
+  g_autoptr (GPtrArray) spectra = g_ptr_array_new_with_free_func (g_object_unref), again = NULL;
+  g_autoptr (GBytes) bytes = NULL;
+  g_autoptr (GError) error = NULL;
+  g_autofree char *text = NULL;
+
+  for (guint i = 0; i < 3; i++)
+    g_ptr_array_add (spectra, make (&rows[4 * i], FALSE));
+  text = bt_spectra_to_jcamp (spectra, "a lot", BT_JCAMP_DIFDUP);
+  check_text (text, "##DATA TYPE= LINK");
+  g_assert_nonnull (strstr (text, "##BLOCKS= 4\r\n"));
+  bytes = g_bytes_new (text, strlen (text));
+  again = bt_spectrum_read_bytes (bytes, "lot.jdx", NULL, &error);
+  g_assert_no_error (error);
+  g_assert_cmpuint (again->len, ==, 3);
+  for (guint i = 0; i < MIN (3, again->len); i++)
+    {
+      BtSpectrum *a = g_ptr_array_index (spectra, i), *b = g_ptr_array_index (again, i);
+      gsize n, n_again;
+      const double *x = bt_spectrum_get_raw_x (a, &n), *x_again = bt_spectrum_get_raw_x (b, &n_again);
+
+      g_assert_cmpuint (n_again, ==, n);
+      g_assert_cmpint (bt_spectrum_get_y_unit (b), ==, bt_spectrum_get_y_unit (a));
+      g_assert_cmpstr (bt_spectrum_get_title (b), ==, "film 1");
+      assert_same (x, x_again, MIN (n, n_again));
+      assert_same (bt_spectrum_get_raw_y (a, NULL), bt_spectrum_get_raw_y (b, NULL), MIN (n, n_again));
+    }
+}
+
 int
 main (int argc, char **argv)
 {
@@ -201,5 +233,6 @@ main (int argc, char **argv)
   g_test_add_func ("/spectrum/jcamp-write/size", test_size);
   g_test_add_func ("/spectrum/jcamp-write/energies", test_energies);
   g_test_add_func ("/spectrum/jcamp-write/words", test_words);
+  g_test_add_func ("/spectrum/jcamp-write/several", test_several);
   return g_test_run ();
 }
