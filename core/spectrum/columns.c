@@ -57,7 +57,7 @@ split_header (const char *line, const char *end, char delimiter, gsize n_columns
 static gboolean
 is_header (const BtField *fields, gsize n, gboolean nearest)
 {
-  g_autofree char *first = g_strndup (fields[0].text, fields[0].n), *second = g_strndup (fields[1].text, fields[1].n);
+  g_autofree char *first = bt_text_words (fields[0].text, fields[0].n), *second = bt_text_words (fields[1].text, fields[1].n);
   BtXUnit x_unit;
   BtYUnit y_unit;
 
@@ -90,7 +90,8 @@ bt_text_headers (const BtRows *rows, const BtTable *table, BtColumns *columns)
 
   for (const char *at = table->above, *next; at < table->top; at = next)
     {
-      BtField line = { at, (gsize) (bt_text_line_end (at, table->top, &next) - at) };
+      guint n_lines;
+      BtField line = { at, (gsize) (bt_text_record_end (at, table->top, &next, &n_lines) - at) };
 
       g_array_append_val (lines, line);
     }
@@ -107,12 +108,12 @@ bt_text_headers (const BtRows *rows, const BtTable *table, BtColumns *columns)
           || !split_header (at, end, rows->dialect.delimiter, columns->n_columns, fields)
           || !is_header (fields, columns->n_columns, used == 0))
         {
-          columns->caption = g_strstrip (g_strndup (at, (gsize) (end - at)));
+          columns->caption = g_strstrip (bt_text_words (at, (gsize) (end - at)));
           break;
         }
       columns->parts[used] = g_new0 (char *, columns->n_columns + 1);
       for (gsize c = 0; c < columns->n_columns; c++)
-        columns->parts[used][c] = g_strndup (fields[c].text, fields[c].n);
+        columns->parts[used][c] = bt_text_words (fields[c].text, fields[c].n);
       used++;
     }
   columns->headers = g_new0 (char *, columns->n_columns + 1);

@@ -12,10 +12,103 @@
 /* The fewest rows among the lines looked at that are taken for an answer. */
 #define SURE_ROWS 8
 
+/* The longest field over several lines that is taken for one. */
+#define RECORD_LINES 64
+#define RECORD_BYTES 4000
+
 static gboolean
 is_blank (char c)
 {
   return c == ' ' || c == '\t';
+}
+
+/* Whether a quote here opens a field: it stands behind a delimiter or another field in quotes, not behind words. */
+static gboolean
+opens (const char *line, const char *quote)
+{
+  while (quote > line && quote[-1] == ' ')
+    quote--;
+  return quote == line || strchr ("\t,;|\"", quote[-1]) != NULL;
+}
+
+/* The quote that closes the field that begins behind the one at @at, NULL where none does before @end. */
+static const char *
+closing_quote (const char *at, const char *end)
+{
+  while ((at = memchr (at + 1, '"', (gsize) (end - at - 1))) != NULL)
+    if (at + 1 < end && at[1] == '"')
+      at++;
+    else
+      return at;
+  return NULL;
+}
+
+/* The quote that is still open at a line's end, or NULL. */
+static const char *
+open_quote (const char *line, const char *line_end)
+{
+  const char *at = memchr (line, '"', (gsize) (line_end - line));
+
+  while (at != NULL)
+    {
+      if (opens (line, at))
+        {
+          const char *close = closing_quote (at, line_end);
+
+          if (close == NULL)
+            return at;
+          at = close;
+        }
+      at = memchr (at + 1, '"', (gsize) (line_end - at - 1));
+    }
+  return NULL;
+}
+
+const char *
+bt_text_record_end (const char *at, const char *end, const char **next, guint *lines)
+{
+  const char *line_end = bt_text_line_end (at, end, next), *quote = open_quote (at, line_end), *record_end = line_end, *record_next = *next;
+
+  for (*lines = 1; quote != NULL && record_next < end;)
+    {
+      const char *line = record_next, *close;
+
+      record_end = bt_text_line_end (line, end, &record_next);
+      if (++*lines > RECORD_LINES || record_end - at > RECORD_BYTES)
+        break;
+      close = closing_quote (line - 1, record_end);
+      if (close == NULL)
+        continue;
+      if (close + 1 < record_end && strchr (" \t,;|", close[1]) == NULL)
+        break;
+      quote = open_quote (close + 1, record_end);
+      if (quote == NULL)
+        {
+          *next = record_next;
+          return record_end;
+        }
+    }
+  *lines = 1;
+  return line_end;
+}
+
+char *
+bt_text_words (const char *text, gsize n)
+{
+  GString *words = g_string_sized_new (n);
+
+  for (gsize i = 0; i < n; i++)
+    {
+      const gboolean breaks = text[i] == '\n' || text[i] == '\r';
+
+      if (text[i] == '"' && i + 1 < n && text[i + 1] == '"')
+        i++;
+      if (!breaks)
+        g_string_append_c (words, text[i]);
+      else if (words->len > 0 && words->str[words->len - 1] != ' ')
+        g_string_append_c (words, ' ');
+    }
+  return g_string_free (words, FALSE);
 }
 
 static BtField
@@ -100,7 +193,8 @@ score_lines (const char *at, const char *end, gsize max_lines, Score *score, BtF
 {
   for (gsize i = 0; at < end && i < max_lines; i++)
     {
-      const char *next, *line_end = bt_text_line_end (at, end, &next);
+      guint lines;
+      const char *next, *line_end = bt_text_record_end (at, end, &next, &lines);
       gsize n;
       BtRowKind kind = bt_text_row (at, line_end, score->dialect, fields, &n);
 

@@ -61,7 +61,7 @@ take_note (BtSource *source, const char *at, const char *end, char delimiter)
     sign = memchr (at, ':', (gsize) (end - at));
   if (sign != NULL && sign > at)
     {
-      g_autofree char *key = g_strndup (at, (gsize) (sign - at)), *value = g_strndup (sign + 1, (gsize) (end - sign - 1));
+      g_autofree char *key = bt_text_words (at, (gsize) (sign - at)), *value = bt_text_words (sign + 1, (gsize) (end - sign - 1));
 
       /* In "key: value;;;" of a spreadsheet the signs at the end are no part of it. */
       for (gsize i = strlen (value); i > 0 && delimiter != ' ' && (value[i - 1] == delimiter || value[i - 1] == '"'); i--)
@@ -76,7 +76,7 @@ take_note (BtSource *source, const char *at, const char *end, char delimiter)
   n = bt_text_fields (at, end, delimiter, fields, 3);
   if (n >= 2 && (n == 2 || fields[2].n == 0))
     {
-      g_autofree char *key = g_strndup (fields[0].text, fields[0].n), *value = g_strndup (fields[1].text, fields[1].n);
+      g_autofree char *key = g_strndup (fields[0].text, fields[0].n), *value = bt_text_words (fields[1].text, fields[1].n);
 
       bt_source_add_note (source, key, value);
     }
@@ -85,8 +85,10 @@ take_note (BtSource *source, const char *at, const char *end, char delimiter)
 static void
 take_notes (BtSource *source, const char *at, const char *end, char delimiter)
 {
+  guint lines;
+
   for (const char *next; at < end && g_hash_table_size (bt_source_get_notes (source)) < MAX_NOTES; at = next)
-    take_note (source, at, bt_text_line_end (at, end, &next), delimiter);
+    take_note (source, at, bt_text_record_end (at, end, &next, &lines), delimiter);
 }
 
 static const char *

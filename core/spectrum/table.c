@@ -129,8 +129,9 @@ scan_lines (Scan *scan)
   const BtDialect dialect = rows->dialect;
   const char *at = text->at, *next;
 
-  for (scan->line = 1; at < text->end; at = next, scan->line++)
+  for (scan->line = 1; at < text->end; at = next)
     {
+      guint lines = 1;
       gsize n;
       const gsize room = make_room (rows, 8);
       const char *line_end = scan_plain_row (at, text->end, dialect, rows->values + rows->n_values, room, &n);
@@ -140,9 +141,10 @@ scan_lines (Scan *scan)
           next = line_end == text->end ? text->end : line_end + (line_end + 1 < text->end && line_end[0] == '\r' && line_end[1] == '\n' ? 2 : 1);
           add_row (scan, at, n);
           scan->run_end = next;
+          scan->line++;
           continue;
         }
-      line_end = bt_text_line_end (at, text->end, &next);
+      line_end = bt_text_record_end (at, text->end, &next, &lines);
       if (scan_row (scan, at, line_end, &n))
         {
           add_row (scan, at, n);
@@ -156,6 +158,7 @@ scan_lines (Scan *scan)
           end_run (scan);
           scan->n_text++;
         }
+      scan->line += lines;
     }
   end_run (scan);
 }

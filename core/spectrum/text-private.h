@@ -55,6 +55,11 @@ typedef struct { const char *text; gsize n; } BtField;
 typedef struct { char delimiter, decimal; } BtDialect;
 typedef enum { BT_ROW_NONE, BT_ROW_WITH_TEXT, BT_ROW_STRICT } BtRowKind;
 
+/* As bt_text_line_end(), but a field in quotes may hold line ends (RFC 4180). @lines is set to the lines that the record takes. A quote that is not
+ * closed as the rules say ends nothing: then it is the line's end. */
+G_GNUC_INTERNAL const char *bt_text_record_end (const char *at, const char *end, const char **next, guint *lines);
+/* (transfer full): a field's words in one line; quotes that are doubled because they stand between quotes are single. */
+G_GNUC_INTERNAL char *bt_text_words (const char *text, gsize n);
 /* Splits a line (RFC 4180 quotes); at most @max fields; returns their number. An empty last field counts. */
 G_GNUC_INTERNAL gsize bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max);
 /* Splits a line and judges it as a row of a table: its first field that is not empty is a number, another one a number or missing. */

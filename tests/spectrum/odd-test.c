@@ -18,6 +18,7 @@ typedef struct {
   BtYUnit y_unit;
   guint n_used;             /* points on the core's axes of the first spectrum; 0: as many as were read */
   const char *flags;        /* of the first spectrum */
+  guint line;               /* where the first table begins; 0: whatever */
 } Odd;
 
 #define TEN "900 0.91 910 0.82 920 0.73 930 0.64 940 0.55 950 0.46 960 0.37 970 0.28 980 0.19 990 0.11"
@@ -63,6 +64,18 @@ static const Odd odds[] = {
     { "column 2", "column 4" }, .y_unit = BT_Y_TRANSMITTANCE, .flags = "units-inferred" },
   { "one below the other", "Film: A1\nnm,A\n" ROWS (",", ".") "\nFilm: A2\nnm,A\n" ROWS (",", "."), { TEN, TEN }, { "A1", "A2" } },
   { "one below the other, no headers", "nm A\n" ROWS (" ", ".") "\n" ROWS (" ", "."), { TEN, TEN } },
+  { "line ends in quoted headers", "\"Wavelength\n(nm)\",\"Film \"\"A\"\"\nabsorbance\",\"Film B\n\nabsorbance\"\n"
+    "900,0.1,0.2\n910,0.2,0.3\n920,0.3,0.4\n930,0.4,0.5\n940,0.5,0.6\n950,0.6,0.7\n960,0.7,0.8\n970,0.8,0.9\n",
+    { "900 0.1 910 0.2 920 0.3 930 0.4 940 0.5 950 0.6 960 0.7 970 0.8", "900 0.2 910 0.3 920 0.4 930 0.5 940 0.6 950 0.7 960 0.8 970 0.9" },
+    { "Film \"A\" absorbance", "Film B absorbance" }, .line = 6 },
+  { "line ends in a quoted header, semicolons, CR LF", "\"Wellenzahl\r\n(cm-1)\";\"Transmission\r\n(%)\"\r\n" "9000;90,5\r\n9010;90,4\r\n9020;90,3\r\n9030;90,2\r\n"
+    "9040;90,1\r\n9050;90,0\r\n9060;89,9\r\n9070;89,8\r\n", { "9000 90.5 9010 90.4 9020 90.3 9030 90.2 9040 90.1 9050 90 9060 89.9 9070 89.8" },
+    .x_unit = BT_X_PER_CM, .y_unit = BT_Y_TRANSMITTANCE_PERCENT, .line = 4 },
+  { "numbers in a quoted field over lines", "\"Remarks: before\n1,2\n3,4\nafter\"\n\"nm\",\"A\"\n" ROWS (",", "."), { TEN }, .line = 6 },
+  { "line ends in the remarks of rows", "nm,A,remark\n900,0.91,\"lamp\nwarm\"\n910,0.82,\n920,0.73,\"all\n999,9\nwell\"\n930,0.64,\n940,0.55,\n950,0.46,\n960,0.37,\n"
+    "970,0.28,\n980,0.19,\n990,0.11,\n", { TEN }, .line = 2 },
+  { "a quote that nothing closes", "Operator: \"me\n\"wafer 5\nnm,A\n" ROWS (",", "."), { TEN }, .line = 4 },
+  { "a quote that opens behind words", "wafer of 5\" by\nnm,A\n" ROWS (",", ".") "cut from 6\"\n", { TEN }, .line = 3 },
   { "one film short of points", "nm,F1,F2\n900,0.91,\n910,0.82,1\n920,0.73,\n930,0.64,\n940,0.55,\n950,0.46,\n960,0.37,\n970,0.28,\n980,0.19,\n990,0.11,\n",
     { TEN }, .titles = { "F1" }, .flags = "units-inferred" },
 };
@@ -115,6 +128,12 @@ test_odd (gconstpointer data)
         g_assert_cmpstr (bt_spectrum_get_title (spectrum), ==, odd->titles[i]);
       if (i == 0)
         g_assert_cmpstr (codes, ==, odd->flags != NULL ? odd->flags : "");
+      if (i == 0 && odd->line > 0)
+        {
+          g_autofree char *from = g_strdup_printf ("from line %u on", odd->line);
+
+          g_assert_nonnull (strstr (bt_spectrum_get_reading (spectrum), from));
+        }
       if (i == 0 && odd->n_used > 0)
         g_assert_cmpuint (bt_spectrum_get_n_points (spectrum), ==, odd->n_used);
     }
