@@ -10,6 +10,7 @@
 #include <bandtally/tube.h>
 #include <bandtally/band_plan.h>
 #include <bandtally/film.h>
+#include <bandtally/shape.h>
 #include <bandtally/solve.h>
 #include <bandtally/model.h>
 #include <bandtally/forecast.h>

@@ -1,0 +1,11 @@
+/* exp of whole arrays: reduction by ln 2 in two parts, a polynomial of degree 11, and the power of two in two steps so that subnormal results are
+ * rounded once. The kernel is in exponential-kernel.h. */
+#include "exponential.h"
+
+#include "shape-private.h"
+
+void
+bt_exp_eval (const double *x, gsize n, double *out)
+{
+  bt_shape_kernels (bt_path_best ())->exponential (x, n, out);
+}

@@ -1,0 +1,10 @@
+/* The kernels of the shapes for x86-64 with AVX2 and fused multiply-add. */
+#include "shape-private.h"
+
+#ifdef BT_HAVE_AVX
+#define LANES 4
+#define TARGET __attribute__ ((target ("avx2,fma")))
+#include "shape-kernels.h"
+
+const BtShapeKernels bt_shape_kernels_avx2 = TABLE;
+#endif

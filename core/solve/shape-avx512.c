@@ -1,0 +1,10 @@
+/* The kernels of the shapes for x86-64 with AVX-512. */
+#include "shape-private.h"
+
+#ifdef BT_HAVE_AVX
+#define LANES 8
+#define TARGET __attribute__ ((target ("avx512f,avx512dq,avx2,fma")))
+#include "shape-kernels.h"
+
+const BtShapeKernels bt_shape_kernels_avx512 = TABLE;
+#endif
