@@ -195,8 +195,11 @@ score_lines (const char *at, const char *end, gsize max_lines, Score *score, BtF
     {
       guint lines;
       const char *next, *line_end = bt_text_record_end (at, end, &next, &lines);
-      gsize n;
-      BtRowKind kind = bt_text_row (at, line_end, score->dialect, fields, &n);
+      gsize n = 0;
+      BtRowKind kind = BT_ROW_NONE;
+
+      if (score->dialect.delimiter == ' ' || memchr (at, score->dialect.delimiter, (gsize) (line_end - at)) != NULL)
+        kind = bt_text_row (at, line_end, score->dialect, fields, &n);
 
       if (line_end > at)
         score->lines++;

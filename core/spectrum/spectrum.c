@@ -76,27 +76,46 @@ by_energy (const void *a, const void *b)
   return p->energy < q->energy ? -1 : p->energy > q->energy;
 }
 
+static void
+reverse (double *values, gsize n)
+{
+  for (gsize i = 0; i < n / 2; i++)
+    {
+      const double value = values[i];
+
+      values[i] = values[n - 1 - i];
+      values[n - 1 - i] = value;
+    }
+}
+
 /* Most files are in order already, one way or the other. */
 static void
-sort_points (Point *points, gsize n)
+sort_points (double *energy, double *absorbance, gsize n)
 {
-  gboolean ascends = TRUE, descends = TRUE;
+  gsize ascends = 1, descends = 1;
+  g_autofree Point *points = NULL;
 
-  for (gsize i = 1; i < n; i++)
+  while (ascends < n && energy[ascends] >= energy[ascends - 1])
+    ascends++;
+  if (ascends >= n)
+    return;
+  while (descends < n && energy[descends] <= energy[descends - 1])
+    descends++;
+  if (descends >= n)
     {
-      ascends = ascends && points[i].energy >= points[i - 1].energy;
-      descends = descends && points[i].energy <= points[i - 1].energy;
+      reverse (energy, n);
+      reverse (absorbance, n);
+      return;
     }
-  if (descends)
-    for (gsize i = 0; i < n / 2; i++)
-      {
-        Point point = points[i];
-
-        points[i] = points[n - 1 - i];
-        points[n - 1 - i] = point;
-      }
-  else if (!ascends)
-    qsort (points, n, sizeof *points, by_energy);
+  points = g_new (Point, n);
+  for (gsize i = 0; i < n; i++)
+    points[i] = (Point){ energy[i], absorbance[i] };
+  qsort (points, n, sizeof *points, by_energy);
+  for (gsize i = 0; i < n; i++)
+    {
+      energy[i] = points[i].energy;
+      absorbance[i] = points[i].absorbance;
+    }
 }
 
 /* FALSE where the reading has no absorbance (a transmittance of 0 or less). */
@@ -125,9 +144,9 @@ absorbance_of (double y, BtYUnit unit, double *absorbance)
     }
 }
 
-/* Fills points with what can be used, in file order; returns their number and counts what cannot. */
+/* Fills the axes with what can be used, in file order; returns the number of points and counts what cannot. */
 static gsize
-usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark, guint *n_bad_x)
+usable_points (BtSpectrum *self, guint *n_missing, guint *n_dark, guint *n_bad_x)
 {
   const gboolean inverse = self->x_unit == BT_X_NM || self->x_unit == BT_X_UM;
   const double factor = bt_energy_ev_from_x (1, self->x_unit);
@@ -144,32 +163,37 @@ usable_points (BtSpectrum *self, Point *points, guint *n_missing, guint *n_dark,
       else if (!absorbance_of (self->raw_y[i], self->y_unit, &a))
         (*n_dark)++;
       else
-        points[n++] = (Point){ inverse ? factor / x : factor * x, a };
+        {
+          self->energy_ev[n] = inverse ? factor / x : factor * x;
+          self->absorbance[n++] = a;
+        }
     }
   return n;
 }
 
 /* Averages points of equal energy; returns how many are left. */
 static gsize
-merge_equal (Point *points, gsize n, guint *n_merged)
+merge_equal (double *energy, double *absorbance, gsize n, guint *n_merged)
 {
   gsize out = 1;
 
   /* Hardly any file has them. */
-  while (out < n && points[out].energy - points[out - 1].energy > 1e-12 * points[out].energy)
+  while (out < n && energy[out] - energy[out - 1] > 1e-12 * energy[out])
     out++;
   if (out >= n)
     return n;
   out = 0;
   for (gsize i = 0; i < n;)
     {
+      const double first = energy[i];
       double sum = 0;
       gsize k = i;
 
-      for (; k < n && points[k].energy - points[i].energy <= 1e-12 * points[i].energy; k++)
-        sum += points[k].absorbance;
+      for (; k < n && energy[k] - first <= 1e-12 * first; k++)
+        sum += absorbance[k];
       *n_merged += (guint) (k - i - 1);
-      points[out++] = (Point){ points[i].energy, sum / (double) (k - i) };
+      energy[out] = first;
+      absorbance[out++] = sum / (double) (k - i);
       i = k;
     }
   return out;
@@ -210,12 +234,13 @@ refuse (GError **error, int code, const char *text)
 static gboolean
 fill_axes (BtSpectrum *self, GError **error)
 {
-  g_autofree Point *points = g_new (Point, MAX (self->n_raw, 1));
   guint n_missing = 0, n_dark = 0, n_bad_x = 0, n_merged = 0;
-  gsize n = usable_points (self, points, &n_missing, &n_dark, &n_bad_x);
-  gsize n_beyond = 0;
+  gsize n, n_beyond = 0;
   double low = INFINITY, high = -INFINITY;
 
+  self->energy_ev = g_new (double, MAX (self->n_raw, 1));
+  self->absorbance = g_new (double, MAX (self->n_raw, 1));
+  n = usable_points (self, &n_missing, &n_dark, &n_bad_x);
   /* A few rows of zeros pad some files. */
   if (n_bad_x * 20 > n)
     {
@@ -227,8 +252,8 @@ fill_axes (BtSpectrum *self, GError **error)
                    n_bad_x);
       return FALSE;
     }
-  sort_points (points, n);
-  n = merge_equal (points, n, &n_merged);
+  sort_points (self->energy_ev, self->absorbance, n);
+  self->n = n = merge_equal (self->energy_ev, self->absorbance, n, &n_merged);
   if (n < BT_SPECTRUM_MIN_POINTS && n_merged > n)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
@@ -247,25 +272,22 @@ fill_axes (BtSpectrum *self, GError **error)
                    (guint) n, BT_SPECTRUM_MIN_POINTS);
       return FALSE;
     }
-  if (points[0].energy < 0.01 || points[n - 1].energy > 30)
+  if (self->energy_ev[0] < 0.01 || self->energy_ev[n - 1] > 30)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
                    _ ("%.4g to %.4g %s would be %.3g to %.3g eV, which no spectrophotometer measures; state another unit."),
-                   fmin (bt_x_from_energy_ev (points[0].energy, self->x_unit), bt_x_from_energy_ev (points[n - 1].energy, self->x_unit)),
-                   fmax (bt_x_from_energy_ev (points[0].energy, self->x_unit), bt_x_from_energy_ev (points[n - 1].energy, self->x_unit)),
-                   bt_x_unit_name (self->x_unit), points[0].energy, points[n - 1].energy);
+                   fmin (bt_x_from_energy_ev (self->energy_ev[0], self->x_unit), bt_x_from_energy_ev (self->energy_ev[n - 1], self->x_unit)),
+                   fmax (bt_x_from_energy_ev (self->energy_ev[0], self->x_unit), bt_x_from_energy_ev (self->energy_ev[n - 1], self->x_unit)),
+                   bt_x_unit_name (self->x_unit), self->energy_ev[0], self->energy_ev[n - 1]);
       return FALSE;
     }
-  self->n = n;
-  self->energy_ev = g_new (double, n);
-  self->absorbance = g_new (double, n);
   for (gsize i = 0; i < n; i++)
     {
-      self->energy_ev[i] = points[i].energy;
-      self->absorbance[i] = points[i].absorbance;
-      low = points[i].absorbance < low ? points[i].absorbance : low;
-      high = points[i].absorbance > high ? points[i].absorbance : high;
-      n_beyond += points[i].absorbance > MOST_ABSORBANCE ? 1 : 0;
+      const double absorbance = self->absorbance[i];
+
+      low = absorbance < low ? absorbance : low;
+      high = absorbance > high ? absorbance : high;
+      n_beyond += absorbance > MOST_ABSORBANCE ? 1 : 0;
     }
   if (!(high > low))
     {

@@ -3,6 +3,10 @@
 
 #include <string.h>
 
+/* Lines by which a file's rows are estimated, and the longest of them that is looked into. */
+#define GUESSED_LINES 8
+#define LONGEST_GUESSED 4096
+
 typedef struct {
   const BtText *text;
   BtRows *rows;
@@ -20,41 +24,6 @@ is_comment (const char *line, const char *end)
   while (line < end && (*line == ' ' || *line == '\t' || *line == '"'))
     line++;
   return line == end || *line == '#' || *line == '%' || *line == ';' || *line == '!' || (*line == '/' && line + 1 < end && line[1] == '/');
-}
-
-/* Most lines are plain numbers between delimiters; they are read in one pass. Returns where the line ends, NULL where it is anything else. */
-static const char *
-scan_plain_row (const char *at, const char *end, BtDialect dialect, double *numbers, gsize room, gsize *n)
-{
-  gsize count = 0;
-
-  for (;;)
-    {
-      const char *behind;
-
-      while (at < end && (*at == ' ' || (*at == '\t' && dialect.delimiter == ' ')))
-        at++;
-      if (count == room)
-        return NULL;
-      behind = bt_text_scan_plain (at, end, dialect.decimal, &numbers[count]);
-      if (behind == NULL)
-        behind = bt_text_scan_number (at, end, dialect.decimal, &numbers[count]);
-      at = behind;
-      if (at == NULL)
-        return NULL;
-      count++;
-      while (at < end && (*at == ' ' || (*at == '\t' && dialect.delimiter == ' ')))
-        at++;
-      if (at == end || *at == '\n' || *at == '\r')
-        {
-          *n = count;
-          return count >= 2 ? at : NULL;
-        }
-      if (dialect.delimiter == ' ' ? at == behind : *at != dialect.delimiter)
-        return NULL;
-      if (dialect.delimiter != ' ')
-        at++;
-    }
 }
 
 /* Makes room for a row like the widest one before it; wider ones take the slow way once. */
@@ -117,8 +86,18 @@ add_row (Scan *scan, const char *at, gsize n)
       rows->rows_room = 2 * rows->rows_room;
       rows->rows = g_renew (BtRow, rows->rows, rows->rows_room);
     }
-  rows->rows[rows->n_rows++] = (BtRow){ rows->n_values, (guint32) n, scan->line };
+  rows->rows[rows->n_rows++] = (BtRow){ (guint32) rows->n_values, (guint32) n };
+  rows->last_line = scan->line;
   rows->n_values += n;
+}
+
+static gboolean
+is_full (const double *values, gsize n)
+{
+  for (gsize i = 0; i < n; i++)
+    if (isnan (values[i]))
+      return FALSE;
+  return TRUE;
 }
 
 static void
@@ -127,14 +106,16 @@ scan_lines (Scan *scan)
   const BtText *text = scan->text;
   BtRows *rows = scan->rows;
   const BtDialect dialect = rows->dialect;
-  const char *at = text->at, *next;
+  const char *at = text->at, *next, *last_end = text->end;
 
+  while (last_end > at && last_end[-1] != '\n' && last_end[-1] != '\r')
+    last_end--;
   for (scan->line = 1; at < text->end; at = next)
     {
       guint lines = 1;
       gsize n;
       const gsize room = make_room (rows, 8);
-      const char *line_end = scan_plain_row (at, text->end, dialect, rows->values + rows->n_values, room, &n);
+      const char *line_end = at < last_end ? bt_text_scan_row (at, text->end, dialect, rows->values + rows->n_values, room, &n) : NULL;
 
       if (line_end != NULL)
         {
@@ -148,7 +129,7 @@ scan_lines (Scan *scan)
       if (scan_row (scan, at, line_end, &n))
         {
           add_row (scan, at, n);
-          scan->run.plain = FALSE;
+          scan->run.plain = scan->run.plain && is_full (rows->values + rows->n_values - n, n);
           scan->run_end = next;
         }
       else if (at == line_end)
@@ -232,20 +213,40 @@ join_runs (BtRows *rows, const GArray *runs)
     g_array_append_val (rows->tables, longest);
 }
 
+/* Room for the rows and values that the file seems to hold, by the lines in its middle: what is asked for need not grow, nor be paid for in vain. */
+static void
+guess_room (const BtText *text, BtRows *rows, BtField *fields)
+{
+  const gsize size = (gsize) (text->end - text->at);
+  const char *at, *start;
+  gsize lines = 0, n_fields = 2;
+
+  bt_text_line_end (text->at + size / 2, text->end, &start);
+  for (at = start; at < text->end && lines < GUESSED_LINES; lines++)
+    {
+      const char *next, *line_end = bt_text_line_end (at, text->end, &next);
+
+      if (line_end - at < LONGEST_GUESSED)
+        n_fields = MAX (n_fields, bt_text_fields (at, line_end, rows->dialect.delimiter, fields, BT_MAX_COLUMNS));
+      at = next;
+    }
+  rows->rows_room = 16 + (lines > 0 ? size / MAX ((gsize) (at - start) / lines, 4) : size / 16) / 8 * 9;
+  /* Fields are two bytes at least. */
+  rows->values_room = 16 + MIN (rows->rows_room * n_fields, size / 2);
+}
+
 static void
 read_rows (const BtText *text, BtRows *rows)
 {
   Scan scan = { .text = text, .rows = rows, .runs = g_array_new (FALSE, FALSE, sizeof (BtTable)), .run_end = text->at };
 
   bt_rows_clear (rows);
-  /* A guess that spares most files from growing; memory that is not used is not touched. */
-  rows->rows_room = (gsize) (text->end - text->at) / 12 + 16;
-  rows->values_room = 2 * rows->rows_room;
+  scan.fields = g_new (BtField, BT_MAX_COLUMNS);
+  guess_room (text, rows, scan.fields);
   rows->rows = g_new (BtRow, rows->rows_room);
   rows->values = g_new (double, rows->values_room);
   rows->tables = g_array_new (FALSE, TRUE, sizeof (BtTable));
   rows->percent = FALSE;
-  scan.fields = g_new (BtField, BT_MAX_COLUMNS);
   scan_lines (&scan);
   rows->below = scan.run_end;
   if (rows->n_rows > 0)
@@ -267,7 +268,7 @@ bt_text_rows (const BtText *text, BtRows *rows)
           for (guint i = 0; i < rows->tables->len; i++)
             lines += g_array_index (rows->tables, BtTable, i).n_rows;
           /* The lines looked at may have held no decimals: what is left over tells. */
-          if (lines >= BT_SPECTRUM_MIN_POINTS && lines * 10 >= (gsize) rows->rows[rows->n_rows - 1].line * 9
+          if (lines >= BT_SPECTRUM_MIN_POINTS && lines * 10 >= (gsize) rows->last_line * 9
                                                                  - g_array_index (rows->tables, BtTable, 0).first_line * 9)
             return TRUE;
         }

@@ -17,31 +17,8 @@ G_GNUC_INTERNAL const char *bt_text_line_end (const char *at, const char *end, c
 /* The number at the very beginning of @at, with this decimal sign: returns where it ends, NULL where there is none.
  * NAN where it is too large for a double. */
 G_GNUC_INTERNAL const char *bt_text_scan_number (const char *at, const char *end, char decimal, double *value);
-/* The same, made for the commonest numbers: a sign, a few digits with or without a decimal sign. Returns NULL where it is anything else. */
-static inline const char *
-bt_text_scan_plain (const char *at, const char *end, char decimal, double *value)
-{
-  static const double powers[] = { 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15 };
-  const gboolean negative = at < end && *at == '-';
-  const char *start = at += negative, *point;
-  guint64 digits = 0;
-
-  for (; at < end && (guint8) (*at - '0') < 10; at++)
-    digits = digits * 10 + (guint64) (*at - '0');
-  point = at;
-  if (at == start)
-    return NULL;
-  if (at < end && *at == decimal)
-    for (point = ++at; at < end && (guint8) (*at - '0') < 10; at++)
-      digits = digits * 10 + (guint64) (*at - '0');
-  /* Up to 15 digits are an exact integer below 2^53. */
-  if (at - start > 15 || (at < end && (*at | 0x20) >= 'a') || (at == point && point[-1] == decimal))
-    return NULL;
-  *value = (double) digits / powers[at - point];
-  if (negative)
-    *value = -*value;
-  return at;
-}
+/* @digits times 10^@power, rounded once and half to even, as strtod does. FALSE where that is not decided, or not a normal number. */
+G_GNUC_INTERNAL gboolean bt_text_round_decimal (guint64 digits, int power, double *value);
 /* A number in exactly @n characters; also takes what only whole fields may have: a true minus sign, a per cent sign behind. */
 G_GNUC_INTERNAL gboolean bt_text_number (const char *text, gsize n, char decimal, double *value);
 /* Empty, "-", "NaN", "OVER", "****" and their like: a reading that is not there. */
@@ -64,6 +41,9 @@ G_GNUC_INTERNAL char *bt_text_words (const char *text, gsize n);
 G_GNUC_INTERNAL gsize bt_text_fields (const char *line, const char *end, char delimiter, BtField *fields, gsize max);
 /* Splits a line and judges it as a row of a table: its first field that is not empty is a number, another one a number or missing. */
 G_GNUC_INTERNAL BtRowKind bt_text_row (const char *line, const char *end, BtDialect dialect, BtField *fields, gsize *n);
+/* Most lines are plain numbers between delimiters; they are read in one pass. Returns where the line ends, NULL where it is anything else, or holds more
+ * than @room numbers. A line end must stand somewhere from @at on, before @end. */
+G_GNUC_INTERNAL const char *bt_text_scan_row (const char *at, const char *end, BtDialect dialect, double *numbers, gsize room, gsize *n);
 /* The dialect in which most lines are rows with one number of fields: judged by some lines, or by all where @all. FALSE where none is. */
 G_GNUC_INTERNAL gboolean bt_text_sniff (const BtText *text, gboolean all, BtDialect *dialect);
 
@@ -76,11 +56,13 @@ typedef struct {
   guint32 least, most;          /* fields of its rows; all of them are numbers where both are equal and @plain */
   gboolean plain;
 } BtTable;
-typedef struct { gsize start; guint32 n, line; } BtRow;
+/* No file holds more numbers than bytes. */
+typedef struct { guint32 start, n; } BtRow;
 typedef struct {
   double *values;               /* row behind row; NAN for missing */
   BtRow *rows;
   gsize n_values, n_rows, values_room, rows_room;
+  guint last_line;              /* of the last row */
   GArray *tables;               /* of BtTable: those with enough rows, or else the longest one */
   const char *below;            /* text behind the last row */
   BtDialect dialect;
