@@ -40,6 +40,18 @@ fill_excluded (DeskSection *section, const BtRecipe *recipe)
   desk_line_set_value (desk_section_field (section, (DeskField){ .id = DESK_FIELD_EXCLUDED }), "%s", _("add a range"));
 }
 
+/* (nullable): what the ensemble says with a tail of the groups. */
+static char *
+ensemble_text (const BtTally *tally, const BtTailTally *tail)
+{
+  const BtTailTally *ensemble = &tally->ensembles[tail - tally->tails];
+  g_autofree char *fraction = desk_text_uncertain (ensemble->fraction, ensemble->fraction_u, NULL);
+  g_autofree char *weight = desk_text_percent (ensemble->weight, 0);
+  if (isnan (ensemble->fraction))
+    return NULL;
+  return g_strdup_printf (_("ensemble: weight %s, fraction %s, misfit %.2f × noise"), weight, fraction, ensemble->misfit);
+}
+
 void
 desk_ledger_fill_tail (DeskSection *section, const DeskAccount *account)
 {
@@ -55,7 +67,9 @@ desk_ledger_fill_tail (DeskSection *section, const DeskAccount *account)
         {
           g_autofree char *weight = desk_text_percent (tail->weight, tail->weight > 0.0005 && tail->weight < 0.9995 ? 1 : 0);
           g_autofree char *fraction = desk_text_uncertain (tail->fraction, tail->fraction_u, NULL);
-          g_autofree char *detail = g_strdup_printf (_("fraction %s, misfit %.2f × noise"), fraction, tail->misfit);
+          g_autofree char *groups = g_strdup_printf (_("fraction %s, misfit %.2f × noise"), fraction, tail->misfit);
+          g_autofree char *ensemble = ensemble_text (tally, tail);
+          g_autofree char *detail = ensemble ? g_strconcat (groups, "\n", ensemble, NULL) : g_strdup (groups);
           if (tally->n_tails == 1 && desk_film_is_previewing (account->desk_film))
             desk_line_set_value (line, "%s", _("followed now"));
           else

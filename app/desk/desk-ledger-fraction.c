@@ -56,12 +56,43 @@ fill_outcome (DeskSection *section, const BtTally *tally)
     }
 }
 
+/* What each model says and how much it counts. */
+static void
+fill_models (DeskSection *section, const BtTally *tally)
+{
+  if (!(tally->models[BT_MODEL_ENSEMBLE].weight > 0))
+    return;
+  desk_section_subheading (section, _("Models"));
+  for (BtModelKind kind = 0; kind < BT_N_MODELS; kind++)
+    {
+      const BtModelTally *model = &tally->models[kind];
+      DeskLine *line = desk_section_line (section, bt_model_title (kind), "model %d", kind);
+      g_autofree char *fraction = desk_text_uncertain (model->fraction, model->fraction_u, NULL);
+      g_autofree char *weight = desk_text_percent (model->weight, model->weight > 0.0005 && model->weight < 0.9995 ? 1 : 0);
+      g_autofree char *detail = g_strdup_printf (_("weight %s, misfit %.2f × noise"), weight, model->misfit);
+      if (kind == BT_MODEL_ENSEMBLE)
+        {
+          g_autofree char *mean = desk_text_uncertain (model->diameter.mean_nm, model->diameter_u_nm, "nm");
+          g_autofree char *spread = desk_text_number (model->diameter.spread_nm, 2, "nm");
+          g_autofree char *population = g_strdup_printf (_("diameters %s, spread %s"), mean, spread);
+          char *both = g_strconcat (detail, "\n", population, NULL);
+          g_free (detail);
+          detail = both;
+        }
+      desk_line_set_value (line, "%s", fraction);
+      desk_line_set_detail (line, detail);
+    }
+}
+
 void
 desk_ledger_fill_fraction (DeskSection *section, const DeskAccount *account)
 {
   const BtRecipe *recipe = account->recipe;
   if (account->tally)
-    fill_outcome (section, account->tally);
+    {
+      fill_outcome (section, account->tally);
+      fill_models (section, account->tally);
+    }
   DeskLine *line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_RATIO });
   desk_line_set_value (line, "%g", recipe->strength_ratio);
   line = desk_section_field (section, (DeskField){ .id = DESK_FIELD_RATIO_U });

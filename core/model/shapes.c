@@ -10,10 +10,10 @@
 
 #define LN16 2.772588722239781 /* 4 ln 2 */
 
-static const struct { const char *name; const char *title; } tails[BT_N_TAILS] = {
-  [BT_TAIL_PLASMON] = { "plasmon", N_ ("π-plasmon Lorentzian") },
-  [BT_TAIL_POWER] = { "power", N_ ("power law in wavelength") },
-  [BT_TAIL_EXPONENTIAL] = { "exponential", N_ ("exponential in wavelength") },
+static const struct { const char *name; const char *title; const char *short_title; } tails[BT_N_TAILS] = {
+  [BT_TAIL_PLASMON] = { "plasmon", N_ ("π-plasmon Lorentzian"), N_ ("π-plasmon") },
+  [BT_TAIL_POWER] = { "power", N_ ("power law in wavelength"), N_ ("power law") },
+  [BT_TAIL_EXPONENTIAL] = { "exponential", N_ ("exponential in wavelength"), N_ ("exponential") },
 };
 
 const char *
@@ -28,6 +28,13 @@ bt_tail_title (BtTailKind kind)
 {
   g_return_val_if_fail (kind < BT_N_TAILS, NULL);
   return _ (tails[kind].title);
+}
+
+const char *
+bt_tail_short_title (BtTailKind kind)
+{
+  g_return_val_if_fail (kind < BT_N_TAILS, NULL);
+  return _ (tails[kind].short_title);
 }
 
 gboolean

@@ -112,6 +112,9 @@ bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally,
     {
       const BtBudgetLine *line = &g_array_index (tally->budget, BtBudgetLine, i);
 
+      /* What would read 0.00 gives nothing. */
+      if (line->u < 5e-5)
+        continue;
       bt_grid_take (grid, BT_FACE_BODY, g_strdup (line->title));
       bt_grid_take (grid, BT_FACE_BODY, g_strdup_printf ("%.2f", 100 * line->u));
       bt_grid_take_bar (grid, most > 0 ? line->u / most : 0);
@@ -125,19 +128,58 @@ bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally,
   bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
 }
 
-void
-bt_report_add_tails (BtFlow *flow, PangoContext *context, const BtTally *tally, double width)
+/* "groups 0.73, 0.25, 0.02": weights in the order of the rows. */
+static char *
+weights_text (const BtTally *tally)
+{
+  GString *text = g_string_new (NULL);
+
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    {
+      const BtTailTally *tails = m == BT_MODEL_GROUPS ? tally->tails : tally->ensembles;
+
+      g_string_append (text, m == BT_MODEL_GROUPS ? _ ("groups ") : _ ("; ensemble "));
+      for (guint t = 0; t < tally->n_tails; t++)
+        g_string_append_printf (text, "%s%.2f", t > 0 ? ", " : "", tails[t].weight);
+    }
+  return g_string_free (text, FALSE);
+}
+
+/* Tails of the groups beside those of the ensemble. */
+static void
+add_two_models (BtFlow *flow, PangoContext *context, const BtTally *tally, double width)
 {
   static const BtColumnKind kinds[] = { BT_COLUMN_LEFT, BT_COLUMN_RIGHT, BT_COLUMN_RIGHT };
-  BtGrid *grid;
+  BtGrid *grid = bt_grid_new (3, kinds);
+  g_autofree char *weights = weights_text (tally), *note = NULL;
 
-  bt_flow_add (flow, bt_block_new_heading (context, _ ("Tails"), width), 11);
-  if (tally->n_tails == 0)
+  bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Fraction by tail")));
+  bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Groups")));
+  bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Ensemble")));
+  for (guint t = 0; t < tally->n_tails; t++)
     {
-      bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, _ ("No tail was fitted."), width), 4);
-      return;
+      bt_grid_take (grid, BT_FACE_BODY, g_strdup (bt_tail_short_title (tally->tails[t].kind)));
+      bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (tally->tails[t].fraction, tally->tails[t].fraction_u));
+      bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (tally->ensembles[t].fraction, tally->ensembles[t].fraction_u));
     }
-  grid = bt_grid_new (3, kinds);
+  bt_grid_take (grid, BT_FACE_STRONG, g_strdup (_ ("all tails")));
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    bt_grid_take (grid, BT_FACE_STRONG, bt_format_uncertain (tally->models[m].fraction, tally->models[m].fraction_u));
+  bt_grid_take (grid, BT_FACE_BODY, g_strdup (_ ("weight")));
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    bt_grid_take (grid, BT_FACE_BODY, g_strdup_printf ("%.3f", tally->models[m].weight));
+  bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
+  note = g_strdup_printf (_ ("Weights of the tails: %s. Residual over noise: groups %.3g, ensemble %.3g."), weights, tally->models[BT_MODEL_GROUPS].misfit,
+                          tally->models[BT_MODEL_ENSEMBLE].misfit);
+  bt_flow_add (flow, bt_block_new_text (context, BT_FACE_NOTE, note, width), 3);
+}
+
+static void
+add_one_model (BtFlow *flow, PangoContext *context, const BtTally *tally, double width)
+{
+  static const BtColumnKind kinds[] = { BT_COLUMN_LEFT, BT_COLUMN_RIGHT, BT_COLUMN_RIGHT };
+  BtGrid *grid = bt_grid_new (3, kinds);
+
   bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Tail")));
   bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Weight")));
   bt_grid_take (grid, BT_FACE_NOTE, g_strdup (_ ("Fraction")));
@@ -150,6 +192,20 @@ bt_report_add_tails (BtFlow *flow, PangoContext *context, const BtTally *tally, 
       bt_grid_take (grid, BT_FACE_BODY, bt_format_uncertain (tail->fraction, tail->fraction_u));
     }
   bt_flow_add (flow, bt_block_new_grid (context, grid, TRUE, TRUE, width), 4);
+}
+
+void
+bt_report_add_tails (BtFlow *flow, PangoContext *context, const BtTally *tally, double width)
+{
+  const gboolean two = tally->models[BT_MODEL_ENSEMBLE].weight > 0;
+
+  bt_flow_add (flow, bt_block_new_heading (context, two ? _ ("Models and tails") : _ ("Tails"), width), 11);
+  if (tally->n_tails == 0)
+    {
+      bt_flow_add (flow, bt_block_new_text (context, BT_FACE_BODY, _ ("No tail was fitted."), width), 4);
+      return;
+    }
+  (two ? add_two_models : add_one_model) (flow, context, tally, width);
   if (!isnan (tally->tail_share_at_s22))
     {
       g_autofree char *share

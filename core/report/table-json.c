@@ -177,13 +177,14 @@ put_groups (JsonBuilder *builder, const BtTally *tally)
   json_builder_end_object (builder);
 }
 
+/* The tails of one model; weights are among them. */
 static void
-put_tails (JsonBuilder *builder, const BtTally *tally)
+put_tails_of (JsonBuilder *builder, const BtTally *tally, const BtTailTally *tails)
 {
   begin_array (builder, "tails");
   for (guint i = 0; i < tally->n_tails; i++)
     {
-      const BtTailTally *tail = &tally->tails[i];
+      const BtTailTally *tail = &tails[i];
 
       json_builder_begin_object (builder);
       put_string (builder, "name", bt_tail_name (tail->kind));
@@ -195,7 +196,41 @@ put_tails (JsonBuilder *builder, const BtTally *tally)
       json_builder_end_object (builder);
     }
   json_builder_end_array (builder);
+}
+
+static void
+put_models (JsonBuilder *builder, const BtTally *tally)
+{
+  begin_array (builder, "models");
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    {
+      const BtModelTally *model = &tally->models[m];
+
+      if (!(model->weight > 0) && !isfinite (model->misfit))
+        continue;
+      json_builder_begin_object (builder);
+      put_string (builder, "name", bt_model_name ((BtModelKind) m));
+      put_number (builder, "weight", model->weight);
+      put_number (builder, "fraction", model->fraction);
+      put_number (builder, "fraction_u", model->fraction_u);
+      put_number (builder, "misfit", model->misfit);
+      put_number (builder, "structure", model->structure);
+      put_number (builder, "parameters", model->n_parameters);
+      put_number (builder, "diameter_mean_nm", model->diameter.mean_nm);
+      put_number (builder, "diameter_mean_u_nm", model->diameter_u_nm);
+      put_number (builder, "diameter_spread_nm", model->diameter.spread_nm);
+      put_tails_of (builder, tally, m == BT_MODEL_GROUPS ? tally->tails : tally->ensembles);
+      json_builder_end_object (builder);
+    }
+  json_builder_end_array (builder);
+}
+
+static void
+put_tails (JsonBuilder *builder, const BtTally *tally)
+{
+  put_tails_of (builder, tally, tally->tails);
   put_number (builder, "tail_share_at_s22", tally->tail_share_at_s22);
+  put_models (builder, tally);
 }
 
 typedef enum

@@ -167,23 +167,44 @@ append_groups (GString *out, BtFilm *film, const BtTally *tally)
 static void
 append_tails (GString *out, const BtTally *tally)
 {
-  BtColumns *columns = bt_columns_new (3);
+  const gboolean two = tally->models[BT_MODEL_ENSEMBLE].weight > 0;
+  const guint n = two ? 5 : 3;
+  BtColumns *columns = bt_columns_new (n);
 
-  bt_columns_set_right (columns, 1, TRUE);
-  bt_columns_set_right (columns, 2, TRUE);
+  for (guint c = 1; c < n; c++)
+    bt_columns_set_right (columns, c, TRUE);
   bt_columns_take (columns, g_strdup (_ ("Tail")));
-  bt_columns_take (columns, g_strdup (_ ("Weight")));
+  bt_columns_take (columns, g_strdup (two ? _ ("Groups: weight") : _ ("Weight")));
   bt_columns_take (columns, g_strdup (_ ("Fraction")));
+  if (two)
+    {
+      bt_columns_take (columns, g_strdup (_ ("Ensemble: weight")));
+      bt_columns_take (columns, g_strdup (_ ("Fraction")));
+    }
   for (guint i = 0; i < tally->n_tails; i++)
     {
-      const BtTailTally *tail = &tally->tails[i];
+      const BtTailTally *tail = &tally->tails[i], *ensemble = &tally->ensembles[i];
 
       bt_columns_take (columns, g_strdup (bt_tail_title (tail->kind)));
       bt_columns_take (columns, g_strdup_printf ("%.3f", tail->weight));
       bt_columns_take (columns, bt_format_uncertain (tail->fraction, tail->fraction_u));
+      if (two)
+        {
+          bt_columns_take (columns, g_strdup_printf ("%.3f", ensemble->weight));
+          bt_columns_take (columns, bt_format_uncertain (ensemble->fraction, ensemble->fraction_u));
+        }
     }
-  append_heading (out, _ ("Tails"));
-  bt_columns_append (columns, 3, 2, out);
+  if (two)
+    {
+      bt_columns_take (columns, g_strdup (_ ("the model's own weight")));
+      for (guint m = 0; m < BT_N_MODELS; m++)
+        {
+          bt_columns_take (columns, g_strdup_printf ("%.3f", tally->models[m].weight));
+          bt_columns_take (columns, bt_format_uncertain (tally->models[m].fraction, tally->models[m].fraction_u));
+        }
+    }
+  append_heading (out, two ? _ ("Models and tails") : _ ("Tails"));
+  bt_columns_append (columns, n, 2, out);
   bt_columns_free (columns);
   if (!isnan (tally->tail_share_at_s22))
     {
@@ -194,6 +215,24 @@ append_tails (GString *out, const BtTally *tally)
       g_free (line);
       g_free (share);
     }
+}
+
+/* How well each model follows the film, and the population that the ensemble sees. */
+static void
+append_models (GString *out, const BtTally *tally)
+{
+  const BtModelTally *groups = &tally->models[BT_MODEL_GROUPS], *ensemble = &tally->models[BT_MODEL_ENSEMBLE];
+  char *mean;
+
+  if (!(ensemble->weight > 0))
+    return;
+  g_string_append (out, "  ");
+  g_string_append_printf (out, _ ("Residual: %.3g times the noise by groups of bands, %.3g times by the ensemble."), groups->misfit, ensemble->misfit);
+  mean = bt_format_uncertain (ensemble->diameter.mean_nm, ensemble->diameter_u_nm);
+  g_string_append (out, "\n  ");
+  g_string_append_printf (out, _ ("The ensemble's diameters: mean %s nm, spread %.3f nm."), mean, ensemble->diameter.spread_nm);
+  g_string_append_c (out, '\n');
+  g_free (mean);
 }
 
 static void
@@ -362,6 +401,7 @@ append_account (GString *out, BtFilm *film, const BtTally *tally, int width)
   g_string_append_printf (out, "  %s: %s\n", _ ("Diameters, nm (mean ± spread)"), diameter);
   append_groups (out, film, tally);
   append_tails (out, tally);
+  append_models (out, tally);
   append_budget (out, tally);
   append_readings (out, tally, width);
   append_flags (out, tally, width);

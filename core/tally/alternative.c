@@ -15,13 +15,22 @@ widen_budget (BtTally *tally, double variance)
     }
 }
 
+/* Where the ensemble of one window follows the film and that of the other misses it by half as much again, the other window is none. */
+static gboolean
+is_refuted (const BtTally *tally, const BtTally *other)
+{
+  const BtModelTally *here = &tally->models[BT_MODEL_ENSEMBLE], *there = &other->models[BT_MODEL_ENSEMBLE];
+
+  return here->weight > 0.99 && there->weight > 0 && there->misfit > 1.5 * here->misfit;
+}
+
 void
 bt_tally_admit_alternative (BtTally *tally, const BtTally *other)
 {
   BtFraction *fraction = &tally->fraction;
   double half;
 
-  if (fraction->bound == BT_BOUND_NONE || other->fraction.bound == BT_BOUND_NONE)
+  if (fraction->bound == BT_BOUND_NONE || other->fraction.bound == BT_BOUND_NONE || is_refuted (tally, other))
     return;
   /* Either may be true, so the mean is one of two values half their difference away. */
   half = (other->fraction.value - fraction->value) / 2;

@@ -19,6 +19,15 @@
 #define SEED 20190520
 
 double
+bt_doping_u (double area_s11, double area_s22)
+{
+  const double lost = area_s22 > 0 && area_s11 >= 0 ? 1 - area_s11 / area_s22 : 0;
+
+  /* Root mean square of a loss that is rectangular between 0 and a fifth. */
+  return lost > 0 ? 0.2 / sqrt (3) * lost : 0;
+}
+
+double
 bt_area_fraction (double area_s, double area_m, double strength_ratio)
 {
   return area_s / (area_s + strength_ratio * area_m);
@@ -143,7 +152,9 @@ bt_candidate_init (BtCandidate *candidate, const BtFilmFit *fit, const BtPrepare
   double gs[BT_MODEL_MAX_PARAMETERS] = { 0 }, gm[BT_MODEL_MAX_PARAMETERS] = { 0 }, gf[BT_MODEL_MAX_PARAMETERS];
   double room = fmax (prepared->n_effective - bt_fit_parameters (fit), prepared->n_effective / 6), sum;
 
+  candidate->model = BT_MODEL_GROUPS;
   candidate->fit = fit;
+  candidate->n_steps = fit->n_steps;
   candidate->scale = fmax (1, fit->chi2 / room);
   candidate->area_s = bt_film_fit_group_area (fit, BT_S22, gs);
   candidate->area_m = bt_film_fit_group_area (fit, BT_M11, gm);
@@ -159,6 +170,8 @@ bt_candidate_init (BtCandidate *candidate, const BtFilmFit *fit, const BtPrepare
   if (candidate->area_m < 0 && candidate->area_m * candidate->area_m > candidate->var_mm)
     candidate->var_mm = candidate->area_m * candidate->area_m;
   candidate->step_share = step_share (fit, gf, bt_film_fit_covariance_of (fit, gf, gf));
+  if (fit->n_in_group[BT_S11] > 0)
+    candidate->doping_u = bt_doping_u (bt_film_fit_group_area (fit, BT_S11, NULL), candidate->area_s);
   find_ambiguous (candidate, prepared);
 }
 
@@ -207,7 +220,8 @@ candidate_variance (const BtCandidate *candidate, double k)
   double s, m;
 
   areas_stated (candidate, &s, &m);
-  return fraction_variance (s, m, k, candidate->var_ss, candidate->var_mm, candidate->var_sm) + ambiguous_variance (candidate, s, m, k);
+  return fraction_variance (s, m, k, candidate->var_ss + pow (s * candidate->doping_u, 2), candidate->var_mm, candidate->var_sm)
+         + ambiguous_variance (candidate, s, m, k);
 }
 
 static int
@@ -243,6 +257,7 @@ draw_fractions (double *draws, const BtCandidate *candidates, gsize n, const BtR
       s = gsl_ran_gaussian_ziggurat (rng, us);
       m = candidate->area_m - shift + slope * s + gsl_ran_gaussian_ziggurat (rng, rest);
       s += candidate->area_s;
+      s *= 1 + gsl_ran_gaussian_ziggurat (rng, candidate->doping_u);
       for (guint a = 0; a < candidate->n_ambiguous; a++)
         if (gsl_rng_uniform (rng) < candidate->ambiguous[a].probability)
           move_area (&candidate->ambiguous[a], 1, &s, &m);
@@ -279,39 +294,53 @@ static double
 fill_budget (BtTally *tally, const BtCandidate *candidates, gsize n, double mean)
 {
   const double k = tally->recipe->strength_ratio, uk = tally->recipe->strength_ratio_u;
-  double noise = 0, structure = 0, step = 0, between_tails = 0, plans = 0, ratio = mean * (1 - mean) / k * uk;
-  gboolean any_step = FALSE;
+  double noise = 0, structure = 0, step = 0, doping = 0, between_tails = 0, between_models = 0, plans = 0, ratio = mean * (1 - mean) / k * uk;
+  gboolean any_step = FALSE, two_models = tally->models[BT_MODEL_ENSEMBLE].weight > 0;
 
-  for (guint t = 0; t < tally->n_tails; t++)
+  for (guint m = 0; m < BT_N_MODELS; m++)
     {
-      double weight = tally->tails[t].weight, f = tally->tails[t].fraction;
+      const BtModelTally *model = &tally->models[m];
 
-      if (weight > 0 && isfinite (f))
-        between_tails += weight * (f - mean) * (f - mean);
+      if (!(model->weight > 0) || !isfinite (model->fraction))
+        continue;
+      between_models += model->weight * (model->fraction - mean) * (model->fraction - mean);
+      for (guint t = 0; t < tally->n_tails; t++)
+        {
+          const BtTailTally *tail = m == BT_MODEL_GROUPS ? &tally->tails[t] : &tally->ensembles[t];
+
+          if (tail->weight > 0 && isfinite (tail->fraction))
+            between_tails += model->weight * tail->weight * (tail->fraction - model->fraction) * (tail->fraction - model->fraction);
+        }
     }
   for (gsize c = 0; c < n; c++)
     {
       const BtCandidate *candidate = &candidates[c];
-      double s, m, f, all, from_noise, w = candidate->weight, tail_f = tally->tails[candidate->tail].fraction;
+      const BtTailTally *tail = candidate->model == BT_MODEL_GROUPS ? &tally->tails[candidate->tail] : &tally->ensembles[candidate->tail];
+      double s, m, f, all, from_noise, w = candidate->weight;
 
       areas_stated (candidate, &s, &m);
       f = bt_area_fraction (s, m, k);
       all = fraction_variance (s, m, k, candidate->var_ss, candidate->var_mm, candidate->var_sm);
       from_noise = fmin (all, fraction_variance (s, m, k, candidate->noise_ss, candidate->noise_mm, candidate->noise_sm));
-      any_step = any_step || candidate->fit->n_steps > 0;
+      doping += w * pow (f * (1 - f) * candidate->doping_u, 2);
+      any_step = any_step || candidate->n_steps > 0;
       step += w * all * candidate->step_share;
       noise += w * from_noise * (1 - candidate->step_share);
       structure += w * (all - from_noise) * (1 - candidate->step_share);
-      plans += w * ((f - tail_f) * (f - tail_f) + ambiguous_variance (candidate, s, m, k));
+      plans += w * ((f - tail->fraction) * (f - tail->fraction) + ambiguous_variance (candidate, s, m, k));
     }
   add_line (tally, "noise", _ ("noise of the reading"), noise);
   add_line (tally, "residual structure", _ ("structure that no band follows"), structure);
   add_line (tally, "tail", _ ("choice of tail"), between_tails);
   add_line (tally, "band plan", _ ("band plan: number and assignment of bands"), plans);
+  if (two_models)
+    add_line (tally, "model", _ ("choice of model: groups or ensemble"), between_models);
   add_line (tally, "strength ratio", _ ("strength ratio S22 : M11"), ratio * ratio);
   if (any_step)
     add_line (tally, "detector step", _ ("detector step"), step);
-  return noise + structure + step + between_tails + plans + ratio * ratio;
+  if (doping > 0)
+    add_line (tally, "doping", _ ("doping: what S22 may have lost"), doping);
+  return noise + structure + step + doping + between_tails + between_models + plans + ratio * ratio;
 }
 
 void
@@ -346,45 +375,77 @@ stated_fraction (double area_s, double area_m, double k)
   return area_s + area_m > 0 ? bt_area_fraction (area_s, area_m, k) : 0.5;
 }
 
-/* Mean fraction of each tail and of all, from mean areas; the mean of all is returned. */
+/* Mean areas of the candidates that @accept, and the spread of their fractions, their own variance included. FALSE where there is none. */
+typedef struct { double weight, area_s, area_m, fraction, variance; } Average;
+
+static gboolean
+average (const BtCandidate *candidates, gsize n, BtModelKind model, int tail, double k, Average *out)
+{
+  *out = (Average){ 0 };
+  for (int pass = 0; pass < 2; pass++)
+    {
+      for (gsize c = 0; c < n; c++)
+        {
+          /* A weight may round to nothing; its tail's own average still has to have one. */
+          double w = fmax (candidates[c].weight, 1e-300), s, m;
+
+          if (candidates[c].model != model || (tail >= 0 && candidates[c].tail != (guint) tail))
+            continue;
+          bt_candidate_expected (&candidates[c], &s, &m);
+          if (pass == 0)
+            {
+              out->weight += w;
+              out->area_s += w * s;
+              out->area_m += w * m;
+            }
+          else
+            {
+              double f = stated_fraction (s, m, k);
+
+              out->variance += w / out->weight * ((f - out->fraction) * (f - out->fraction) + candidate_variance (&candidates[c], k));
+            }
+        }
+      if (!(out->weight > 0))
+        return FALSE;
+      if (pass == 0)
+        {
+          out->area_s /= out->weight;
+          out->area_m /= out->weight;
+          out->fraction = stated_fraction (out->area_s, out->area_m, k);
+        }
+    }
+  return TRUE;
+}
+
+/* Mean fraction of each tail, each model and all, from mean areas; that of all is returned. */
 static double
 average_fractions (BtTally *tally, const BtCandidate *candidates, gsize n)
 {
   const double k = tally->recipe->strength_ratio;
   double all_s = 0, all_m = 0;
 
-  for (guint t = 0; t < tally->n_tails; t++)
+  for (guint m = 0; m < BT_N_MODELS; m++)
     {
-      double sum_s = 0, sum_m = 0, sum_w = 0, spread = 0, f;
+      Average mean;
 
-      for (gsize c = 0; c < n; c++)
-        if (candidates[c].tail == t)
+      for (guint t = 0; t < tally->n_tails; t++)
+        if (average (candidates, n, (BtModelKind) m, (int) t, k, &mean))
           {
-            /* A weight may round to nothing; its tail's own average still has to have one. */
-            double w = fmax (candidates[c].weight, 1e-300), s, m;
+            BtTailTally *tail = m == BT_MODEL_GROUPS ? &tally->tails[t] : &tally->ensembles[t];
 
-            bt_candidate_expected (&candidates[c], &s, &m);
-            sum_w += w;
-            sum_s += w * s;
-            sum_m += w * m;
-            all_s += candidates[c].weight * s;
-            all_m += candidates[c].weight * m;
+            tail->fraction = mean.fraction;
+            /* No quantity between 0 and 1 has a larger standard deviation than 0.5. */
+            tail->fraction_u = fmin (sqrt (mean.variance), 0.5);
           }
-      if (!(sum_w > 0))
+      if (!average (candidates, n, (BtModelKind) m, -1, k, &mean))
         continue;
-      f = stated_fraction (sum_s, sum_m, k);
-      for (gsize c = 0; c < n; c++)
-        if (candidates[c].tail == t)
-          {
-            double w = fmax (candidates[c].weight, 1e-300) / sum_w, s, m, g;
-
-            bt_candidate_expected (&candidates[c], &s, &m);
-            g = stated_fraction (s, m, k);
-            spread += w * ((g - f) * (g - f) + candidate_variance (&candidates[c], k));
-          }
-      tally->tails[t].fraction = f;
-      /* No quantity between 0 and 1 has a larger standard deviation than 0.5. */
-      tally->tails[t].fraction_u = fmin (sqrt (spread), 0.5);
+      tally->models[m].fraction = mean.fraction;
+      tally->models[m].fraction_u = fmin (sqrt (mean.variance), 0.5);
+      if (tally->models[m].weight > 0)
+        {
+          all_s += tally->models[m].weight * mean.area_s;
+          all_m += tally->models[m].weight * mean.area_m;
+        }
     }
   return stated_fraction (all_s, all_m, k);
 }
@@ -451,7 +512,7 @@ bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const
   tally->m11_decision = tally->m11_detection = NAN;
   tally->verdict = BT_VERDICT_NOT_JUDGED;
   tally->conformance = tally->acceptance_limit = tally->refusal_limit = NAN;
-  if (n == 0 || candidates[0].fit->n_in_group[BT_S22] == 0 || candidates[0].fit->n_in_group[BT_M11] == 0)
+  if (n == 0 || prepared->n_in_group[BT_S22] == 0 || prepared->n_in_group[BT_M11] == 0)
     return;
   mean = average_fractions (tally, candidates, n);
   detection_limits (tally, candidates, n, &area_m);
@@ -459,7 +520,12 @@ bt_fraction_tally (BtTally *tally, const BtCandidate *candidates, gsize n, const
   if (area_m < tally->m11_decision && !sees_s22 (candidates, n))
     {
       for (guint t = 0; t < tally->n_tails; t++)
-        tally->tails[t].fraction = tally->tails[t].fraction_u = NAN;
+        {
+          tally->tails[t].fraction = tally->tails[t].fraction_u = NAN;
+          tally->ensembles[t].fraction = tally->ensembles[t].fraction_u = NAN;
+        }
+      for (guint m = 0; m < BT_N_MODELS; m++)
+        tally->models[m].fraction = tally->models[m].fraction_u = NAN;
       return;
     }
   variance = fill_budget (tally, candidates, n, mean);

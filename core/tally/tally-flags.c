@@ -69,6 +69,9 @@ flag_overlap (BtTally *tally)
 {
   double overlap = bt_band_plan_overlap (&tally->plan);
 
+  /* Where the ensemble decides it has told them apart as well as the interval says. */
+  if (tally->models[BT_MODEL_ENSEMBLE].weight > 0.99)
+    return;
   if (tally->fraction.bound != BT_BOUND_NONE && tally->s22_m11_correlation < -0.5)
     add (tally, bt_flag_new ("overlap", _ ("S22 and M11 overlap so much that the data tell only their sum well (correlation %.2f); the "
                                            "interval is wide for that reason. Narrow the diameter window if the material is known."),
@@ -111,6 +114,21 @@ flag_doping (BtTally *tally)
                              s11->area / s22->area));
 }
 
+/* The groups' numbers are for the eye where the ensemble decides. */
+static void
+flag_models (BtTally *tally)
+{
+  const BtModelTally *groups = &tally->models[BT_MODEL_GROUPS], *ensemble = &tally->models[BT_MODEL_ENSEMBLE];
+
+  if (tally->recipe->held->len > 0 && tally->fraction.bound != BT_BOUND_NONE)
+    add (tally, bt_flag_new ("held-by-hand", _ ("Numbers of bands are held by hand, so the fraction rests on the groups of bands alone. Release them to have "
+                                                "the ensemble of tubes decide too.")));
+  if (ensemble->weight > 0.01 && groups->weight > 0.01 && fabs (ensemble->fraction - groups->fraction) > 0.05)
+    add (tally, bt_flag_new ("models-disagree", _ ("Groups of bands give %.1f %%, the ensemble of tubes %.1f %%, and the data do not decide between them; the "
+                                                   "interval covers both. State the diameter of the material, or measure a wider range."),
+                             100 * groups->fraction, 100 * ensemble->fraction));
+}
+
 static void
 flag_fit (BtTally *tally)
 {
@@ -125,15 +143,20 @@ flag_fit (BtTally *tally)
       if (band->at_bound && (band->group == BT_S22 || band->group == BT_M11) && band->area > 0.1 * tally->groups[band->group].area)
         at_bound++;
     }
-  for (guint t = 0; t < tally->n_tails; t++)
-    if (isfinite (tally->tails[t].fraction) && tally->tails[t].weight > 0.01)
-      largest = fmax (largest, fabs (tally->tails[t].fraction - tally->fraction.value));
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    for (guint t = 0; t < tally->n_tails; t++)
+      {
+        const BtTailTally *tail = m == BT_MODEL_GROUPS ? &tally->tails[t] : &tally->ensembles[t];
+
+        if (isfinite (tail->fraction) && tail->weight * tally->models[m].weight > 0.01)
+          largest = fmax (largest, fabs (tail->fraction - tally->fraction.value));
+      }
   if (best->state == BT_SOLVE_STOPPED_EARLY || best->state == BT_SOLVE_SINGULAR)
     add (tally, bt_flag_new ("fit-unfinished", "%s", bt_solve_state_text ((BtSolveState) best->state)));
   if (at_bound > 0)
     add (tally, bt_flag_new ("band-at-bound", _ ("A band of S22 or M11 sits on the edge of what the diameter window allows: check the "
                                                  "diameter, or move the band by hand.")));
-  if (best->misfit > 10)
+  if (best->misfit > 10 && !(tally->models[BT_MODEL_ENSEMBLE].weight > 0.5 && tally->models[BT_MODEL_ENSEMBLE].misfit < 10))
     add (tally, bt_flag_new ("structure", _ ("The residual is %.0f times the noise: lines of single tubes or an instrument's fault that no "
                                              "band follows. The interval allows for it."),
                              best->misfit));
@@ -179,5 +202,6 @@ bt_tally_fill_flags (BtTally *tally, BtFilm *film, const BtPrepared *prepared)
   flag_fraction (tally);
   flag_overlap (tally);
   flag_doping (tally);
+  flag_models (tally);
   flag_fit (tally);
 }

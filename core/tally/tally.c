@@ -64,6 +64,10 @@ tally_new (const BtPrepared *prepared, const BtRecipe *recipe)
   tally->diameter_u_nm = NAN;
   tally->fraction = (BtFraction){ NAN, NAN, NAN, NAN, recipe->level, BT_BOUND_NONE };
   tally->conformance = tally->acceptance_limit = tally->refusal_limit = NAN;
+  for (guint m = 0; m < BT_N_MODELS; m++)
+    tally->models[m] = (BtModelTally){ 0, NAN, NAN, NAN, NAN, NAN, { NAN, NAN }, NAN };
+  for (guint t = 0; t < BT_N_TAILS; t++)
+    tally->ensembles[t].aic = tally->ensembles[t].fraction = tally->ensembles[t].fraction_u = tally->ensembles[t].misfit = NAN;
   for (guint g = 0; g < BT_N_GROUPS; g++)
     tally->groups[g] = (BtGroupTally){ 0, NAN, NAN, NAN, NAN, NAN, NAN, NAN, NAN };
   return tally;
@@ -329,6 +333,7 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
   BtTally *tally;
   GPtrArray *fits[BT_N_TAILS] = { NULL };
   g_autoptr (GArray) candidates = NULL;
+  g_autoptr (BtEnsembles) ensembles = NULL;
 
   g_return_val_if_fail (BT_IS_FILM (film), NULL);
   if (!bt_recipe_check (recipe, error))
@@ -348,8 +353,16 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
       for (guint t = 0; t < tally->n_tails; t++)
         fill_tail (&tally->tails[t], g_ptr_array_index (fits[t], 0), prepared);
       candidates = weigh_fits (tally, fits, prepared);
+      /* What describes the bands; the ensemble comes in where the fraction is drawn. */
       bt_tally_fill_best (tally, best_candidate (tally, candidates), prepared);
       bt_tally_fill_groups (tally, (const BtCandidate *) (void *) candidates->data, candidates->len);
+      /* Numbers held by hand are of the groups: then the groups alone decide. */
+      if (effort == BT_EFFORT_FULL && recipe->held->len == 0)
+        ensembles = bt_ensembles_fit (prepared, fits, tally->n_tails, cancellable);
+      bt_candidates_weigh_models (tally, candidates, ensembles, prepared);
+      tally->models[BT_MODEL_GROUPS].misfit = tally->tails[tally->best].misfit;
+      tally->models[BT_MODEL_GROUPS].structure = prepared->structure;
+      tally->models[BT_MODEL_GROUPS].n_parameters = tally->tails[tally->best].n_parameters;
       bt_fraction_tally (tally, (const BtCandidate *) (void *) candidates->data, candidates->len, prepared);
     }
   tally->curve = g_steal_pointer (&prepared->curve);

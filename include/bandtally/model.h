@@ -20,6 +20,8 @@ typedef enum { BT_TAIL_PLASMON, BT_TAIL_POWER, BT_TAIL_EXPONENTIAL, BT_N_TAILS }
 const char *bt_tail_name (BtTailKind kind);
 /* Translated, for people. */
 const char *bt_tail_title (BtTailKind kind);
+/* In one word. */
+const char *bt_tail_short_title (BtTailKind kind);
 gboolean bt_tail_from_name (const char *name, BtTailKind *kind);
 
 /* The phonon sideband of S11 and S22: this far above its band, eV, and this much wider (Perebeinos et al., Phys. Rev. Lett. 94, 027402

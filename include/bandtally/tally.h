@@ -46,12 +46,36 @@ typedef struct {
   int state;                       /* BtSolveState */
 } BtTailTally;
 
+/**
+ * BtModelKind:
+ * @BT_MODEL_GROUPS: groups of bands (Gaussians with wings), their areas
+ * @BT_MODEL_ENSEMBLE: the whole spectrum from a population of tubes over (n,m), each tube's lines placed by the reference energies
+ *
+ * How the bands are modelled.
+ */
+typedef enum { BT_MODEL_GROUPS, BT_MODEL_ENSEMBLE, BT_N_MODELS } BtModelKind;
+/* "groups", "ensemble": in files. */
+const char *bt_model_name (BtModelKind model);
+/* Translated. */
+const char *bt_model_title (BtModelKind model);
+
+/* What one model says, averaged over its tails. @weight 0 where it was not fitted; the numbers are then NAN. */
+typedef struct {
+  double weight;                   /* Akaike weight among the models */
+  double fraction, fraction_u;     /* NAN where not to be had */
+  double misfit;                   /* rms residual of its best tail in units of the noise */
+  double structure;                /* amplitude of what it does not follow, absorbance */
+  double n_parameters;             /* that the data determine, of its best tail */
+  BtDiameterWindow diameter;       /* of the population, by the ensemble of the best tail; NAN of the groups */
+  double diameter_u_nm;
+} BtModelTally;
+
 typedef enum { BT_BOUND_NONE, BT_BOUND_TWO_SIDED, BT_BOUND_LOWER } BtBound;
 /* @bound NONE: the fraction could not be had, all NAN. LOWER: M11 below its detection limit: at least @low at @level. */
 typedef struct { double value, u, low, high, level; BtBound bound; } BtFraction;
 
-/* One contribution to u(fraction). @source: stable name ("noise", "tail", "band plan", "strength ratio", "detector step",
- * "residual structure"); @title translated. */
+/* One contribution to u(fraction). @source: stable name ("noise", "residual structure", "tail", "band plan", "model",
+ * "strength ratio", "detector step", "doping", "doping"); @title translated. */
 typedef struct { const char *source; const char *title; double u; } BtBudgetLine;
 
 /* Reading at a wavelength of interest; NAN where out of range (or, for alpha, without a thickness; for the sheet conductance, on another light path
@@ -96,7 +120,9 @@ typedef struct {
   GArray *bands;
   BtGroupTally groups[BT_N_GROUPS];
   guint n_tails, best;
-  BtTailTally tails[BT_N_TAILS];
+  BtTailTally tails[BT_N_TAILS];   /* of the groups; weights among them */
+  BtTailTally ensembles[BT_N_TAILS]; /* of the ensemble, in the same order; weight 0 and NAN where it was not fitted */
+  BtModelTally models[BT_N_MODELS];
   double tail_share_at_s22;        /* tail over the whole, at S22's centre; NAN without S22 */
   BtFraction fraction;
   GArray *budget;                  /* (element-type BtBudgetLine) */
