@@ -16,7 +16,9 @@
 #define JITTER_EV 0.010
 /* Tubes of a kind that get shifts of their own: those nearest to the mean diameter. Farther out they are few, or so many that no single one's place
  * can be told. */
-#define MOST_JITTERED 60
+#define MOST_JITTERED 45
+/* Tubes of a kind: where a wide population has more, every second or third one stands for its neighbours, whose lines lie within a few meV of its own. */
+#define MOST_TUBES 90
 /* Tubes within so many spreads, and at least within this share of the mean, are in the population. */
 #define REACH 3.0
 #define LEAST_REACH 0.2
@@ -59,15 +61,22 @@ take_tubes (BtEnsembleFit *fit, const BtDiameterWindow *window)
 
   fit->tubes = g_array_new (FALSE, FALSE, sizeof (BtTube));
   for (int metallic = 0; metallic < 2; metallic++)
-    for (guint i = 0; i < all->len; i++)
-      {
-        BtTube tube = g_array_index (all, BtTube, i);
+    {
+      guint n = 0, seen = 0, every;
 
-        if ((bt_tube_kind (tube) == BT_TUBE_METALLIC) == (metallic == 1))
-          g_array_append_val (fit->tubes, tube);
-        if (metallic == 0 && bt_tube_kind (tube) != BT_TUBE_METALLIC)
-          fit->n_semiconducting++;
-      }
+      for (guint i = 0; i < all->len; i++)
+        n += (bt_tube_kind (g_array_index (all, BtTube, i)) == BT_TUBE_METALLIC) == (metallic == 1);
+      every = (n + MOST_TUBES - 1) / MOST_TUBES;
+      for (guint i = 0; i < all->len; i++)
+        {
+          BtTube tube = g_array_index (all, BtTube, i);
+
+          if ((bt_tube_kind (tube) == BT_TUBE_METALLIC) == (metallic == 1) && seen++ % every == 0)
+            g_array_append_val (fit->tubes, tube);
+        }
+      if (metallic == 0)
+        fit->n_semiconducting = fit->tubes->len;
+    }
   fit->n_metallic = fit->tubes->len - fit->n_semiconducting;
   fit->energy = g_new (double, 4 * (gsize) MAX (fit->tubes->len, 1));
   for (guint i = 0; i < fit->tubes->len; i++)
@@ -179,9 +188,9 @@ bt_ensemble_fit_new (const BtBandPlan *plan, const BtFilmFit *start, const BtFil
     set_parameter (fit, j, j > 0 && isfinite (start->prior_u[j]) ? start->prior_mean[j] : start->x[j], start->prior_mean[j], start->prior_u[j], start->low[j], start->high[j], start->step_limit[j]);
   set_common (fit, plan, start, level > 0 ? level : 1);
   for (gsize j = fit->first_scatter; j < fit->first_jitter; j++)
-    set_parameter (fit, j, 0, 0, SCATTER, -3, 3, 1);
+    set_parameter (fit, j, 0, 0, SCATTER, -5, 5, 2);
   for (gsize j = fit->first_jitter; j < fit->p; j++)
-    set_parameter (fit, j, 0, 0, JITTER_EV, -0.06, 0.06, 0.02);
+    set_parameter (fit, j, 0, 0, JITTER_EV, -0.2, 0.2, INFINITY);
   return fit;
 }
 

@@ -11,6 +11,8 @@
 #define STRUCTURE_FACTOR 2.0
 /* Rounds of fitting and learning the structure that is left. */
 #define ROUNDS 3
+/* A tail so much worse than the best one cannot come back: its weight is below e^-50. */
+#define HOPELESS 100
 
 /* Averages neighbours until there are few enough points. */
 static void
@@ -97,7 +99,7 @@ run_tail (gpointer data)
 
 /* The tails do not know of each other, so the outcome is the same however many threads there are. */
 static gboolean
-run_tails (BtEnsembles *e, const BtPrepared *prepared, GPtrArray *const group_fits[], GCancellable *cancellable)
+run_tails (BtEnsembles *e, const BtPrepared *prepared, GPtrArray *const group_fits[], const gboolean *dropped, GCancellable *cancellable)
 {
   TailTask tasks[BT_N_TAILS];
   GThread *threads[BT_N_TAILS];
@@ -107,10 +109,11 @@ run_tails (BtEnsembles *e, const BtPrepared *prepared, GPtrArray *const group_fi
       if (e->fits[t] == NULL)
         e->fits[t] = bt_ensemble_fit_new (&prepared->plan, g_ptr_array_index (group_fits[t], 0), &e->data);
       tasks[t] = (TailTask){ e, t, cancellable };
-      threads[t] = g_thread_new ("ensemble", run_tail, &tasks[t]);
+      threads[t] = dropped[t] ? NULL : g_thread_new ("ensemble", run_tail, &tasks[t]);
     }
   for (guint t = 0; t < e->n_tails; t++)
-    g_thread_join (threads[t]);
+    if (threads[t] != NULL)
+      g_thread_join (threads[t]);
   return !g_cancellable_is_cancelled (cancellable);
 }
 
@@ -118,6 +121,7 @@ BtEnsembles *
 bt_ensembles_fit (const BtPrepared *prepared, GPtrArray *const group_fits[], guint n_tails, GCancellable *cancellable)
 {
   g_autoptr (BtEnsembles) e = g_new0 (BtEnsembles, 1);
+  gboolean dropped[BT_N_TAILS] = { FALSE };
   double level = 0, least;
 
   if (prepared->n_in_group[BT_S22] == 0 || prepared->n_in_group[BT_M11] == 0)
@@ -133,13 +137,15 @@ bt_ensembles_fit (const BtPrepared *prepared, GPtrArray *const group_fits[], gui
       const BtEnsembleFit *best;
       double structure;
 
-      if (!run_tails (e, prepared, group_fits, cancellable))
+      if (!run_tails (e, prepared, group_fits, dropped, cancellable))
         return NULL;
       best = e->fits[0];
       for (guint t = 1; t < n_tails; t++)
         if (cost (e->fits[t]) < cost (best))
           best = e->fits[t];
       structure = fmax (least, structure_of (e, best));
+      for (guint t = 0; t < n_tails; t++)
+        dropped[t] = cost (e->fits[t]) > cost (best) + HOPELESS;
       if (round + 1 == ROUNDS || (structure > 0.8 * e->structure && structure < 1.25 * e->structure))
         break;
       set_structure (e, structure);
