@@ -12,6 +12,7 @@
 #include <bandtally/film.h>
 #include <bandtally/shape.h>
 #include <bandtally/solve.h>
+#include <bandtally/fit.h>
 #include <bandtally/model.h>
 #include <bandtally/forecast.h>
 #include <bandtally/recipe.h>
