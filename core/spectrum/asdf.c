@@ -111,7 +111,7 @@ push (BtAsdf *asdf, double value, gboolean first, guint line, gboolean *repeats,
       return TRUE;
     }
   if (asdf->ordinates->len >= asdf->most)
-    return broken (error, line, _ ("it holds more ordinates than a spectrum can have"));
+    return broken (error, line, _ ("it holds more points than are read (as many as the file has bytes, 10 million at most)"));
   g_array_append_val (asdf->ordinates, value);
   return TRUE;
 }

@@ -22,6 +22,7 @@ typedef struct {
 typedef struct {
   GArray *x, *y;                /* of double */
   guint line;                   /* where it begins */
+  guint n;                      /* of its points; set when it is read */
   guint n_x_failed, x_failed_line;
   BtAsdf asdf;
 } Table;
@@ -143,7 +144,7 @@ static const char *
 read_ordinates (Jcamp *jcamp, const char *at, Table *table, GError **error)
 {
   const double first_x = number (jcamp, "FIRSTX"), last_x = number (jcamp, "LASTX"), n_points = number (jcamp, "NPOINTS");
-  const double x_factor = factor (jcamp, "XFACTOR");
+  const double x_factor = factor (jcamp, "XFACTOR"), y_factor = factor (jcamp, "YFACTOR");
   double step = n_points > 1 ? (last_x - first_x) / (n_points - 1) : number (jcamp, "DELTAX");
   const char *line, *end;
 
@@ -160,21 +161,20 @@ read_ordinates (Jcamp *jcamp, const char *at, Table *table, GError **error)
           && !(repeats && fabs (x * x_factor - first_x - step * ((double) before - 1)) <= 0.6 * fabs (step)) && table->n_x_failed++ == 0)
         table->x_failed_line = jcamp->line;
     }
-  for (guint i = 0; i < table->asdf.ordinates->len; i++)
+  if (table->y->len > 0 && (isnan (step) || isnan (first_x)))
     {
-      const double y = scaled (g_array_index (table->asdf.ordinates, double, i), factor (jcamp, "YFACTOR"));
-      double x;
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT,
+                   _ ("line %u: a table of equal steps needs FIRSTX, LASTX and NPOINTS above it; export the spectrum again."), table->line);
+      return NULL;
+    }
+  g_array_set_size (table->x, table->y->len);
+  for (guint i = 0; i < table->y->len; i++)
+    {
+      double *x = &g_array_index (table->x, double, i), *y = &g_array_index (table->y, double, i);
 
-      if (isnan (step) || isnan (first_x))
-        {
-          g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT,
-                       _ ("line %u: a table of equal steps needs FIRSTX, LASTX and NPOINTS above it; export the spectrum again."), table->line);
-          return NULL;
-        }
       /* By the ends, so that no rounding adds up. */
-      x = n_points > 1 ? bt_jcamp_abscissa (first_x, last_x, (gsize) fmin (n_points, 1e9), i) : first_x + step * i;
-      g_array_append_val (table->x, x);
-      g_array_append_val (table->y, y);
+      *x = n_points > 1 ? bt_jcamp_abscissa (first_x, last_x, (gsize) n_points, i) : first_x + step * i;
+      *y = scaled (*y, y_factor);
     }
   return at;
 }
@@ -205,6 +205,12 @@ read_pairs (Jcamp *jcamp, const char *at, Table *table, GError **error)
                          _ ("line %u: the table holds a sign that no number has; export the spectrum again."), jcamp->line);
             return NULL;
           }
+        if (member == 0 && table->x->len >= jcamp->n_left)
+          {
+            g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
+                         _ ("line %u: it holds more than 10 million points; split it, or export fewer."), jcamp->line);
+            return NULL;
+          }
         value = *line == '?' ? (double) NAN : scaled (value, factors[member]);
         g_array_append_val (member == 0 ? table->x : table->y, value);
         member = 1 - member;
@@ -213,6 +219,23 @@ read_pairs (Jcamp *jcamp, const char *at, Table *table, GError **error)
   if (member == 1)
     g_array_set_size (table->x, table->y->len);
   return at;
+}
+
+/* XUNITS of other measurements; any others may be a wavelength in strange words. */
+static gboolean
+refuse_abscissa (const Jcamp *jcamp, const Table *table, GError **error)
+{
+  static const char *const others[] = { "SECOND", "MINUTE", "HZ", "HERTZ", "PPM", "M/Z", "M / Z", "DEGREE", "KELVIN", "VOLT", "MILLIVOLT", "MASS", "TIME" };
+  const char *words = label (jcamp, "XUNITS");
+  gboolean refused = words != NULL && bt_text_foreign (words) != NULL;
+
+  for (gsize i = 0; words != NULL && i < G_N_ELEMENTS (others); i++)
+    refused = refused || g_ascii_strncasecmp (words, others[i], strlen (others[i])) == 0;
+  if (refused)
+    g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_UNITS,
+                 _ ("line %u: XUNITS is %s, which is not read; export the spectrum against wavelength in NANOMETERS or MICROMETERS or against 1/CM."),
+                 table->line, words);
+  return refused;
 }
 
 static gboolean
@@ -227,6 +250,8 @@ decide_units (const Jcamp *jcamp, const Table *table, BtXUnit *x_unit, BtYUnit *
     *x_unit = (BtXUnit) jcamp->options->x_unit;
   else if (x_words == NULL || !bt_text_x_unit (x_words, x_unit))
     {
+      if (refuse_abscissa (jcamp, table, error))
+        return FALSE;
       *x_unit = bt_values_x_unit (x, y, table->y->len, FALSE);
       *inferred = TRUE;
     }
@@ -264,11 +289,30 @@ decide_units (const Jcamp *jcamp, const Table *table, BtXUnit *x_unit, BtYUnit *
   return TRUE;
 }
 
+/* Data classes of the standards that are no single spectrum. */
+static gboolean
+refuse_class (const char *name, guint line, GError **error)
+{
+  static const struct { const char *name, *title; } classes[] = {
+    { "NTUPLES", "NTUPLES" },   { "PEAKTABLE", "PEAK TABLE" }, { "PEAKASSIGNMENTS", "PEAK ASSIGNMENTS" }, { "ASSIGNMENTS", "ASSIGNMENTS" },
+    { "RADATA", "RADATA" },     { "DATATABLE", "DATA TABLE" },
+  };
+
+  for (gsize i = 0; i < G_N_ELEMENTS (classes); i++)
+    if (g_str_equal (name, classes[i].name))
+      {
+        g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT,
+                     _ ("line %u: the data are of the class %s, which is not read; export the spectrum as XYDATA or XYPOINTS."), line, classes[i].title);
+        return TRUE;
+      }
+  return FALSE;
+}
+
 /* What the table and the labels above it say differently. */
 static void
 flag_checks (const Jcamp *jcamp, const Table *table, BtSpectrum *spectrum)
 {
-  const double n_points = number (jcamp, "NPOINTS"), first_y = number (jcamp, "FIRSTY"), y = g_array_index (table->y, double, 0);
+  const double n_points = number (jcamp, "NPOINTS"), first_y = number (jcamp, "FIRSTY"), y = bt_spectrum_get_raw_y (spectrum, NULL)[0];
 
   if (table->asdf.n_failed > 0)
     bt_spectrum_add_flag (spectrum, bt_flag_new ("jcamp-check", _ ("In %u lines, first in line %u, the repeated reading is not that of the line before: "
@@ -278,10 +322,10 @@ flag_checks (const Jcamp *jcamp, const Table *table, BtSpectrum *spectrum)
     bt_spectrum_add_flag (spectrum, bt_flag_new ("jcamp-abscissa", _ ("In %u lines, first in line %u, the abscissa is not where equal steps lead: lines "
                                                                       "may be missing. Export the file again."),
                                                  table->n_x_failed, table->x_failed_line));
-  if (!isnan (n_points) && fabs (n_points - table->y->len) > 0.5)
+  if (!isnan (n_points) && fabs (n_points - table->n) > 0.5)
     bt_spectrum_add_flag (spectrum, bt_flag_new ("jcamp-points", _ ("The file states %.0f points and holds %u: part of it may be missing. Export it "
                                                                     "again."),
-                                                 n_points, table->y->len));
+                                                 n_points, table->n));
   if (!isnan (first_y) && fabs (first_y - y) > 1e-3 * fabs (y) + 2 * fabs (factor (jcamp, "YFACTOR")))
     bt_spectrum_add_flag (spectrum, bt_flag_new ("jcamp-first", _ ("The file states %.6g as its first reading and holds %.6g: a factor may be wrong. "
                                                                    "Export it again."),
@@ -289,9 +333,8 @@ flag_checks (const Jcamp *jcamp, const Table *table, BtSpectrum *spectrum)
 }
 
 static gboolean
-make_spectrum (Jcamp *jcamp, const Table *table, const char *form, GError **error)
+make_spectrum (Jcamp *jcamp, Table *table, const char *form, GError **error)
 {
-  const double *x = (const double *) (void *) table->x->data, *y = (const double *) (void *) table->y->data;
   const char *title = label (jcamp, "TITLE");
   g_autofree char *reading = NULL;
   g_autoptr (GError) reason = NULL;
@@ -302,14 +345,16 @@ make_spectrum (Jcamp *jcamp, const Table *table, const char *form, GError **erro
 
   if (!decide_units (jcamp, table, &x_unit, &y_unit, &inferred, error))
     return FALSE;
-  spectrum = bt_spectrum_new (x, y, table->y->len, x_unit, y_unit, title, &reason);
+  /* A table may be most of the memory there is: it is handed on, not copied. */
+  spectrum = bt_spectrum_new_take ((double *) (void *) g_array_steal (table->x, NULL), (double *) (void *) g_array_steal (table->y, NULL), table->n,
+                                   x_unit, y_unit, title, &reason);
   if (spectrum == NULL)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, reason->code, _ ("line %u on: %s"), table->line, reason->message);
       return FALSE;
     }
   reading = g_strdup_printf (_ ("JCAMP-DX %s, %u points from line %u on in the form %s; x in %s, y is %s (%s)."),
-                             label (jcamp, "JCAMPDX") != NULL ? label (jcamp, "JCAMPDX") : "?", table->y->len, table->line, form,
+                             label (jcamp, "JCAMPDX") != NULL ? label (jcamp, "JCAMPDX") : "?", table->n, table->line, form,
                              bt_x_unit_name (x_unit), bt_y_unit_name (y_unit), inferred ? _ ("from the values") : _ ("from the labels"));
   bt_spectrum_set_origin (spectrum, jcamp->source, reading);
   if (inferred)
@@ -326,11 +371,19 @@ read_table (Jcamp *jcamp, const char *at, gboolean pairs, GError **error)
 {
   Table table = { .x = g_array_new (FALSE, FALSE, sizeof (double)), .y = g_array_new (FALSE, FALSE, sizeof (double)), .line = jcamp->line + 1 };
 
-  table.asdf = (BtAsdf){ .ordinates = g_array_new (FALSE, FALSE, sizeof (double)),
-                         .most = jcamp->n_left };
-  at = pairs ? read_pairs (jcamp, at, &table, error) : read_ordinates (jcamp, at, &table, error);
-  jcamp->n_left -= MIN (table.asdf.ordinates->len, jcamp->n_left);
-  if (at != NULL && table.y->len == 0)
+  table.asdf = (BtAsdf){ .ordinates = table.y, .most = jcamp->n_left };
+  if (number (jcamp, "NPOINTS") > BT_MAX_POINTS)
+    {
+      g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES,
+                   _ ("line %u: NPOINTS above the table states %.10g points, and 10 million at most are read; export the spectrum again, or fewer points."),
+                   table.line, number (jcamp, "NPOINTS"));
+      at = NULL;
+    }
+  else
+    at = pairs ? read_pairs (jcamp, at, &table, error) : read_ordinates (jcamp, at, &table, error);
+  table.n = table.y->len;
+  jcamp->n_left -= MIN (table.n, jcamp->n_left);
+  if (at != NULL && table.n == 0)
     {
       g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_VALUES, _ ("line %u: the table is empty; export the spectrum again."), table.line);
       at = NULL;
@@ -339,7 +392,6 @@ read_table (Jcamp *jcamp, const char *at, gboolean pairs, GError **error)
     at = NULL;
   g_array_unref (table.x);
   g_array_unref (table.y);
-  g_array_unref (table.asdf.ordinates);
   return at;
 }
 
@@ -368,7 +420,7 @@ bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *sourc
 {
   Jcamp jcamp = { .text = text, .options = options, .source = source, .spectra = spectra,
                   .labels = g_hash_table_new_full (g_str_hash, g_str_equal, g_free, g_free),
-                  .n_left = ORDINATES_ANYWAY + (gsize) (text->end - text->at) };
+                  .n_left = MIN (ORDINATES_ANYWAY + (gsize) (text->end - text->at), BT_MAX_POINTS) };
   g_autoptr (GError) reason = NULL;
 
   for (const char *at = text->at, *next; at != NULL && at < text->end;)
@@ -388,6 +440,12 @@ bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *sourc
       name = plain_label (at + 2, sign);
       if (g_str_equal (name, "TITLE"))
         g_hash_table_remove_all (jcamp.labels);
+      if (spectra->len > BT_MAX_SPECTRA)
+        {
+          g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it holds more than %d spectra; split it."), BT_MAX_SPECTRA);
+          g_hash_table_unref (jcamp.labels);
+          return FALSE;
+        }
       if (g_str_equal (name, "XYDATA") || g_str_equal (name, "XYPOINTS"))
         {
           g_autoptr (GError) table_reason = NULL;
@@ -412,6 +470,8 @@ bt_jcamp_read (const BtText *text, const BtReadOptions *options, BtSource *sourc
           /* Notes keep their blanks, as those of other files do. */
           g_autofree char *spelling = g_strstrip (g_strndup (at + 2, (gsize) (sign - at - 2)));
 
+          if (reason == NULL)
+            refuse_class (name, jcamp.line, &reason);
           at = read_value (&jcamp, sign + 1, end, name, spelling, next);
         }
     }

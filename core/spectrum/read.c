@@ -1,22 +1,23 @@
 /* Reads spectra from files. */
 #include <bandtally/spectrum.h>
 
+#include <errno.h>
+#include <fcntl.h>
 #include <math.h>
 #include <string.h>
 #include <sys/stat.h>
+#include <unistd.h>
 
 #include <glib/gi18n-lib.h>
+#include <glib/gstdio.h>
 
 #include "jcamp-private.h"
 #include "spectrum-private.h"
 #include "text-private.h"
 
-/* Files beyond this are no spectra. */
-#define MAX_FILE_BYTES (200u << 20)
 /* A preamble's line that is longer is no statement. */
 #define MAX_NOTE_BYTES 400
 #define MAX_NOTES 500
-#define MAX_SPECTRA 10000
 
 static gboolean
 fail (GError **error, BtSpectrumError code, const char *text)
@@ -225,13 +226,30 @@ title_among_several (const BtColumns *columns, const BtChoice *choice, gsize n_t
   return g_strdup_printf (_ ("column %u"), (guint) choice->y + 1);
 }
 
-static void
+/* Whether more columns are chosen than a file may hold spectra, or points, in all. */
+static gboolean
+refuse_many (const GPtrArray *spectra, const BtColumns *columns, const BtTable *table, gsize *n_points, GError **error)
+{
+  *n_points += columns->choices->len * table->n_rows;
+  if (*n_points > BT_MAX_POINTS)
+    return !fail (error, BT_SPECTRUM_ERROR_VALUES, _ ("it holds more than 10 million points; split it, or export fewer."));
+  if (spectra->len + columns->choices->len <= BT_MAX_SPECTRA)
+    return FALSE;
+  g_set_error (error, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it holds more than %d spectra; split it."), BT_MAX_SPECTRA);
+  return TRUE;
+}
+
+/* FALSE where nothing of the file may be read. */
+static gboolean
 add_spectra (const BtText *text, const BtRows *rows, const BtTable *table, const BtReadOptions *options, BtSource *source,
-             GPtrArray *spectra, GError **error)
+             GPtrArray *spectra, gsize *n_points, GError **error)
 {
   BtColumns columns = { 0 };
+  gboolean refused = FALSE;
 
   if (bt_text_columns (rows, table, bt_source_get_notes (source), options, &columns, error))
+    refused = refuse_many (spectra, &columns, table, n_points, error);
+  if (!refused && error != NULL && *error == NULL)
     for (guint i = 0; i < columns.choices->len; i++)
       {
         const BtChoice *choice = &g_array_index (columns.choices, BtChoice, i);
@@ -241,39 +259,39 @@ add_spectra (const BtText *text, const BtRows *rows, const BtTable *table, const
         g_autoptr (GError) reason = NULL;
         BtSpectrum *spectrum = make_spectrum (text, rows, table, &columns, choice, title, source, &reason);
 
-        if (spectrum != NULL && spectra->len < MAX_SPECTRA)
+        if (spectrum != NULL)
           g_ptr_array_add (spectra, spectrum);
-        else if (spectrum != NULL)
-          {
-            g_object_unref (spectrum);
-            g_set_error (&reason, BT_SPECTRUM_ERROR, BT_SPECTRUM_ERROR_FORMAT, _ ("it holds more than %d spectra; split it."), MAX_SPECTRA);
-            g_ptr_array_set_size (spectra, 0);
-            g_propagate_error (error, g_steal_pointer (&reason));
-            break;
-          }
-        else if (error != NULL && *error == NULL)
+        else if (*error == NULL)
           g_propagate_error (error, g_steal_pointer (&reason));
       }
   bt_columns_clear (&columns);
+  return !refused;
 }
 
 static gboolean
 read_text (const BtText *text, const BtReadOptions *options, BtSource *source, GPtrArray *spectra, GError **error)
 {
-  BtRows rows = { 0 };
+  /* A point takes two numbers, or one more where several share their x. */
+  BtRows rows = { .most = 2 * BT_MAX_POINTS };
   g_autoptr (GError) reason = NULL;
+  gsize n_points = 0;
   guint line = 0;
+  gboolean refused = FALSE;
 
-  if (bt_text_rows (text, &rows))
+  if (bt_text_rows (text, &rows) && rows.too_many)
+    refused = !fail (&reason, BT_SPECTRUM_ERROR_VALUES, _ ("it holds more than 10 million points; split it, or export fewer."));
+  else if (rows.n_rows > 0)
     {
       line = g_array_index (rows.tables, BtTable, 0).first_line;
       take_notes (source, text->at, g_array_index (rows.tables, BtTable, 0).top, rows.dialect.delimiter);
       take_notes (source, rows.below, text->end, rows.dialect.delimiter);
-      for (guint i = 0; i < rows.tables->len; i++)
+      for (guint i = 0; i < rows.tables->len && !refused; i++)
         {
           g_autoptr (GError) table_reason = NULL;
 
-          add_spectra (text, &rows, &g_array_index (rows.tables, BtTable, i), options, source, spectra, &table_reason);
+          refused = !add_spectra (text, &rows, &g_array_index (rows.tables, BtTable, i), options, source, spectra, &n_points, &table_reason);
+          if (refused)
+            g_clear_error (&reason);
           if (table_reason != NULL && reason == NULL)
             {
               line = g_array_index (rows.tables, BtTable, i).first_line;
@@ -282,8 +300,10 @@ read_text (const BtText *text, const BtReadOptions *options, BtSource *source, G
         }
     }
   bt_rows_clear (&rows);
-  if (spectra->len > 0)
-    return TRUE;
+  if (refused)
+    g_propagate_error (error, g_steal_pointer (&reason));
+  if (refused || spectra->len > 0)
+    return !refused;
   if (reason != NULL)
     g_set_error (error, BT_SPECTRUM_ERROR, reason->code, _ ("line %u on: %s"), line, reason->message);
   else if (line > 0)
@@ -293,6 +313,12 @@ read_text (const BtText *text, const BtReadOptions *options, BtSource *source, G
           only_one_column (text) ? _ ("it has only one column of numbers; a spectrum needs two, wavelength (or energy) and reading.")
                                  : _ ("there is no table of numbers in it; export the spectrum as text with one wavelength and one reading a line."));
   return FALSE;
+}
+
+static gboolean
+refuse_size (GError **error)
+{
+  return fail (error, BT_SPECTRUM_ERROR_FORMAT, _ ("it is larger than 200 MB, which no spectrum is; export this film's spectrum alone."));
 }
 
 GPtrArray *
@@ -307,8 +333,8 @@ bt_spectrum_read_bytes (GBytes *bytes, const char *name, const BtReadOptions *op
 
   if (size == 0)
     fail (&reason, BT_SPECTRUM_ERROR_EMPTY, _ ("the file is empty; export the spectrum again."));
-  else if (size > MAX_FILE_BYTES)
-    fail (&reason, BT_SPECTRUM_ERROR_FORMAT, _ ("it is larger than 200 MB, which no spectrum is; export this film's spectrum alone."));
+  else if (size > BT_MAX_FILE_BYTES)
+    refuse_size (&reason);
   else if (bt_text_decode (bytes, &text, &reason))
     {
       if (bt_jcamp_is (&text))
@@ -325,13 +351,35 @@ bt_spectrum_read_bytes (GBytes *bytes, const char *name, const BtReadOptions *op
   return NULL;
 }
 
+/* What comes through a pipe has no size beforehand: reading ends where there is more than a file may hold. (nullable) with errno set. */
+static GBytes *
+read_pipe (const char *path)
+{
+  g_autoptr (GByteArray) bytes = g_byte_array_new ();
+  guint8 block[1 << 16];
+  const int file = g_open (path, O_RDONLY | O_CLOEXEC, 0);
+  gssize n = -1;
+
+  while (file >= 0 && bytes->len <= BT_MAX_FILE_BYTES && ((n = read (file, block, sizeof block)) > 0 || (n < 0 && errno == EINTR)))
+    if (n > 0)
+      g_byte_array_append (bytes, block, (guint) n);
+  if (file >= 0)
+    {
+      const int reason = errno;
+
+      close (file);
+      errno = reason;
+    }
+  return n < 0 ? NULL : g_byte_array_free_to_bytes (g_steal_pointer (&bytes));
+}
+
 GPtrArray *
 bt_spectrum_read_file (const char *path, const BtReadOptions *options, GError **error)
 {
   g_autofree char *text = NULL, *name = g_filename_display_name (path);
   g_autoptr (GBytes) bytes = NULL;
   g_autoptr (GError) reason = NULL;
-  struct stat info;
+  struct stat info = { 0 };
   gsize size;
 
   if (stat (path, &info) == 0 && !S_ISREG (info.st_mode) && !S_ISFIFO (info.st_mode))
@@ -341,6 +389,14 @@ bt_spectrum_read_file (const char *path, const BtReadOptions *options, GError **
                    name);
       return NULL;
     }
+  if (info.st_size > BT_MAX_FILE_BYTES)
+    {
+      refuse_size (error);
+      g_prefix_error (error, "%s: ", name);
+      return NULL;
+    }
+  if (S_ISFIFO (info.st_mode) && (bytes = read_pipe (path)) != NULL)
+    return bt_spectrum_read_bytes (bytes, path, options, error);
   if (!g_file_get_contents (path, &text, &size, &reason))
     {
       if (g_error_matches (reason, G_FILE_ERROR, G_FILE_ERROR_NOENT))

@@ -4,6 +4,11 @@
 
 #include <bandtally/spectrum.h>
 
+/* A file beyond these limits is refused. */
+#define BT_MAX_FILE_BYTES (200u << 20)
+#define BT_MAX_POINTS 10000000
+#define BT_MAX_SPECTRA 10000
+
 /* A file that was read, shared by its spectra: its bytes, its name, the notes in its preamble. Its checksum is made when asked for. */
 typedef struct BtSource BtSource;
 /* (transfer full): one reference. */

@@ -110,7 +110,7 @@ scan_lines (Scan *scan)
 
   while (last_end > at && last_end[-1] != '\n' && last_end[-1] != '\r')
     last_end--;
-  for (scan->line = 1; at < text->end; at = next)
+  for (scan->line = 1; at < text->end && rows->n_values <= rows->most; at = next)
     {
       guint lines = 1;
       gsize n;
@@ -249,6 +249,7 @@ read_rows (const BtText *text, BtRows *rows)
   rows->percent = FALSE;
   scan_lines (&scan);
   rows->below = scan.run_end;
+  rows->too_many = rows->n_values > rows->most;
   if (rows->n_rows > 0)
     join_runs (rows, scan.runs);
   g_free (scan.fields);
@@ -263,6 +264,8 @@ bt_text_rows (const BtText *text, BtRows *rows)
   if (bt_text_sniff (text, FALSE, &rows->dialect))
     {
       read_rows (text, rows);
+      if (rows->too_many)
+        return TRUE;
       if (rows->n_rows > 0)
         {
           for (guint i = 0; i < rows->tables->len; i++)

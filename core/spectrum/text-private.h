@@ -67,8 +67,10 @@ typedef struct {
   const char *below;            /* text behind the last row */
   BtDialect dialect;
   gboolean percent;             /* readings carry a per cent sign */
+  gboolean too_many;            /* there are more numbers than @most; they were not read to the end */
+  gsize most;
 } BtRows;
-/* FALSE where there is not a single row. Free with bt_rows_clear() in both cases. */
+/* @rows->most is set. FALSE where there is not a single row. Free with bt_rows_clear() in both cases. */
 G_GNUC_INTERNAL gboolean bt_text_rows (const BtText *text, BtRows *rows);
 G_GNUC_INTERNAL void bt_rows_clear (BtRows *rows);
 static inline double

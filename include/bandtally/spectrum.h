@@ -44,7 +44,7 @@ typedef struct { int x_unit, y_unit; } BtReadOptions;
  * @path: a file name
  * @options: (nullable): what the user states about it
  *
- * Reads every spectrum in a file: delimited text of any shape (up to 200 MB), or JCAMP-DX 4.24 and 5.01 (XYDATA in AFFN, PAC, SQZ, DIF and DUP;
+ * Reads every spectrum in a file: delimited text of any shape (up to 200 MB and 10 million points), or JCAMP-DX 4.24 and 5.01 (XYDATA in AFFN, PAC, SQZ, DIF and DUP;
  * XYPOINTS; linked blocks). Never depends on the locale.
  *
  * Returns: (transfer full) (element-type BtSpectrum): at least one spectrum, or %NULL with @error set

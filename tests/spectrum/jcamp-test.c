@@ -132,10 +132,21 @@ static const Refused refused[] = {
   { "a count first", XYDATA, "400 T1\n", "line 14: a count", BT_SPECTRUM_ERROR_FORMAT },
   { "a sign of no number", XYDATA, "400 1 2 3\n403 1 ! 3\n", "line 15: the table holds a sign", BT_SPECTRUM_ERROR_FORMAT },
   { "no abscissa", XYDATA, "@ABC\n", "line 14: a line of the table begins", BT_SPECTRUM_ERROR_FORMAT },
-  { "a count without end", XYDATA, "400 1Z9999999999999\n", "more ordinates", BT_SPECTRUM_ERROR_FORMAT },
+  { "a count without end", XYDATA, "400 1Z9999999999999\n", "line 14: it holds more points", BT_SPECTRUM_ERROR_FORMAT },
   { "empty table", XYDATA, "", "empty", BT_SPECTRUM_ERROR_VALUES },
   { "three points", XYDATA, "400 1 2 3\n", "3 usable points", BT_SPECTRUM_ERROR_VALUES },
-  { "no table", "##PEAK TABLE= (XY..XY)", "400,1 401,2\n", "without a spectrum", BT_SPECTRUM_ERROR_FORMAT },
+  { "points without end", "##NPOINTS= 1E12\n" XYDATA, "400 1 2 3 4 5 6 7 8 9 10\n", "line 15: NPOINTS above the table states 1e+12 points, and 10 million",
+    BT_SPECTRUM_ERROR_VALUES },
+  { "a few points too many", "##NPOINTS= 10000001\n" XYDATA, "400 1 2 3 4 5 6 7 8 9 10\n", "states 10000001 points", BT_SPECTRUM_ERROR_VALUES },
+  { "pairs without end", "##NPOINTS= 20000000\n##XYPOINTS= (XY..XY)", "400,1 401,2\n", "line 15: NPOINTS", BT_SPECTRUM_ERROR_VALUES },
+  { "no table", "##COMMENTS= none", "", "without a spectrum", BT_SPECTRUM_ERROR_FORMAT },
+  { "peaks", "##PEAK TABLE= (XY..XY)", "400,1 401,2\n", "line 13: the data are of the class PEAK TABLE", BT_SPECTRUM_ERROR_FORMAT },
+  { "n-tuples", "##DATA CLASS= NTUPLES\n##NTUPLES= UV SPECTRUM\n##VAR_NAME= WAVELENGTH, ABSORBANCE\n##PAGE= N=1\n##DATA TABLE= (X++(Y..Y)), XYDATA",
+    "400 1 2 3\n", "line 14: the data are of the class NTUPLES", BT_SPECTRUM_ERROR_FORMAT },
+  { "interferogram", "##RADATA= (R++(A..A))", "0 1 2 3\n", "line 13: the data are of the class RADATA", BT_SPECTRUM_ERROR_FORMAT },
+  { "against time", "##XUNITS= SECONDS\n" XYDATA, "400 1 2 3 4 5 6 7 8 9 10\n", "line 15: XUNITS is SECONDS", BT_SPECTRUM_ERROR_UNITS },
+  { "against frequency", "##XUNITS= HZ\n" XYDATA, "400 1 2 3 4 5 6 7 8 9 10\n", "XUNITS is HZ", BT_SPECTRUM_ERROR_UNITS },
+  { "against mass", "##XUNITS= M/Z\n##XYPOINTS= (XY..XY)", "400,1 401,2\n", "XUNITS is M/Z", BT_SPECTRUM_ERROR_UNITS },
   { "reflectance", "##YUNITS= REFLECTANCE\n" XYDATA, "400 1 2 3 3 2 1 0 -1 -2 -3\n", "reflectance", BT_SPECTRUM_ERROR_UNITS },
   { "Kubelka-Munk", "##YUNITS= KUBELKA-MUNK\n" XYDATA, "400 1 2 3 3 2 1 0 -1 -2 -3\n", "KUBELKA-MUNK", BT_SPECTRUM_ERROR_UNITS },
 };
@@ -181,6 +192,23 @@ test_linked (void)
       if (flag != NULL)
         g_assert_nonnull (strstr (flag->text, "line 34: "));
     }
+}
+
+/* Peaks beside a spectrum are left out, and that is said. */
+static void
+test_peaks_beside (void)
+{
+  g_autofree char *first = block ("first", 10, "", XYDATA, "400 1 2 3 4 5 6 7 8 9 10\n"), *peaks = block ("peaks", 2, "", "##PEAK TABLE= (XY..XY)", "400,1 401,2\n"),
+                  *text = g_strconcat ("##TITLE= both\n##JCAMP-DX= 5.01\n##DATA TYPE= LINK\n##BLOCKS= 3\n", first, peaks, "##END=\n", NULL);
+  g_autoptr (GError) error = NULL;
+  g_autoptr (GPtrArray) spectra = read_text (text, &error);
+  const BtFlag *flag;
+
+  g_assert_no_error (error);
+  g_assert_cmpuint (spectra->len, ==, 1);
+  flag = bt_flags_find (bt_spectrum_get_flags (g_ptr_array_index (spectra, 0)), "jcamp-block");
+  g_assert_nonnull (flag);
+  g_assert_nonnull (strstr (flag->text, "line 32: the data are of the class PEAK TABLE"));
 }
 
 /* Counts of repetitions cannot make more of a file than a spectrum has, nor can many of them: 300 blocks that would be 90000 ordinates each. */
@@ -250,6 +278,7 @@ main (int argc, char **argv)
     }
   g_test_add_func ("/spectrum/jcamp-published", test_published);
   g_test_add_func ("/spectrum/jcamp-linked", test_linked);
+  g_test_add_func ("/spectrum/jcamp-peaks-beside", test_peaks_beside);
   g_test_add_func ("/spectrum/jcamp-inflated", test_inflated);
   g_test_add_func ("/spectrum/jcamp-mutilated", test_mutilated);
   return g_test_run ();
