@@ -195,6 +195,13 @@ bt_ensemble_fit_new (const BtBandPlan *plan, const BtFilmFit *start, const BtFil
 }
 
 void
+bt_ensemble_fit_start_from (BtEnsembleFit *fit, const BtEnsembleFit *other)
+{
+  g_return_if_fail (fit->p - fit->first_common == other->p - other->first_common);
+  memcpy (fit->x + fit->first_common, other->x + other->first_common, sizeof (double) * (fit->p - fit->first_common));
+}
+
+void
 bt_ensemble_fit_free (BtEnsembleFit *fit)
 {
   if (fit == NULL)

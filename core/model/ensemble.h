@@ -67,6 +67,8 @@ typedef struct {
 
 /* (transfer full): a fit that stands at its start: the plan's window and shift, and the areas and the tail of the group model's fit @start. */
 BtEnsembleFit *bt_ensemble_fit_new (const BtBandPlan *plan, const BtFilmFit *start, const BtFilmData *data);
+/* Starts from another fit's population: all but the tail, offset, steps and fringe. Both are of the same plan. */
+void bt_ensemble_fit_start_from (BtEnsembleFit *fit, const BtEnsembleFit *other);
 void bt_ensemble_fit_free (BtEnsembleFit *fit);
 G_DEFINE_AUTOPTR_CLEANUP_FUNC (BtEnsembleFit, bt_ensemble_fit_free)
 BtSolveState bt_ensemble_fit_run (BtEnsembleFit *fit, const BtFilmData *data, GCancellable *cancellable);

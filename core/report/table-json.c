@@ -215,6 +215,7 @@ put_models (JsonBuilder *builder, const BtTally *tally)
       put_number (builder, "fraction_u", model->fraction_u);
       put_number (builder, "misfit", model->misfit);
       put_number (builder, "structure", model->structure);
+      put_number (builder, "strain", model->strain);
       put_number (builder, "parameters", model->n_parameters);
       put_number (builder, "diameter_mean_nm", model->diameter.mean_nm);
       put_number (builder, "diameter_mean_u_nm", model->diameter_u_nm);

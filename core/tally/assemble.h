@@ -11,6 +11,8 @@ void bt_tally_fill_readings (BtTally *tally, BtFilm *film, BtEffort effort);
 void bt_tally_fill_best (BtTally *tally, const BtCandidate *best, const BtPrepared *prepared);
 /* Group sums averaged over the candidates, and the diameter that the groups' centres mean. */
 void bt_tally_fill_groups (BtTally *tally, const BtCandidate *candidates, gsize n);
+/* Whether the ensemble of one window follows the film so much better that the other window is none. */
+gboolean bt_tally_refutes (const BtTally *tally, const BtTally *other);
 /* Widens the fraction to what another window, as likely, says of the same film. */
 void bt_tally_admit_alternative (BtTally *tally, const BtTally *other);
 /* Flags of the reading, the light path and the fit. */

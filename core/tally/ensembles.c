@@ -13,6 +13,8 @@
 #define ROUNDS 3
 /* A tail so much worse than the best one cannot come back: its weight is below e^-50. */
 #define HOPELESS 100
+/* What the priors of a sound population cost at most: 10 to 40 in forecast films. */
+#define SUSPECT 60
 
 /* Averages neighbours until there are few enough points. */
 static void
@@ -117,6 +119,44 @@ run_tails (BtEnsembles *e, const BtPrepared *prepared, GPtrArray *const group_fi
   return !g_cancellable_is_cancelled (cancellable);
 }
 
+/* The tail with the least cost. */
+static guint
+find_best (const BtEnsembles *e)
+{
+  guint best = 0;
+
+  for (guint t = 1; t < e->n_tails; t++)
+    if (cost (e->fits[t]) < cost (e->fits[best]))
+      best = t;
+  return best;
+}
+
+/* A population that had to be bent far from what is known beforehand is a wrong minimum, or a wrong tail's attempt to live with the film: the other tails
+ * try again from there, and the best one from theirs. */
+static void
+try_again (BtEnsembles *e, const BtPrepared *prepared, GPtrArray *const group_fits[], GCancellable *cancellable)
+{
+  const guint best = find_best (e);
+
+  if (e->n_tails < 2 || e->fits[best]->prior_chi2 < SUSPECT)
+    return;
+  for (guint t = 0; t < e->n_tails; t++)
+    {
+      const guint from = t == best ? (best + 1) % e->n_tails : best;
+      BtEnsembleFit *trial = bt_ensemble_fit_new (&prepared->plan, g_ptr_array_index (group_fits[t], 0), &e->data);
+
+      bt_ensemble_fit_start_from (trial, e->fits[from]);
+      if (bt_ensemble_fit_run (trial, &e->data, cancellable) != BT_SOLVE_CANCELLED && cost (trial) < cost (e->fits[t]))
+        {
+          BtEnsembleFit *worse = e->fits[t];
+
+          e->fits[t] = trial;
+          trial = worse;
+        }
+      bt_ensemble_fit_free (trial);
+    }
+}
+
 BtEnsembles *
 bt_ensembles_fit (const BtPrepared *prepared, GPtrArray *const group_fits[], guint n_tails, GCancellable *cancellable)
 {
@@ -139,10 +179,9 @@ bt_ensembles_fit (const BtPrepared *prepared, GPtrArray *const group_fits[], gui
 
       if (!run_tails (e, prepared, group_fits, dropped, cancellable))
         return NULL;
-      best = e->fits[0];
-      for (guint t = 1; t < n_tails; t++)
-        if (cost (e->fits[t]) < cost (best))
-          best = e->fits[t];
+      if (round == 0)
+        try_again (e, prepared, group_fits, cancellable);
+      best = e->fits[find_best (e)];
       structure = fmax (least, structure_of (e, best));
       for (guint t = 0; t < n_tails; t++)
         dropped[t] = cost (e->fits[t]) > cost (best) + HOPELESS;

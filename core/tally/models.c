@@ -180,6 +180,8 @@ fill_ensembles (BtTally *tally, const BtEnsembles *e, const GArray *candidates)
     return;
   model->misfit = misfit_of (e, best);
   model->structure = e->structure;
+  model->strain = best->prior_chi2;
+  model->n_points = e->data.n;
   model->n_parameters = bt_ensemble_fit_parameters (best);
   model->diameter = (BtDiameterWindow){ best->x[best->first_common + BT_ENSEMBLE_MEAN], exp (best->x[best->first_common + BT_ENSEMBLE_LOG_SPREAD]) };
   model->diameter_u_nm = sqrt (best->covariance[(best->first_common + BT_ENSEMBLE_MEAN) * (best->p + 1)]);

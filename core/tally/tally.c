@@ -65,7 +65,7 @@ tally_new (const BtPrepared *prepared, const BtRecipe *recipe)
   tally->fraction = (BtFraction){ NAN, NAN, NAN, NAN, recipe->level, BT_BOUND_NONE };
   tally->conformance = tally->acceptance_limit = tally->refusal_limit = NAN;
   for (guint m = 0; m < BT_N_MODELS; m++)
-    tally->models[m] = (BtModelTally){ 0, NAN, NAN, NAN, NAN, NAN, { NAN, NAN }, NAN };
+    tally->models[m] = (BtModelTally){ 0, NAN, NAN, NAN, NAN, NAN, NAN, 0, { NAN, NAN }, NAN };
   for (guint t = 0; t < BT_N_TAILS; t++)
     tally->ensembles[t].aic = tally->ensembles[t].fraction = tally->ensembles[t].fraction_u = tally->ensembles[t].misfit = NAN;
   for (guint g = 0; g < BT_N_GROUPS; g++)
@@ -76,6 +76,7 @@ tally_new (const BtPrepared *prepared, const BtRecipe *recipe)
 static void
 state_rule (BtTally *tally)
 {
+  g_free (tally->decision_rule);
   if (isnan (tally->recipe->limit))
     tally->decision_rule = g_strdup (_ ("No limit was set, so the film is not judged."));
   else if (tally->fraction.bound == BT_BOUND_NONE)
@@ -308,8 +309,9 @@ fit_tails (BtTally *tally, BtPrepared *prepared, BtEffort effort, const BtTally 
   return good;
 }
 
-/* Where the data leave two windows open the other one is fitted too, and the fraction holds for both. FALSE with @error set where cancelled. */
-static gboolean
+/* Where the data leave two windows open the other one is fitted too. (transfer full): what to go on with: @tally, whose fraction then holds for both
+ * windows, or the other window's where this one is refuted; %NULL with @error set where cancelled. Takes @tally. */
+static BtTally *
 consider_alternative (BtTally *tally, BtFilm *film, const BtRecipe *recipe, BtDiameterWindow window, GCancellable *cancellable, GError **error)
 {
   BtRecipe *stated = bt_recipe_copy (recipe);
@@ -318,11 +320,18 @@ consider_alternative (BtTally *tally, BtFilm *film, const BtRecipe *recipe, BtDi
   stated->window = window;
   other = bt_tally_film (film, stated, BT_EFFORT_FULL, NULL, NULL, NULL, cancellable, error);
   bt_recipe_free (stated);
-  if (other == NULL)
-    return FALSE;
-  bt_tally_admit_alternative (tally, other);
-  bt_tally_unref (other);
-  return TRUE;
+  if (other != NULL && bt_tally_refutes (other, tally))
+    {
+      bt_tally_unref (tally);
+      other->window_proposed = TRUE;
+      return other;
+    }
+  if (other != NULL)
+    bt_tally_admit_alternative (tally, other);
+  else
+    g_clear_pointer (&tally, bt_tally_unref);
+  g_clear_pointer (&other, bt_tally_unref);
+  return tally;
 }
 
 BtTally *
@@ -370,15 +379,12 @@ bt_tally_film (BtFilm *film, const BtRecipe *recipe, BtEffort effort, const BtTa
   prepared->curve = tally->curve;
   bt_tally_fill_flags (tally, film, prepared);
   prepared->curve = NULL;
-  if (effort == BT_EFFORT_FULL && prepared->alternative.mean_nm > 0
-      && !consider_alternative (tally, film, recipe, prepared->alternative, cancellable, error))
-    {
-      free_fits (fits, BT_N_TAILS);
-      bt_tally_unref (tally);
-      return NULL;
-    }
-  state_rule (tally);
   free_fits (fits, BT_N_TAILS);
+  if (effort == BT_EFFORT_FULL && prepared->alternative.mean_nm > 0)
+    tally = consider_alternative (tally, film, recipe, prepared->alternative, cancellable, error);
+  if (tally == NULL)
+    return NULL;
+  state_rule (tally);
   if (progress != NULL)
     progress (1, progress_data);
   return tally;

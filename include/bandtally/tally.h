@@ -65,7 +65,9 @@ typedef struct {
   double fraction, fraction_u;     /* NAN where not to be had */
   double misfit;                   /* rms residual of its best tail in units of the noise */
   double structure;                /* amplitude of what it does not follow, absorbance */
+  double strain;                   /* chi2 of its numbers against what was known of them beforehand; NAN of the groups */
   double n_parameters;             /* that the data determine, of its best tail */
+  gsize n_points;                  /* that it was fitted to */
   BtDiameterWindow diameter;       /* of the population, by the ensemble of the best tail; NAN of the groups */
   double diameter_u_nm;
 } BtModelTally;
