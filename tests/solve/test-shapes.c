@@ -1,37 +1,13 @@
-/* Shapes against references in long double that share nothing with the kernels: exp(), log() of the C library, and for the Voigt function the trapezoidal rule
- * with its pole's correction (Matta and Reichl, Math. Comp. 25, 339 (1971), from memory), itself checked against 30-digit values. Derivatives against differences of
+/* Shapes against references in long double that share nothing with the kernels: exp(), log() of the C library, and for the Voigt function
+ * voigt-reference.h. Derivatives against differences of
  * these, and coarsely against differences of the kernels. Everything for each instruction set that the processor has. Errors are counted as shares of the largest
  * value on the grid. */
 #include <bandtally/shape.h>
 
-#include <complex.h>
-#include <float.h>
 #include <math.h>
 
-#include "exponential.h"
 #include "shape-private.h"
-
-#define LN2L 0.693147180559945309417232121458176568L
-#define PIL 3.141592653589793238462643383279502884L
-
-/* w(z) for Im z >= 0 by the trapezoidal rule with step 0.4: error about exp(-(pi / 0.4)^2) = 2e-27. The grid is the one whose points stay away from z. */
-static long double complex
-faddeeva (long double complex z)
-{
-  const long double h = 0.4L, share = creall (z) / h - floorl (creall (z) / h), shift = share >= 0.25L && share <= 0.75L ? 0 : 0.5L;
-  long double complex sum = 0;
-
-  for (int k = -20; k < 20; k++)
-    {
-      long double t = (k + shift) * h;
-
-      sum += expl (-t * t) / (z - t);
-    }
-  sum *= I * h / PIL;
-  if (cimagl (z) < PIL / h)
-    sum += 2 * cexpl (-z * z) / (1 - (shift > 0 ? -1 : 1) * cexpl (-2 * PIL * I * z / h));
-  return sum;
-}
+#include "voigt-reference.h"
 
 static long double
 reference (BtShape shape, const long double *q, long double x)
@@ -61,11 +37,7 @@ reference (BtShape shape, const long double *q, long double x)
     case BT_SHAPE_POWER:
       return powl (x / q[1], -q[0]);
     case BT_SHAPE_VOIGT:
-      {
-        long double a = sqrtl (LN2L), y = a * q[2] / q[1];
-
-        return creall (faddeeva (2 * a * u + I * y)) / creall (faddeeva (I * y));
-      }
+      return voigt_reference (q, x);
     case BT_N_SHAPES:
     default:
       return NAN;
@@ -204,11 +176,215 @@ test_cases (void)
         check_case (bt_shape_kernels (path), path, &cases[i]);
 }
 
+/* Bands are even about their centre, to the last bit where the distances are; unit height at the centre. */
+static void
+test_symmetry (void)
+{
+  static const BtShape bands[] = { BT_SHAPE_GAUSSIAN, BT_SHAPE_LORENTZIAN, BT_SHAPE_VOIGT, BT_SHAPE_PSEUDO_VOIGT, BT_SHAPE_PLASMON };
+  enum { N = 201 };
+  double x[N], f[N], slopes[3][N];
+  double *df[3] = { slopes[0], slopes[1], slopes[2] };
+
+  for (int i = 0; i < N; i++)
+    x[i] = 2 + (i - N / 2) / 64.0;
+  for (gsize b = 0; b < G_N_ELEMENTS (bands); b++)
+    for (int wide = 0; wide < 2; wide++)
+      {
+        bt_shape_eval (bands[b], (double[]){ 2, 0.1, wide ? 0.9 : 0.07 }, x, N, f, df);
+        g_assert_cmpfloat_with_epsilon (f[N / 2], 1, 3e-16);
+        for (int i = 0; i < N; i++)
+          {
+            g_assert_cmpfloat (f[i], >=, 0);
+            g_assert_cmpfloat_with_epsilon (f[i], f[N - 1 - i], 1e-15);
+            g_assert_cmpfloat_with_epsilon (slopes[0][i], -slopes[0][N - 1 - i], 1e-12);
+            g_assert_cmpfloat_with_epsilon (slopes[1][i], slopes[1][N - 1 - i], 1e-12);
+          }
+      }
+}
+
+/* The same bits for a point wherever it stands, alone or in company, aligned or not, with derivatives or without. */
+static void
+check_place (const BtShapeKernels *kernels, const Case *row)
+{
+  enum { N = 61 };
+  const guint m = bt_shape_n_parameters (row->shape);
+  double whole_x[N], whole[4][N], x[N + 8], part[4][N + 9];
+  double *df[3] = { whole[1], whole[2], whole[3] };
+
+  for (int i = 0; i < N; i++)
+    whole_x[i] = row->low + (row->high - row->low) * i / (N - 1);
+  kernels->eval[row->shape](row->q, whole_x, N, whole[0], df);
+  for (gsize offset = 0; offset < 8; offset++)
+    for (gsize n = 1; n <= 20; n++)
+      for (gsize from = 0; from + n <= N; from += 7)
+        {
+          double *part_df[3] = { part[1] + offset, offset % 3 == 0 ? NULL : part[2] + offset, part[3] + offset };
+
+          memcpy (x + offset, whole_x + from, n * sizeof (double));
+          for (int k = 0; k < 4; k++)
+            part[k][offset + n] = -77;
+          kernels->eval[row->shape](row->q, x + offset, n, part[0] + offset, offset == 1 ? NULL : part_df);
+          g_assert_true (memcmp (part[0] + offset, whole[0] + from, n * sizeof (double)) == 0);
+          for (guint k = 0; k < m && offset != 1; k++)
+            if (part_df[k] != NULL)
+              g_assert_true (memcmp (part_df[k], whole[1 + k] + from, n * sizeof (double)) == 0);
+          for (int k = 0; k < 4; k++)
+            g_assert_cmpfloat (part[k][offset + n], ==, -77);
+        }
+}
+
+static void
+test_place (void)
+{
+  for (BtPath path = 0; path < BT_N_PATHS; path++)
+    if (bt_shape_kernels (path) != NULL)
+      for (gsize i = 0; i < G_N_ELEMENTS (cases); i++)
+        check_place (bt_shape_kernels (path), &cases[i]);
+}
+
+/* Paths differ in the last bits only; those with fused multiply-add not at all. */
+static void
+test_paths (void)
+{
+  enum { N = 500 };
+  const BtShapeKernels *plain = bt_shape_kernels (BT_PATH_PLAIN), *avx2 = bt_shape_kernels (BT_PATH_AVX2),
+                       *avx512 = bt_shape_kernels (BT_PATH_AVX512);
+  double x[N], slow[N], fast[N], widest[N];
+
+  if (avx2 == NULL)
+    {
+      g_test_skip ("this processor has the plain path only");
+      return;
+    }
+  for (gsize i = 0; i < G_N_ELEMENTS (cases); i++)
+    {
+      const Case *row = &cases[i];
+      double largest = 0, worst = 0;
+
+      for (int k = 0; k < N; k++)
+        x[k] = row->low + (row->high - row->low) * k / (N - 1);
+      plain->eval[row->shape](row->q, x, N, slow, NULL);
+      avx2->eval[row->shape](row->q, x, N, fast, NULL);
+      for (int k = 0; k < N; k++)
+        {
+          largest = fmax (largest, fabs (slow[k]));
+          worst = fmax (worst, fabs (slow[k] - fast[k]));
+        }
+      g_test_message ("%s: %.1e", bt_shape_name (row->shape), worst / largest);
+      g_assert_cmpfloat (worst / largest, <=, row->shape == BT_SHAPE_VOIGT ? 1e-14 : 2e-15);
+      if (avx512 != NULL)
+        {
+          avx512->eval[row->shape](row->q, x, N, widest, NULL);
+          g_assert_true (memcmp (widest, fast, sizeof fast) == 0);
+        }
+    }
+}
+
+/* Not a number in, not a number out; far away nothing but small numbers. */
+static void
+test_extremes (void)
+{
+  double f[9], slopes[3][9], *df[3] = { slopes[0], slopes[1], slopes[2] };
+
+  for (BtPath path = 0; path < BT_N_PATHS; path++)
+    for (BtShape shape = BT_SHAPE_LINE; shape < BT_N_SHAPES && bt_shape_kernels (path) != NULL; shape++)
+      {
+        double q[3] = { 1.5, 0.2, 0.3 };
+        const double x[9] = { 1.5, NAN, -1e9, 1e9, 1e3, 1.6, 1e-300, 16, 1.4 };
+
+        bt_shape_kernels (path)->eval[shape](q, x, 9, f, df);
+        for (int i = 0; i < 9; i++)
+          {
+            if (i == 1 || (shape == BT_SHAPE_POWER && x[i] < 0))
+              g_assert_true (isnan (f[i]));
+            else
+              g_assert_false (isnan (f[i]));
+            for (guint k = 0; k < bt_shape_n_parameters (shape); k++)
+              {
+                const double slope = slopes[k][i];
+
+                if (shape != BT_SHAPE_EXPONENTIAL && shape != BT_SHAPE_RECIPROCAL_EXPONENTIAL)
+                  g_assert_true (isnan (slope) == isnan (f[i]));
+              }
+          }
+        for (guint k = 0; k < bt_shape_n_parameters (shape) + bt_shape_n_references (shape); k++)
+          {
+            const double kept = q[k];
+
+            q[k] = NAN;
+            bt_shape_kernels (path)->eval[shape](q, x, 9, f, df);
+            for (int i = 0; i < 9; i++)
+              g_assert_true (isnan (f[i]));
+            q[k] = kept;
+          }
+      }
+}
+
+/* Outside the support |f| < loss, and just inside it is not. */
+static void
+test_support (void)
+{
+  static const double losses[] = { 1e-16, 1e-8, 1e-3, 0.5 };
+
+  for (gsize i = 0; i < G_N_ELEMENTS (cases); i++)
+    for (gsize k = 0; k < G_N_ELEMENTS (losses); k++)
+      {
+        const Case *row = &cases[i];
+        double ends[2], f;
+
+        bt_shape_support (row->shape, row->q, losses[k], &ends[0], &ends[1]);
+        g_assert_cmpfloat (ends[0], <, ends[1]);
+        for (int side = 0; side < 2; side++)
+          if (isfinite (ends[side]))
+            {
+              const double span = row->shape == BT_SHAPE_POWER ? ends[side] : isfinite (ends[!side]) ? ends[1] - ends[0] : ends[side] - row->q[1];
+              const double outward = (side ? 1e-6 : -1e-6) * fabs (span);
+
+              bt_shape_eval (row->shape, row->q, (double[]){ ends[side] + outward }, 1, &f, NULL);
+              g_assert_cmpfloat (f, <, losses[k]);
+              bt_shape_eval (row->shape, row->q, (double[]){ ends[side] - outward }, 1, &f, NULL);
+              g_assert_cmpfloat (f, >, losses[k]);
+            }
+      }
+  {
+    double low, high;
+
+    bt_shape_support (BT_SHAPE_GAUSSIAN, (double[]){ 1, 1 }, 0, &low, &high);
+    g_assert_true (isinf (low) && isinf (high));
+    bt_shape_support (BT_SHAPE_VOIGT, (double[]){ 1, 1, 1e-9 }, 1e-16, &low, &high);
+    g_assert_true (isinf (low) && isinf (high));
+    bt_shape_support (BT_SHAPE_VOIGT, (double[]){ 1, 1, 0 }, 1e-16, &low, &high);
+    g_assert_true (isfinite (low) && isfinite (high));
+  }
+}
+
+static void
+test_names (void)
+{
+  for (BtShape shape = 0; shape < BT_N_SHAPES; shape++)
+    {
+      BtShape back = BT_N_SHAPES;
+
+      g_assert_true (bt_shape_from_name (bt_shape_name (shape), &back));
+      g_assert_cmpuint (back, ==, shape);
+      g_assert_cmpuint (bt_shape_n_parameters (shape) + bt_shape_n_references (shape), <=, BT_SHAPE_MAX_PARAMETERS);
+      for (guint k = 0; k < bt_shape_n_parameters (shape) + bt_shape_n_references (shape); k++)
+        g_assert_nonnull (bt_shape_parameter_name (shape, k));
+    }
+  g_assert_false (bt_shape_from_name ("triangle", &(BtShape){ 0 }));
+}
+
 int
 main (int argc, char **argv)
 {
   g_test_init (&argc, &argv, NULL);
   g_test_set_nonfatal_assertions ();
   g_test_add_func ("/shapes/values-and-derivatives", test_cases);
+  g_test_add_func ("/shapes/symmetry", test_symmetry);
+  g_test_add_func ("/shapes/place", test_place);
+  g_test_add_func ("/shapes/paths", test_paths);
+  g_test_add_func ("/shapes/extremes", test_extremes);
+  g_test_add_func ("/shapes/support", test_support);
+  g_test_add_func ("/shapes/names", test_names);
   return g_test_run ();
 }
