@@ -37,21 +37,17 @@ exp_flushed (V x)
 {
   V t, p = exp_parts (x, FALSE, &t);
 
-  return (V) ((U) (p * two_to (t)) & ~(U) (M) (x < -708.0));
+  return below (x, splat (-708), splat (0), p * two_to (t));
 }
 
 /* Any argument: subnormal results, infinities and NaN as exp() has them. */
 KERNEL V
 exp_full (V x)
 {
-  V c = pick (x < 710.0, x, splat (710)), t, p, n, half;
+  V c = larger (splat (-746), smaller (splat (710), x)), t, p = exp_parts (c, TRUE, &t);
+  V n = t - ROUNDER, half = n * 0.5 + ROUNDER;
 
-  c = pick (c > -746.0, c, splat (-746));
-  p = exp_parts (c, TRUE, &t);
-  n = t - ROUNDER;
-  half = n * 0.5 + ROUNDER;
-  p = (p * two_to (half)) * two_to ((n - (half - ROUNDER)) + ROUNDER);
-  return pick (x == x, p, x);
+  return (p * two_to (half)) * two_to ((n - (half - ROUNDER)) + ROUNDER);
 }
 
 /* For positive normal numbers; anything else gives nothing useful. log (2^k m) = k ln 2 + log (1 + f), 1/sqrt 2 <= m < sqrt 2; log (1 + f) = f - f^2/2 + s

@@ -7,5 +7,7 @@
 void
 bt_exp_eval (const double *x, gsize n, double *out)
 {
-  bt_shape_kernels (bt_path_best ())->exponential (x, n, out);
+  const BtShapeKernels *kernels = bt_shape_kernels (bt_path_best ());
+
+  bt_shape_run (kernels, kernels->exponential, 0, NULL, x, n, out, NULL);
 }

@@ -4,7 +4,6 @@
 #ifdef BT_HAVE_AVX
 #define LANES 4
 #define TARGET __attribute__ ((target ("avx2,fma")))
+#define KERNELS bt_shape_kernels_avx2
 #include "shape-kernels.h"
-
-const BtShapeKernels bt_shape_kernels_avx2 = TABLE;
 #endif

@@ -2,6 +2,7 @@
 #include <bandtally/shape.h>
 
 #include <math.h>
+#include <string.h>
 
 #include "shape-private.h"
 
@@ -118,11 +119,37 @@ bt_shape_kernels (BtPath path)
     }
 }
 
+/* Whole vectors in place, the rest in one filled up with its last point. */
+void
+bt_shape_run (const BtShapeKernels *kernels, BtShapeKernel kernel, guint n_parameters, const double *q, const double *x, gsize n,
+              double *f, double *const *df)
+{
+  const gsize rest = n % kernels->lanes, whole = n - rest;
+
+  if (whole > 0)
+    kernel (q, x, whole, f, df);
+  if (rest > 0)
+    {
+      double last_x[BT_MAX_LANES], last_f[BT_MAX_LANES], slopes[BT_SHAPE_MAX_PARAMETERS][BT_MAX_LANES];
+      double *const last_df[BT_SHAPE_MAX_PARAMETERS] = { slopes[0], slopes[1], slopes[2] };
+
+      for (gsize i = 0; i < kernels->lanes; i++)
+        last_x[i] = x[whole + MIN (i, rest - 1)];
+      kernel (q, last_x, kernels->lanes, last_f, df == NULL ? NULL : last_df);
+      memcpy (f + whole, last_f, rest * sizeof (double));
+      for (guint k = 0; k < n_parameters && df != NULL; k++)
+        if (df[k] != NULL)
+          memcpy (df[k] + whole, slopes[k], rest * sizeof (double));
+    }
+}
+
 void
 bt_shape_eval (BtShape shape, const double *q, const double *x, gsize n, double *f, double *const *df)
 {
+  const BtShapeKernels *kernels = bt_shape_kernels (bt_path_best ());
+
   g_return_if_fail (shape < BT_N_SHAPES);
-  bt_shape_kernels (bt_path_best ())->eval[shape](q, x, n, f, df);
+  bt_shape_run (kernels, kernels->eval[shape], shapes[shape].n_parameters, q, x, n, f, df);
 }
 
 /* Where a falling exponential of decay @b is under @loss: beyond @distance from the reference, on one side. */

@@ -3,13 +3,6 @@
 #define LN16 2.772588722239781 /* 4 ln 2 */
 
 
-KERNEL void
-store_column (double *const *df, guint parameter, gsize i, gsize n, V v)
-{
-  if (df != NULL && df[parameter] != NULL)
-    store (df[parameter] + i, n - i, v);
-}
-
 ENTRY void
 gaussian (const double *q, const double *x, gsize n, double *f, double *const *df)
 {
@@ -17,15 +10,15 @@ gaussian (const double *q, const double *x, gsize n, double *f, double *const *d
 
   for (gsize i = 0; i < n; i += LANES)
     {
-      V u = (load (x + i, n - i) - q[0]) * inverse, g = exp_flushed (u * u * -LN16);
+      V u = (load (x + i) - q[0]) * inverse, g = exp_flushed (u * u * -LN16);
 
-      store (f + i, n - i, g);
+      store (f + i, g);
       if (df != NULL)
         {
           V d = u * g * slope;
 
-          store_column (df, 0, i, n, d);
-          store_column (df, 1, i, n, u * d);
+          store_column (df, 0, i, d);
+          store_column (df, 1, i, u * d);
         }
     }
 }
@@ -36,15 +29,15 @@ lorentzian_of (double centre, double inverse, double per, const double *x, gsize
 {
   for (gsize i = 0; i < n; i += LANES)
     {
-      V u = (load (x + i, n - i) - centre) * inverse, l = 1.0 / (1.0 + u * u);
+      V u = (load (x + i) - centre) * inverse, l = 1.0 / (1.0 + u * u);
 
-      store (f + i, n - i, l);
+      store (f + i, l);
       if (df != NULL)
         {
           V d = u * l; /* before squaring, or far away infinity times 0 */
 
-          store_column (df, 0, i, n, d * l * (2 * inverse));
-          store_column (df, 1, i, n, d * d * (2 * inverse * per));
+          store_column (df, 0, i, d * l * (2 * inverse));
+          store_column (df, 1, i, d * d * (2 * inverse * per));
         }
     }
 }
@@ -68,17 +61,17 @@ pseudo_voigt (const double *q, const double *x, gsize n, double *f, double *cons
 
   for (gsize i = 0; i < n; i += LANES)
     {
-      V u = (load (x + i, n - i) - q[0]) * inverse, g = exp_flushed (u * u * -LN16), l = 1.0 / (1.0 + 4.0 * u * u);
+      V u = (load (x + i) - q[0]) * inverse, g = exp_flushed (u * u * -LN16), l = 1.0 / (1.0 + 4.0 * u * u);
 
-      store (f + i, n - i, rest * g + share * l);
+      store (f + i, rest * g + share * l);
       if (df != NULL)
         {
           V ul = u * l;
           V dg = u * g * (2 * LN16 * inverse * rest), dl = ul * (8 * inverse * share);
 
-          store_column (df, 0, i, n, dg + dl * l);
-          store_column (df, 1, i, n, u * dg + dl * ul);
-          store_column (df, 2, i, n, l - g);
+          store_column (df, 0, i, dg + dl * l);
+          store_column (df, 1, i, u * dg + dl * ul);
+          store_column (df, 2, i, l - g);
         }
     }
 }
@@ -90,17 +83,17 @@ fano (const double *q, const double *x, gsize n, double *f, double *const *df)
 
   for (gsize i = 0; i < n; i += LANES)
     {
-      V u = (load (x + i, n - i) - q[0]) * inverse, l = 1.0 / (1.0 + u * u), s = u + a;
+      V u = (load (x + i) - q[0]) * inverse, l = 1.0 / (1.0 + u * u), s = u + a;
 
-      store (f + i, n - i, s * (s * l) * norm);
+      store (f + i, s * (s * l) * norm);
       if (df != NULL)
         {
           V common = (s * l) * (1.0 - a * u) * (2 * norm); /* df/da = common norm, df/du = common l */
           V d = common * l * -inverse;
 
-          store_column (df, 0, i, n, d);
-          store_column (df, 1, i, n, 0.5 * u * d);
-          store_column (df, 2, i, n, common * norm);
+          store_column (df, 0, i, d);
+          store_column (df, 1, i, 0.5 * u * d);
+          store_column (df, 2, i, common * norm);
         }
     }
 }

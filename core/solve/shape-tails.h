@@ -19,10 +19,10 @@ exponential (const double *q, const double *x, gsize n, double *f, double *const
 {
   for (gsize i = 0; i < n; i += LANES)
     {
-      V l = load (x + i, n - i) - q[1], e = exp_full (l * -q[0]);
+      V l = load (x + i) - q[1], e = exp_full (l * -q[0]);
 
-      store (f + i, n - i, e);
-      store_column (df, 0, i, n, -l * e);
+      store (f + i, e);
+      store_column (df, 0, i, -l * e);
     }
 }
 
@@ -31,10 +31,10 @@ reciprocal_exponential (const double *q, const double *x, gsize n, double *f, do
 {
   for (gsize i = 0; i < n; i += LANES)
     {
-      V v = load (x + i, n - i), l = (q[1] - v) / (v * q[1]), e = exp_full (l * -q[0]);
+      V v = load (x + i), l = (q[1] - v) / (v * q[1]), e = exp_full (l * -q[0]);
 
-      store (f + i, n - i, e);
-      store_column (df, 0, i, n, -l * e);
+      store (f + i, e);
+      store_column (df, 0, i, -l * e);
     }
 }
 
@@ -43,26 +43,26 @@ power (const double *q, const double *x, gsize n, double *f, double *const *df)
 {
   for (gsize i = 0; i < n; i += LANES)
     {
-      V r = load (x + i, n - i) / q[1], l = log_normal (r), e;
+      V r = load (x + i) / q[1];
+      V l = below (r, splat (0x1p-1022), splat (NAN), log_normal (r) + (r - r)); /* r - r: infinities and NaN give NaN */
+      V e = exp_full (l * -q[0]);
 
-      l = pick ((r >= 0x1p-1022) & (r <= 0x1.fffffffffffffp1023), l, splat (NAN));
-      e = exp_full (l * -q[0]);
-      store (f + i, n - i, e);
-      store_column (df, 0, i, n, -l * e);
+      store (f + i, e);
+      store_column (df, 0, i, -l * e);
     }
 }
 
-/* Not a shape: exp of an array, for the tests and whoever needs it. */
+/* Not shapes: exp and log of x. */
 ENTRY void
-exponentials (const double *x, gsize n, double *out)
+exponentials (const double *q, const double *x, gsize n, double *f, double *const *df)
 {
   for (gsize i = 0; i < n; i += LANES)
-    store (out + i, n - i, exp_full (load (x + i, n - i)));
+    store (f + i, exp_full (load (x + i)));
 }
 
 ENTRY void
-logarithms (const double *x, gsize n, double *out)
+logarithms (const double *q, const double *x, gsize n, double *f, double *const *df)
 {
   for (gsize i = 0; i < n; i += LANES)
-    store (out + i, n - i, log_normal (load (x + i, n - i)));
+    store (f + i, log_normal (load (x + i)));
 }

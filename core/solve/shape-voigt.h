@@ -71,20 +71,20 @@ voigt_by_faddeeva (const double *q, const double *x, gsize n, double *f, double 
   peak_slope = 2 * y * peak[0] - TWO_OVER_SQRT_PI; /* by y */
   for (gsize i = 0; i < n; i += LANES)
     {
-      V u = (load (x + i, n - i) - q[0]) * scale, k, l, value;
+      V u = (load (x + i) - q[0]) * scale, k, l, value;
 
       faddeeva (u, y, &k, &l);
       value = k * height;
-      store (f + i, n - i, value);
+      store (f + i, value);
       if (df != NULL)
         {
           /* w' = dRe/du + i dIm/du = -2 z w + 2 i / sqrt pi, and dRe/dy = -dIm/du. */
           V by_u = (y * l - u * k) * (2 * height);
           V by_y = ((2.0 * (u * l + y * k) - TWO_OVER_SQRT_PI) - value * peak_slope) * height;
 
-          store_column (df, 0, i, n, by_u * -scale);
-          store_column (df, 1, i, n, (u * by_u + y * by_y) * -inverse);
-          store_column (df, 2, i, n, by_y * (SQRT_LN2 * inverse));
+          store_column (df, 0, i, by_u * -scale);
+          store_column (df, 1, i, (u * by_u + y * by_y) * -inverse);
+          store_column (df, 2, i, by_y * (SQRT_LN2 * inverse));
         }
     }
 }
@@ -124,18 +124,18 @@ voigt_by_nodes (const double *q, const double *x, gsize n, double *f, double *co
   peak_slope = slope[0];
   for (gsize i = 0; i < n; i += LANES)
     {
-      V t = (load (x + i, n - i) - q[0]) * (2 * inverse), sum, by_t, by_h, value;
+      V t = (load (x + i) - q[0]) * (2 * inverse), sum, by_t, by_h, value;
 
       convolve (t, h, &sum, &by_t, &by_h);
       value = sum * height;
-      store (f + i, n - i, value);
+      store (f + i, value);
       if (df != NULL)
         {
           by_t = by_t * height;
           by_h = (by_h - value * peak_slope) * height;
-          store_column (df, 0, i, n, by_t * (-2 * inverse));
-          store_column (df, 1, i, n, by_h * (inverse / SQRT_LN2));
-          store_column (df, 2, i, n, (t * by_t + h * by_h) * -inverse);
+          store_column (df, 0, i, by_t * (-2 * inverse));
+          store_column (df, 1, i, by_h * (inverse / SQRT_LN2));
+          store_column (df, 2, i, (t * by_t + h * by_h) * -inverse);
         }
     }
 }

@@ -26,6 +26,12 @@ static const struct { const char *title; BtShape shape; double q[BT_SHAPE_MAX_PA
   { "plasmon", BT_SHAPE_PLASMON, { 4.6, 1.1 } },
 };
 
+static void
+eval_by (const BtShapeKernels *kernels, BtShape shape, const double *q, const double *x, gsize n, double *f, double *const *df)
+{
+  bt_shape_run (kernels, kernels->eval[shape], bt_shape_n_parameters (shape), q, x, n, f, df);
+}
+
 static double x[POINTS], f[POINTS], slopes[3][POINTS];
 static volatile double sink;
 
@@ -38,7 +44,7 @@ by_kernel (const BtShapeKernels *kernels, BtShape shape, const double *q, gboole
     {
       double *df[3] = { slopes[0] + i, slopes[1] + i, slopes[2] + i };
 
-      kernels->eval[shape](q, x + i, MIN (BLOCK, POINTS - i), f + i, with_slopes ? df : NULL);
+      eval_by (kernels, shape, q, x + i, MIN (BLOCK, POINTS - i), f + i, with_slopes ? df : NULL);
     }
 }
 
@@ -46,7 +52,7 @@ static void
 exp_by_kernel (const BtShapeKernels *kernels, BtShape shape, const double *q, gboolean with_slopes)
 {
   for (gsize i = 0; i < POINTS; i += BLOCK)
-    kernels->exponential (x + i, MIN (BLOCK, POINTS - i), f + i);
+    bt_shape_run (kernels, kernels->exponential, 0, NULL, x + i, MIN (BLOCK, POINTS - i), f + i, NULL);
 }
 
 static void

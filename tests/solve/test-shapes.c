@@ -9,6 +9,12 @@
 #include "shape-private.h"
 #include "voigt-reference.h"
 
+static void
+eval_by (const BtShapeKernels *kernels, BtShape shape, const double *q, const double *x, gsize n, double *f, double *const *df)
+{
+  bt_shape_run (kernels, kernels->eval[shape], bt_shape_n_parameters (shape), q, x, n, f, df);
+}
+
 static long double
 reference (BtShape shape, const long double *q, long double x)
 {
@@ -129,7 +135,7 @@ check_case (const BtShapeKernels *kernels, BtPath path, const Case *row)
     q[i] = row->q[i];
   for (int i = 0; i < POINTS; i++)
     x[i] = row->low + (row->high - row->low) * i / (POINTS - 1);
-  kernels->eval[row->shape](row->q, x, POINTS, f, df);
+  eval_by (kernels, row->shape, row->q, x, POINTS, f, df);
   for (int i = 0; i < POINTS; i++)
     {
       long double exact = reference (row->shape, q, x[i]);
@@ -148,7 +154,7 @@ check_case (const BtShapeKernels *kernels, BtPath path, const Case *row)
       for (int sign = 0; sign < 2; sign++)
         {
           moved[k] = row->q[k] + (sign ? step : -step);
-          kernels->eval[row->shape](moved, x, POINTS, near + sign * POINTS, NULL);
+          eval_by (kernels, row->shape, moved, x, POINTS, near + sign * POINTS, NULL);
         }
       worst = largest = 0;
       for (int i = 0; i < POINTS; i++)
@@ -213,7 +219,7 @@ check_place (const BtShapeKernels *kernels, const Case *row)
 
   for (int i = 0; i < N; i++)
     whole_x[i] = row->low + (row->high - row->low) * i / (N - 1);
-  kernels->eval[row->shape](row->q, whole_x, N, whole[0], df);
+  eval_by (kernels, row->shape, row->q, whole_x, N, whole[0], df);
   for (gsize offset = 0; offset < 8; offset++)
     for (gsize n = 1; n <= 20; n++)
       for (gsize from = 0; from + n <= N; from += 7)
@@ -223,7 +229,7 @@ check_place (const BtShapeKernels *kernels, const Case *row)
           memcpy (x + offset, whole_x + from, n * sizeof (double));
           for (int k = 0; k < 4; k++)
             part[k][offset + n] = -77;
-          kernels->eval[row->shape](row->q, x + offset, n, part[0] + offset, offset == 1 ? NULL : part_df);
+          eval_by (kernels, row->shape, row->q, x + offset, n, part[0] + offset, offset == 1 ? NULL : part_df);
           g_assert_true (memcmp (part[0] + offset, whole[0] + from, n * sizeof (double)) == 0);
           for (guint k = 0; k < m && offset != 1; k++)
             if (part_df[k] != NULL)
@@ -263,8 +269,8 @@ test_paths (void)
 
       for (int k = 0; k < N; k++)
         x[k] = row->low + (row->high - row->low) * k / (N - 1);
-      plain->eval[row->shape](row->q, x, N, slow, NULL);
-      avx2->eval[row->shape](row->q, x, N, fast, NULL);
+      eval_by (plain, row->shape, row->q, x, N, slow, NULL);
+      eval_by (avx2, row->shape, row->q, x, N, fast, NULL);
       for (int k = 0; k < N; k++)
         {
           largest = fmax (largest, fabs (slow[k]));
@@ -274,7 +280,7 @@ test_paths (void)
       g_assert_cmpfloat (worst / largest, <=, row->shape == BT_SHAPE_VOIGT ? 1e-14 : 2e-15);
       if (avx512 != NULL)
         {
-          avx512->eval[row->shape](row->q, x, N, widest, NULL);
+          eval_by (avx512, row->shape, row->q, x, N, widest, NULL);
           g_assert_true (memcmp (widest, fast, sizeof fast) == 0);
         }
     }
@@ -292,7 +298,7 @@ test_extremes (void)
         double q[3] = { 1.5, 0.2, 0.3 };
         const double x[9] = { 1.5, NAN, -1e9, 1e9, 1e3, 1.6, 1e-300, 16, 1.4 };
 
-        bt_shape_kernels (path)->eval[shape](q, x, 9, f, df);
+        eval_by (bt_shape_kernels (path), shape, q, x, 9, f, df);
         for (int i = 0; i < 9; i++)
           {
             if (i == 1 || (shape == BT_SHAPE_POWER && x[i] < 0))
@@ -312,7 +318,7 @@ test_extremes (void)
             const double kept = q[k];
 
             q[k] = NAN;
-            bt_shape_kernels (path)->eval[shape](q, x, 9, f, df);
+            eval_by (bt_shape_kernels (path), shape, q, x, 9, f, df);
             for (int i = 0; i < 9; i++)
               g_assert_true (isnan (f[i]));
             q[k] = kept;
