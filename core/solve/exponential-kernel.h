@@ -1,13 +1,14 @@
-/* exp and log of vectors. Coefficients: interpolation at Chebyshev nodes in 50 digits, rounded; errors of the polynomials 1.6e-17 and 4.6e-18. */
+/* exp and log of vectors. Coefficients: interpolation at Chebyshev nodes in 50 digits, rounded; errors of the
+ * polynomials 1.6e-17 and 4.6e-18. */
 
-#define ROUNDER 0x1.8p52               /* adding it rounds to an integer, which then stands in the low bits */
+#define ROUNDER 0x1.8p52 /* adding it rounds to an integer, which then stands in the low bits */
 #define LOG2_E 0x1.71547652b82fep0
-#define LN2_HIGH 0x1.62e42fefa0000p-1  /* 37 bits: times an exponent it is exact */
+#define LN2_HIGH 0x1.62e42fefa0000p-1 /* 37 bits: times an exponent it is exact */
 #define LN2_LOW 0x1.cf79abc9e3b3ap-40
 #define ONE_BITS G_GUINT64_CONSTANT (0x3ff0000000000000)
 
-/* exp (x) = p 2^n, p in about [0.7, 1.42]; returns p. @rounded has n in its low bits. @careful: also keep what 1 + r loses, which takes the error from 1.1 to
- * 0.8 units in the last place. */
+/* exp (x) = p 2^n, p in about [0.7, 1.42]; returns p. @rounded has n in its low bits. @careful: also keep what 1 + r loses,
+ * which takes the error from 1.1 to 0.8 units in the last place. */
 KERNEL V
 exp_parts (V x, gboolean careful, V *rounded)
 {
@@ -28,7 +29,7 @@ exp_parts (V x, gboolean careful, V *rounded)
 KERNEL V
 two_to (V rounded)
 {
-  return (V) (((U) rounded << 52) + ONE_BITS);
+  return (V)(((U)rounded << 52) + ONE_BITS);
 }
 
 /* For arguments that cannot exceed 709; 0 below -708. */
@@ -50,19 +51,21 @@ exp_full (V x)
   return (p * two_to (half)) * two_to ((n - (half - ROUNDER)) + ROUNDER);
 }
 
-/* For positive normal numbers; anything else gives nothing useful. log (2^k m) = k ln 2 + log (1 + f), 1/sqrt 2 <= m < sqrt 2; log (1 + f) = f - f^2/2 + s
- * (f^2/2 + s^2 P (s^2)), s = f / (2 + f): the series of 2 artanh s with its first term written so that it does not lose digits. */
+/* For positive normal numbers; anything else gives nothing useful. log (2^k m) = k ln 2 + log (1 + f), 1/sqrt 2 <= m < sqrt 2;
+ * log (1 + f) = f - f^2/2 + s (f^2/2 + s^2 P (s^2)), s = f / (2 + f): the series of 2 artanh s with its first term written so
+ * that it does not lose digits. */
 KERNEL V
 log_normal (V x)
 {
   const guint64 low = G_GUINT64_CONSTANT (0x3fe6a09e667f3bcd), tower = G_GUINT64_CONSTANT (0x4330000000000000);
-  U e = ((U) x - low + ONE_BITS) >> 52;
-  V k = (V) (e | tower) - (0x1p52 + 1023);
-  V f = (V) ((U) x - (e << 52) + ONE_BITS) - 1.0;
+  U e = ((U)x - low + ONE_BITS) >> 52;
+  V k = (V)(e | tower) - (0x1p52 + 1023);
+  V f = (V)((U)x - (e << 52) + ONE_BITS) - 1.0;
   V s = f / (2.0 + f), z = s * s, half = 0.5 * f * f, y = z * z;
   V p = (splat (0x1.5555555555558p-1) + z * 0x1.99999999952d7p-2)
-        + y * ((splat (0x1.2492492df281ap-2) + z * 0x1.c71c62e3f11e6p-3)
-               + y * (splat (0x1.7462b51cb66b1p-3) + z * 0x1.39fe51a7c18f9p-3 + y * 0x1.2b5900de53b32p-3));
+        + y
+              * ((splat (0x1.2492492df281ap-2) + z * 0x1.c71c62e3f11e6p-3)
+                 + y * (splat (0x1.7462b51cb66b1p-3) + z * 0x1.39fe51a7c18f9p-3 + y * 0x1.2b5900de53b32p-3));
 
   return k * LN2_HIGH - ((half - (s * (half + z * p) + k * LN2_LOW)) - f);
 }

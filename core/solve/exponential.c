@@ -1,5 +1,5 @@
-/* exp of whole arrays: reduction by ln 2 in two parts, a polynomial of degree 11, and the power of two in two steps so that subnormal results are
- * rounded once. The kernel is in exponential-kernel.h. */
+/* exp of whole arrays: reduction by ln 2 in two parts, a polynomial of degree 11, and the power of two in two steps so that
+ * subnormal results are rounded once. The kernel is in exponential-kernel.h. */
 #include "exponential.h"
 
 #include "shape-private.h"

@@ -8,28 +8,35 @@
 
 #define LN16 2.772588722239781 /* 4 ln 2 */
 
-#define CENTRE { "centre", BT_SHAPE_ROLE_CENTRE }
-#define WIDTH { "width", BT_SHAPE_ROLE_WIDTH }
-#define REFERENCE { "reference", BT_SHAPE_ROLE_OTHER }
+typedef struct { const char *name; BtShapeRole role; } Parameter;
 
-static const struct {
-  const char *name;
-  guint n_parameters, n_references;
-  struct { const char *name; BtShapeRole role; } q[BT_SHAPE_MAX_PARAMETERS];
-} shapes[BT_N_SHAPES] = {
-  [BT_SHAPE_CONSTANT] = { "constant", 0, 0, { { NULL, 0 } } },
-  [BT_SHAPE_LINE] = { "line", 0, 1, { REFERENCE } },
-  [BT_SHAPE_GAUSSIAN] = { "gaussian", 2, 0, { CENTRE, WIDTH } },
-  [BT_SHAPE_LORENTZIAN] = { "lorentzian", 2, 0, { CENTRE, WIDTH } },
+/* Parameters, then references. */
+static const struct { const char *name; guint n_parameters, n_references; Parameter q[BT_SHAPE_MAX_PARAMETERS]; } shapes[] = {
+  [BT_SHAPE_CONSTANT] = { "constant", 0, 0, { { NULL, BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_LINE] = { "line", 0, 1, { { "reference", BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_GAUSSIAN] = { "gaussian", 2, 0, { { "centre", BT_SHAPE_ROLE_CENTRE }, { "width", BT_SHAPE_ROLE_WIDTH } } },
+  [BT_SHAPE_LORENTZIAN] = { "lorentzian", 2, 0, { { "centre", BT_SHAPE_ROLE_CENTRE }, { "width", BT_SHAPE_ROLE_WIDTH } } },
   [BT_SHAPE_VOIGT] = { "voigt", 3, 0,
-                       { CENTRE, { "gaussian width", BT_SHAPE_ROLE_WIDTH }, { "lorentzian width", BT_SHAPE_ROLE_WIDTH } } },
-  [BT_SHAPE_PSEUDO_VOIGT] = { "pseudo-voigt", 3, 0, { CENTRE, WIDTH, { "share", BT_SHAPE_ROLE_SHARE } } },
-  [BT_SHAPE_FANO] = { "fano", 3, 0, { CENTRE, WIDTH, { "asymmetry", BT_SHAPE_ROLE_OTHER } } },
-  [BT_SHAPE_EXPONENTIAL] = { "exponential", 1, 1, { { "decay", BT_SHAPE_ROLE_OTHER }, REFERENCE } },
-  [BT_SHAPE_RECIPROCAL_EXPONENTIAL] = { "reciprocal exponential", 1, 1, { { "decay", BT_SHAPE_ROLE_OTHER }, REFERENCE } },
-  [BT_SHAPE_POWER] = { "power", 1, 1, { { "exponent", BT_SHAPE_ROLE_OTHER }, REFERENCE } },
-  [BT_SHAPE_PLASMON] = { "plasmon", 2, 0, { CENTRE, { "half width", BT_SHAPE_ROLE_WIDTH } } },
+                       { { "centre", BT_SHAPE_ROLE_CENTRE },
+                         { "gaussian width", BT_SHAPE_ROLE_WIDTH },
+                         { "lorentzian width", BT_SHAPE_ROLE_WIDTH } } },
+  [BT_SHAPE_PSEUDO_VOIGT] = { "pseudo-voigt", 3, 0,
+                              { { "centre", BT_SHAPE_ROLE_CENTRE },
+                                { "width", BT_SHAPE_ROLE_WIDTH },
+                                { "share", BT_SHAPE_ROLE_SHARE } } },
+  [BT_SHAPE_FANO] = { "fano", 3, 0,
+                      { { "centre", BT_SHAPE_ROLE_CENTRE },
+                        { "width", BT_SHAPE_ROLE_WIDTH },
+                        { "asymmetry", BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_EXPONENTIAL] = { "exponential", 1, 1,
+                             { { "decay", BT_SHAPE_ROLE_OTHER }, { "reference", BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_RECIPROCAL_EXPONENTIAL] = { "reciprocal exponential", 1, 1,
+                                        { { "decay", BT_SHAPE_ROLE_OTHER }, { "reference", BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_POWER] = { "power", 1, 1, { { "exponent", BT_SHAPE_ROLE_OTHER }, { "reference", BT_SHAPE_ROLE_OTHER } } },
+  [BT_SHAPE_PLASMON] = { "plasmon", 2, 0, { { "centre", BT_SHAPE_ROLE_CENTRE }, { "half width", BT_SHAPE_ROLE_WIDTH } } },
 };
+
+G_STATIC_ASSERT (G_N_ELEMENTS (shapes) == BT_N_SHAPES);
 
 const char *
 bt_shape_name (BtShape shape)
@@ -44,7 +51,7 @@ bt_shape_from_name (const char *name, BtShape *shape)
   for (guint i = 0; i < BT_N_SHAPES; i++)
     if (g_ascii_strcasecmp (name, shapes[i].name) == 0)
       {
-        *shape = (BtShape) i;
+        *shape = (BtShape)i;
         return TRUE;
       }
   return FALSE;
@@ -121,8 +128,8 @@ bt_shape_kernels (BtPath path)
 
 /* Whole vectors in place, the rest in one filled up with its last point. */
 void
-bt_shape_run (const BtShapeKernels *kernels, BtShapeKernel kernel, guint n_parameters, const double *q, const double *x, gsize n,
-              double *f, double *const *df)
+bt_shape_run (const BtShapeKernels *kernels, BtShapeKernel kernel, guint n_parameters, const double *q, const double *x,
+              gsize n, double *f, double *const *df)
 {
   const gsize rest = n % kernels->lanes, whole = n - rest;
 

@@ -1,10 +1,13 @@
 /* All kernels for one instruction set: see shape-vector.h for what to define first. Ends with their table, called KERNELS. */
 #include "shape-private.h"
+
 #include "shape-vector.h"
+
 #include "exponential-kernel.h"
+
 #include "shape-peaks.h"
-#include "shape-voigt.h"
 #include "shape-tails.h"
+#include "shape-voigt.h"
 
 const BtShapeKernels KERNELS = {
   .lanes = LANES,

@@ -2,7 +2,6 @@
 
 #define LN16 2.772588722239781 /* 4 ln 2 */
 
-
 ENTRY void
 gaussian (const double *q, const double *x, gsize n, double *f, double *const *df)
 {

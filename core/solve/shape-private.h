@@ -14,12 +14,19 @@ G_BEGIN_DECLS
 #define BT_MAX_LANES 8
 
 /* @BT_PATH_PLAIN: what the compiler does for the baseline; on x86-64 two doubles at once, without fused multiply-add. */
-typedef enum { BT_PATH_PLAIN, BT_PATH_AVX2, BT_PATH_AVX512, BT_N_PATHS } BtPath;
+typedef enum
+{
+  BT_PATH_PLAIN,
+  BT_PATH_AVX2,
+  BT_PATH_AVX512,
+  BT_N_PATHS
+} BtPath;
 
 /* As bt_shape_eval(), but for @n a multiple of the lanes. */
 typedef void (*BtShapeKernel) (const double *q, const double *x, gsize n, double *f, double *const *df);
 
-typedef struct {
+typedef struct
+{
   gsize lanes;
   BtShapeKernel eval[BT_N_SHAPES];
   BtShapeKernel exponential, logarithm; /* of x, without q and derivatives; logarithm: positive normal numbers only */
@@ -32,8 +39,8 @@ BtPath bt_path_best (void);
 const BtShapeKernels *bt_shape_kernels (BtPath path);
 
 /* Any @n; @n_parameters: how many derivatives @df has. */
-void bt_shape_run (const BtShapeKernels *kernels, BtShapeKernel kernel, guint n_parameters, const double *q, const double *x, gsize n,
-                   double *f, double *const *df);
+void bt_shape_run (const BtShapeKernels *kernels, BtShapeKernel kernel, guint n_parameters, const double *q, const double *x,
+                   gsize n, double *f, double *const *df);
 
 extern const BtShapeKernels bt_shape_kernels_plain;
 #ifdef BT_HAVE_AVX

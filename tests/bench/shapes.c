@@ -2,8 +2,8 @@
  *
  *   meson test -C BUILD --benchmark shapes --verbose
  *
- * 1,301 points over a usual range, in blocks of 64 as a fit asks for them; best of 25. The last column is the time with all derivatives over that of exp(),
- * for the fastest set. Compare figures of one run only. */
+ * 1,301 points over a usual range, in blocks of 64 as a fit asks for them; best of 25. The last column is the time with all
+ * derivatives over that of exp(), for the fastest set. Compare figures of one run only. */
 #include <bandtally/shape.h>
 
 #include <math.h>
@@ -11,12 +11,24 @@
 
 #include "shape-private.h"
 
-enum { POINTS = 1301, BLOCK = 64, PASSES = 40, TRIES = 25 };
+enum
+{
+  POINTS = 1301,
+  BLOCK = 64,
+  PASSES = 40,
+  TRIES = 25
+};
 
-static const struct { const char *title; BtShape shape; double q[BT_SHAPE_MAX_PARAMETERS]; } rows[] = {
+static const struct
+{
+  const char *title;
+  BtShape shape;
+  double q[BT_SHAPE_MAX_PARAMETERS];
+} rows[] = {
   { "Gaussian", BT_SHAPE_GAUSSIAN, { 1.7, 0.3 } },
   { "Lorentzian", BT_SHAPE_LORENTZIAN, { 1.7, 0.3 } },
   { "Voigt, wl = 0.3 wg", BT_SHAPE_VOIGT, { 1.7, 0.3, 0.09 } },
+  { "Voigt, narrow: wings", BT_SHAPE_VOIGT, { 1.7, 0.1, 0.03 } },
   { "Voigt, wl = 7 wg", BT_SHAPE_VOIGT, { 1.7, 0.1, 0.7 } },
   { "pseudo-Voigt", BT_SHAPE_PSEUDO_VOIGT, { 1.7, 0.3, 0.3 } },
   { "Fano", BT_SHAPE_FANO, { 1.7, 0.3, 3 } },
@@ -77,9 +89,9 @@ measure (Work work, const BtShapeKernels *kernels, BtShape shape, const double *
           work (kernels, shape, q, with_slopes);
           sink += f[pass];
         }
-      best = fmin (best, (double) (g_get_monotonic_time () - start));
+      best = fmin (best, (double)(g_get_monotonic_time () - start));
     }
-  return best * 1e3 / ((double) PASSES * POINTS);
+  return best * 1e3 / ((double)PASSES * POINTS);
 }
 
 int

@@ -16,16 +16,39 @@ run_by (BtPath path, BtShapeKernel kernel, const double *x, gsize n, double *out
 static double
 units_off (double value, long double exact)
 {
-  return (double) (fabsl (value - exact) / ldexpl (1, MAX (ilogbl (exact) - 52, -1074)));
+  return (double)(fabsl (value - exact) / ldexpl (1, MAX (ilogbl (exact) - 52, -1074)));
 }
 
 static void
 test_exponential (void)
 {
-  /* exp() of the C library has these exactly right by definition (ISO C annex F) or, for finite results, to its last bit here. */
-  static const double special[] = { 0, -0.0, INFINITY, -INFINITY, NAN, 709.782712893384, 709.782712893385, 710, 1e300, -745.1332191019411,
-                                    -745.1332191019412, -745.2, -746, -1000, -1e300, 0x1p-1074, -0x1p-1074, 1e-17, -708.4 };
-  enum { N = 1000, ROUNDS = 600, M = G_N_ELEMENTS (special) };
+  /* exp() of the C library has these exactly right by definition (ISO C annex F) or, for finite results, to its last bit here.
+   */
+  static const double special[] = { 0,
+                                    -0.0,
+                                    INFINITY,
+                                    -INFINITY,
+                                    NAN,
+                                    709.782712893384,
+                                    709.782712893385,
+                                    710,
+                                    1e300,
+                                    -745.1332191019411,
+                                    -745.1332191019412,
+                                    -745.2,
+                                    -746,
+                                    -1000,
+                                    -1e300,
+                                    0x1p-1074,
+                                    -0x1p-1074,
+                                    1e-17,
+                                    -708.4 };
+  enum
+  {
+    N = 1000,
+    ROUNDS = 600,
+    M = G_N_ELEMENTS (special)
+  };
   g_autoptr (GRand) rand = g_rand_new ();
   double x[N], y[N], z[M];
 
@@ -77,7 +100,11 @@ test_exponential (void)
 static void
 test_logarithm (void)
 {
-  enum { N = 1000, ROUNDS = 300 };
+  enum
+  {
+    N = 1000,
+    ROUNDS = 300
+  };
   g_autoptr (GRand) rand = g_rand_new ();
   double x[N], y[N];
 

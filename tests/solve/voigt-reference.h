@@ -1,5 +1,5 @@
-/* The Voigt function in long double, in a way that shares nothing with the kernels: the trapezoidal rule with its pole's correction (Matta and Reichl, Math. Comp.
- * 25, 339 (1971), from memory). test-voigt.c checks it against 25-digit values. */
+/* The Voigt function in long double, in a way that shares nothing with the kernels: the trapezoidal rule with its pole's
+ * correction (Matta and Reichl, Math. Comp. 25, 339 (1971), from memory). test-voigt.c checks it against 25-digit values. */
 #ifndef VOIGT_REFERENCE_H
 #define VOIGT_REFERENCE_H
 
@@ -9,11 +9,13 @@
 #define LN2L 0.693147180559945309417232121458176568L
 #define PIL 3.141592653589793238462643383279502884L
 
-/* w(z) for Im z >= 0 by the trapezoidal rule with step 0.4: error about exp(-(pi / 0.4)^2) = 2e-27. The grid is the one whose points stay away from z. */
+/* w(z) for Im z >= 0 by the trapezoidal rule with step 0.4: error about exp(-(pi / 0.4)^2) = 2e-27. The grid is the one whose
+ * points stay away from z. */
 static inline long double complex
 faddeeva (long double complex z)
 {
-  const long double h = 0.4L, share = creall (z) / h - floorl (creall (z) / h), shift = share >= 0.25L && share <= 0.75L ? 0 : 0.5L;
+  const long double h = 0.4L, share = creall (z) / h - floorl (creall (z) / h),
+                    shift = share >= 0.25L && share <= 0.75L ? 0 : 0.5L;
   long double complex sum = 0;
 
   for (int k = -20; k < 20; k++)
