@@ -111,7 +111,7 @@ static const Case cases[] = {
 
 enum
 {
-  POINTS = 1301
+  POINTS = 403
 };
 
 /* How far a parameter moves for differences: a share of what its scale is. */
