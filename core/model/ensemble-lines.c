@@ -24,3 +24,17 @@ bt_ensemble_add_line (const double *energy_ev, gsize n, double centre_ev, double
       out->wings[i] += lorentz * l - gauss * g;
     }
 }
+
+void
+bt_ensemble_add_value (const double *energy_ev, gsize n, double centre_ev, double fwhm_ev, double wings, double factor, double *out)
+{
+  const double inverse = 1 / fwhm_ev;
+  const double gauss_share = (1 - wings) * factor * inverse / GAUSSIAN_AREA, lorentz_share = wings * factor * inverse / (G_PI / 2);
+
+  for (gsize i = 0; i < n; i++)
+    {
+      const double x = (energy_ev[i] - centre_ev) * inverse, x2 = x * x;
+
+      out[i] += lorentz_share / (1 + 4 * x2) + (LN16 * x2 < 40 ? gauss_share * exp (-LN16 * x2) : 0);
+    }
+}

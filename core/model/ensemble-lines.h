@@ -11,4 +11,7 @@ typedef struct { double *value, *centre, *width, *wings; } BtLineColumns;
 /* Adds @factor times a line of area 1 to the columns. Gaussians are left out where they are below e^-40 of their crown. */
 void bt_ensemble_add_line (const double *energy_ev, gsize n, double centre_ev, double fwhm_ev, double wings, double factor, const BtLineColumns *out);
 
+/* Adds only the value. */
+void bt_ensemble_add_value (const double *energy_ev, gsize n, double centre_ev, double fwhm_ev, double wings, double factor, double *out);
+
 #endif

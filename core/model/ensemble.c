@@ -259,6 +259,7 @@ typedef struct {
   double *columns;   /* p columns of n: the Jacobian by columns, not yet over sigma */
   double *line;      /* 8 columns of n */
   double *model, *area, *by_mean, *by_spread;
+  gboolean values_only; /* a trial that may be thrown away: the model alone */
 } Work;
 
 static void
@@ -321,6 +322,13 @@ add_transition (Work *work, const Transition *t, double wings, double abundance,
   BtLineColumns side = { work->line + 4 * n, work->line + 5 * n, work->line + 6 * n, work->line + 7 * n };
   const double s = t->has_sideband ? t->sideband : 0;
 
+  if (work->values_only)
+    {
+      bt_ensemble_add_value (e, n, t->centre, t->fwhm, wings, (1 - s) * t->strength * abundance, work->model);
+      if (s > 0)
+        bt_ensemble_add_value (e, n, t->centre + BT_SIDEBAND_EV, BT_SIDEBAND_WIDTH * t->fwhm, wings, s * t->strength * abundance, work->model);
+      return;
+    }
   memset (work->line, 0, sizeof (double) * (t->has_sideband ? 8 : 4) * n);
   bt_ensemble_add_line (e, n, t->centre, t->fwhm, wings, t->strength, &own);
   if (t->has_sideband)
@@ -432,7 +440,7 @@ evaluate (Work *work, const double *x)
   const gsize n = work->data->n;
   const double unit_m = x[fit->first_common + BT_ENSEMBLE_AREA_M];
 
-  memset (work->columns, 0, sizeof (double) * fit->p * n);
+  memset (work->columns, 0, sizeof (double) * (work->values_only ? fit->first_common : fit->p) * n);
   add_smooth (work, x);
   abundances (fit, x, work->area, work->by_mean, work->by_spread);
   for (guint i = 0; i < fit->tubes->len; i++)
@@ -443,6 +451,8 @@ evaluate (Work *work, const double *x)
         add_semiconducting (work, x, i);
       else
         add_metallic (work, x, i);
+      if (work->values_only)
+        continue;
       /* By the abundance's logarithm: value times abundance. M11's scale may be 0 and has its own column. */
       if (i < fit->n_semiconducting)
         add_scaled (common_column (work, BT_ENSEMBLE_LOG_S), value, area, n);
@@ -463,6 +473,7 @@ model_function (const double *x, double *residual, double *jacobian, gpointer us
   const BtFilmData *data = work->data;
   const gsize n = data->n, p = work->fit->p;
 
+  work->values_only = jacobian == NULL;
   evaluate (work, x);
   for (gsize i = 0; i < n; i++)
     residual[i] = (work->model[i] - data->absorbance[i]) / data->sigma[i];

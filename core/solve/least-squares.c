@@ -12,7 +12,8 @@ typedef struct
 {
   const BtProblem *problem;
   gsize n, p, stride;
-  double *residual, *jacobian, *rows, *work;
+  double *residual, *jacobian, *rows, *columns, *work;
+  guint *index;
   const BtKernel *kernel;
 } Call;
 
@@ -22,38 +23,27 @@ has_prior (const BtProblem *problem, gsize j)
   return problem->prior_mean != NULL && problem->prior_u != NULL && isfinite (problem->prior_u[j]) && problem->prior_u[j] > 0;
 }
 
-/* Upper triangle of J'J and J'r, four rows at a time so that each element of the sum is loaded once for four products. */
+/* Upper triangle of J'J and J'r: blocks of rows turned into columns, whose products the kernel knows. The residual is the last column. */
 static void
 accumulate_normal (const Call *call, double *a)
 {
   const gsize n = call->n, p = call->p;
-  gsize i = 0;
 
-  for (; i + 4 <= n; i += 4)
+  for (gsize from = 0; from < n; from += BT_BLOCK)
     {
-      const double *r = call->residual + i;
-      const double *j0 = call->jacobian + i * p, *j1 = j0 + p, *j2 = j1 + p, *j3 = j2 + p;
+      const gsize count = MIN (BT_BLOCK, n - from);
 
-      for (gsize row = 0; row < p; row++)
+      if (count < BT_BLOCK)
+        memset (call->columns, 0, sizeof (double) * BT_BLOCK * (p + 1));
+      for (gsize i = 0; i < count; i++)
         {
-          double *restrict to = a + row * call->stride;
-          const double c0 = j0[row], c1 = j1[row], c2 = j2[row], c3 = j3[row];
+          const double *row = call->jacobian + (from + i) * p;
 
-          for (gsize b = row; b < p; b++)
-            to[b] += c0 * j0[b] + c1 * j1[b] + c2 * j2[b] + c3 * j3[b];
-          to[p] += c0 * r[0] + c1 * r[1] + c2 * r[2] + c3 * r[3];
+          for (gsize j = 0; j < p; j++)
+            call->columns[j * BT_BLOCK + i] = row[j];
+          call->columns[p * BT_BLOCK + i] = call->residual[from + i];
         }
-    }
-  for (; i < n; i++)
-    {
-      const double *from = call->jacobian + i * p;
-
-      for (gsize row = 0; row < p; row++)
-        {
-          for (gsize b = row; b < p; b++)
-            a[row * call->stride + b] += from[row] * from[b];
-          a[row * call->stride + p] += from[row] * call->residual[i];
-        }
+      call->kernel->products (call->columns, (guint)p + 1, call->index, a, call->stride);
     }
 }
 
@@ -141,6 +131,11 @@ bt_least_squares (const BtProblem *problem, BtSolution *solution)
   call.jacobian = g_new (double, call.n *call.p);
   call.rows = g_new (double, BT_BLOCK *call.stride);
   call.work = g_new (double, call.stride);
+  /* The kernel pads to a multiple of four columns. */
+  call.columns = g_aligned_alloc (BT_BLOCK * (call.p + 4), sizeof (double), 64);
+  call.index = g_new (guint, call.p + 4);
+  for (gsize j = 0; j < call.p + 4; j++)
+    call.index[j] = (guint)j;
   lm.data = &call;
   lm.evaluate = evaluate;
   lm.limits = problem->step_limit != NULL ? limits : NULL;
@@ -162,6 +157,8 @@ bt_least_squares (const BtProblem *problem, BtSolution *solution)
   g_free (call.jacobian);
   g_free (call.rows);
   g_free (call.work);
+  g_aligned_free (call.columns);
+  g_free (call.index);
   bt_lm_clear (&lm);
   return solution->state;
 }
