@@ -338,6 +338,12 @@ bt_forecast_compute (const BtForecast *f, double *wavelength_nm, double *absorba
   for (guint i = 0; i < tubes->len; i++)
     add_tube (f, g_array_index (tubes, BtTube, i), share[i], rng, energy, n, absorbance, scratch);
   bt_tail_eval (&f->tail, energy, n, tail);
+  if (f->more_tail.height > 0 || fabs (f->more_tail.offset) > 0)
+    {
+      bt_tail_eval (&f->more_tail, energy, n, scratch);
+      for (gsize i = 0; i < n; i++)
+        tail[i] += scratch[i];
+    }
   for (gsize i = 0; i < n; i++)
     absorbance[i] = scale * (absorbance[i] * f->s22_absorbance / (crown * f->strength_ratio) + tail[i]);
   add_instrument (f, wavelength_nm, absorbance, n, rng);
@@ -398,6 +404,13 @@ note_tail_and_instrument (GString *text, const BtForecast *f)
   for (guint k = 0; k < 2 && shape_names[f->tail.kind][k] != NULL; k++)
     note (text, shape_names[f->tail.kind][k], f->tail.shape[k]);
   note (text, "made with tail offset", f->tail.offset);
+  if (f->more_tail.height > 0)
+    {
+      g_string_append_printf (text, "# made with more tail = %s\n", bt_tail_name (f->more_tail.kind));
+      note (text, "made with more tail height", f->more_tail.height);
+      for (guint k = 0; k < 2 && shape_names[f->more_tail.kind][k] != NULL; k++)
+        note (text, shape_names[f->more_tail.kind][k], f->more_tail.shape[k]);
+    }
   note (text, "made with noise", f->noise);
   if (f->step_at_nm > 0)
     {

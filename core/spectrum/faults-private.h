@@ -18,6 +18,10 @@ G_GNUC_INTERNAL void bt_faults_find_saturated (const double *energy_ev, const do
 G_GNUC_INTERNAL void bt_faults_find_steps (const double *energy_ev, const double *absorbance, const double *noise, gsize n, const GArray *saturated,
                            GArray *steps);
 
+/* The step in the gap nearest to @at_ev, however small. FALSE where too few points lie on one of its sides. */
+G_GNUC_INTERNAL gboolean bt_faults_measure_step (const double *energy_ev, const double *absorbance, const double *noise, gsize n, double at_ev,
+                                                 BtStep *step);
+
 /* The strongest fringe: see bt_spectrum_find_fringe(). */
 G_GNUC_INTERNAL gboolean bt_faults_find_fringe (const double *energy_ev, const double *absorbance, const double *noise, gsize n,
                                                 BtFringe *fringe);

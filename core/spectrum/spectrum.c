@@ -370,9 +370,15 @@ find_faults (BtSpectrum *self)
     {
       const BtStep *step = &g_array_index (self->steps, BtStep, i);
 
-      bt_spectrum_add_flag (self, bt_flag_new ("detector-step", _ ("The reading jumps by %+.4f at %.0f nm: a change of detector or grating. The fit "
-                                                                   "takes it into account; check that the film was flat and fully in the beam."),
-                                               -step->size, bt_nm_from_ev (step->energy_ev)));
+      if (fabs (step->slope) > 5 * step->slope_u && fabs (step->slope) > 0.05)
+        bt_spectrum_add_flag (self, bt_flag_new ("detector-step", _ ("The reading jumps by %+.4f and changes its slope by %+.3f a 100 meV at %.0f nm: a change of "
+                                                                     "detector or grating. The fit takes the jump into account; check that the film was flat "
+                                                                     "and fully in the beam."),
+                                                 -step->size, -0.1 * step->slope, bt_nm_from_ev (step->energy_ev)));
+      else
+        bt_spectrum_add_flag (self, bt_flag_new ("detector-step", _ ("The reading jumps by %+.4f at %.0f nm: a change of detector or grating. The fit "
+                                                                     "takes it into account; check that the film was flat and fully in the beam."),
+                                                 -step->size, bt_nm_from_ev (step->energy_ev)));
     }
   for (guint i = 0; i < self->saturated->len; i++)
     {

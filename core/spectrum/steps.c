@@ -15,9 +15,9 @@
 #define STEPS_MAX_POINTS 100000
 #define MAX_STEPS 3
 
-/* Value at @e of the least-squares parabola through @n points, and the factor of their noise in it. */
+/* Value at @e of the least-squares parabola through @n points, and the factor of their noise in it; (nullable) the same of its slope. */
 static double
-extrapolate (const double *x, const double *y, gsize n, double e, double *factor)
+extrapolate (const double *x, const double *y, gsize n, double e, double *factor, double *slope, double *slope_factor)
 {
   double s[5] = { 0 }, t[3] = { 0 }, scale = fabs (x[n - 1] - x[0]), m[3][4];
 
@@ -45,6 +45,13 @@ extrapolate (const double *x, const double *y, gsize n, double e, double *factor
          c2 = m[0][1] * m[1][2] - m[0][2] * m[1][1];
 
   *factor = sqrt (fmax (0, c0 / det));
+  if (slope != NULL)
+    {
+      const double d1 = m[0][0] * m[2][2] - m[0][2] * m[2][0], d2 = m[0][2] * m[1][0] - m[0][0] * m[1][2];
+
+      *slope = (c1 * t[0] + d1 * t[1] + d2 * t[2]) / det / scale;
+      *slope_factor = sqrt (fmax (0, d1 / det)) / scale;
+    }
   return (c0 * t[0] + c1 * t[1] + c2 * t[2]) / det;
 }
 
@@ -64,8 +71,8 @@ static double
 jump_at (const double *x, const double *y, const double *noise, gsize i, gsize side, gsize skip, double *u)
 {
   double e = (x[i] + x[i + 1]) / 2, left_factor, right_factor;
-  double left = extrapolate (x + i + 1 - skip - side, y + i + 1 - skip - side, side, e, &left_factor);
-  double right = extrapolate (x + i + 1 + skip, y + i + 1 + skip, side, e, &right_factor);
+  double left = extrapolate (x + i + 1 - skip - side, y + i + 1 - skip - side, side, e, &left_factor, NULL, NULL);
+  double right = extrapolate (x + i + 1 + skip, y + i + 1 + skip, side, e, &right_factor, NULL, NULL);
 
   *u = hypot (left_factor * noise[i], right_factor * noise[i + 1]);
   return right - left;
@@ -81,6 +88,41 @@ jump_in_doubt (const double *x, const double *y, const double *noise, gsize i, g
 
   *u = hypot (u_noise, (jump - near) / 2);
   return jump;
+}
+
+static void
+measure_at (const double *x, const double *y, const double *noise, gsize i, gsize side, BtStep *step)
+{
+  double e = (x[i] + x[i + 1]) / 2, factor, left, right, left_factor, right_factor;
+
+  step->energy_ev = e;
+  step->size = jump_in_doubt (x, y, noise, i, side, &step->size_u);
+  extrapolate (x + i + 1 - side, y + i + 1 - side, side, e, &factor, &left, &left_factor);
+  extrapolate (x + i + 1, y + i + 1, side, e, &factor, &right, &right_factor);
+  step->slope = right - left;
+  step->slope_u = hypot (left_factor * noise[i], right_factor * noise[i + 1]);
+}
+
+gboolean
+bt_faults_measure_step (const double *energy_ev, const double *absorbance, const double *noise, gsize n, double at_ev, BtStep *step)
+{
+  gsize low = 0, high = n - 1, side;
+
+  if (n < 4 * LEAST_SIDE || !(at_ev > energy_ev[0] && at_ev < energy_ev[n - 1]))
+    return FALSE;
+  while (high - low > 1)
+    {
+      gsize middle = (low + high) / 2;
+
+      *(energy_ev[middle] <= at_ev ? &low : &high) = middle;
+    }
+  if (low + 1 < LEAST_SIDE || n - high < LEAST_SIDE)
+    return FALSE;
+  for (side = MIN (SIDE, MIN (low + 1, n - high)); side > LEAST_SIDE; side--)
+    if (energy_ev[low] - energy_ev[low + 1 - side] <= SIDE_EV && energy_ev[low + side] - energy_ev[low + 1] <= SIDE_EV)
+      break;
+  measure_at (energy_ev, absorbance, noise, low, side, step);
+  return TRUE;
 }
 
 static gboolean
@@ -151,8 +193,7 @@ bt_faults_find_steps (const double *energy_ev, const double *absorbance, const d
           best = i;
       if (!(significance[best] > 0))
         break;
-      step.size = jump_in_doubt (energy_ev, absorbance, noise, best, side_at (energy_ev, best), &step.size_u);
-      step.energy_ev = (energy_ev[best] + energy_ev[best + 1]) / 2;
+      measure_at (energy_ev, absorbance, noise, best, side_at (energy_ev, best), &step);
       g_array_append_val (steps, step);
       for (gsize i = best > SIDE ? best - SIDE : 0; i < MIN (n, best + SIDE); i++)
         significance[i] = 0;

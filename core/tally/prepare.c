@@ -152,21 +152,61 @@ bt_prepared_set_structure (BtPrepared *prepared, double structure)
   prepared->n_effective = effective;
 }
 
-/* Steps of the reading that lie inside the fitted range with data on both sides. */
-static void
-take_steps (BtPrepared *prepared, BtFilm *film)
+/* Steps to be fitted: those that the reading shows, and those that the user states, each measured on the film's own curve. */
+static GArray *
+find_steps (BtFilm *film, const BtRecipe *recipe, const BtCurve *curve)
 {
+  GArray *steps = g_array_new (FALSE, FALSE, sizeof (BtStep));
   gsize n;
-  const BtStep *steps = bt_spectrum_get_steps (bt_film_get_spectrum (film), &n);
+  const BtStep *found = bt_spectrum_get_steps (bt_film_get_spectrum (film), &n);
 
-  for (gsize i = 0; i < n && prepared->data.n_steps < BT_MODEL_MAX_STEPS; i++)
-    if (steps[i].energy_ev > prepared->range.low_ev + 0.02 && steps[i].energy_ev < prepared->range.high_ev - 0.02)
-      {
-        prepared->data.step_ev[prepared->data.n_steps] = steps[i].energy_ev;
-        prepared->data.step_size[prepared->data.n_steps] = steps[i].size;
-        prepared->data.step_u[prepared->data.n_steps] = steps[i].size_u;
-        prepared->data.n_steps++;
-      }
+  for (guint k = 0; k < recipe->steps_nm->len; k++)
+    {
+      BtStep step;
+
+      if (bt_curve_measure_step (curve, bt_ev_from_nm (g_array_index (recipe->steps_nm, double, k)), &step))
+        g_array_append_val (steps, step);
+    }
+  for (gsize i = 0; i < n; i++)
+    {
+      BtStep step = found[i];
+      gboolean stated = FALSE;
+
+      /* One that is stated within a few points is that one. */
+      for (guint k = 0; k < steps->len; k++)
+        stated = stated || fabs (bt_nm_from_ev (g_array_index (steps, BtStep, k).energy_ev) - bt_nm_from_ev (step.energy_ev)) < 6;
+      if (!stated && (bt_film_get_blank (film) == NULL || bt_curve_measure_step (curve, found[i].energy_ev, &step)))
+        g_array_append_val (steps, step);
+    }
+  return steps;
+}
+
+/* Steps that lie inside the fitted range with data on both sides. One that was taken off already is fitted about 0. */
+static void
+take_steps (BtPrepared *prepared, const GArray *steps, gboolean corrected)
+{
+  guint left_out = 0;
+
+  for (guint i = 0; i < steps->len; i++)
+    {
+      const BtStep *step = &g_array_index (steps, BtStep, i);
+
+      if (!(step->energy_ev > prepared->range.low_ev + 0.02 && step->energy_ev < prepared->range.high_ev - 0.02))
+        continue;
+      if (prepared->data.n_steps == BT_MODEL_MAX_STEPS)
+        {
+          left_out++;
+          continue;
+        }
+      prepared->data.step_ev[prepared->data.n_steps] = step->energy_ev;
+      prepared->data.step_size[prepared->data.n_steps] = corrected ? 0 : step->size;
+      prepared->data.step_u[prepared->data.n_steps] = step->size_u;
+      prepared->data.n_steps++;
+    }
+  if (left_out > 0)
+    g_ptr_array_add (prepared->curve->flags, bt_flag_new ("steps-too-many", _ ("Only %u detector steps are fitted; the others are left in the reading. State fewer "
+                                                                               "detector changes, or leave a range out."),
+                                                          BT_MODEL_MAX_STEPS));
 }
 
 /* A fringe is fitted as a wave of its own period, unless that is so short that averaging into bins has taken it away already. */
@@ -226,6 +266,7 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
   g_autoptr (BtPrepared) prepared = g_new0 (BtPrepared, 1);
   const BtAccuracy accuracy = { recipe->photometric_u, recipe->wavelength_u_nm };
   BtDiameterWindow window = recipe->window;
+  g_autoptr (GArray) steps = NULL;
   BtRange all;
   double level = 0;
 
@@ -237,6 +278,9 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
                    bt_film_get_label (film), BT_SPECTRUM_MIN_POINTS);
       return NULL;
     }
+  steps = find_steps (film, recipe, prepared->curve);
+  if (recipe->step_correction != BT_STEP_LEFT)
+    bt_curve_correct_steps (prepared->curve, (const BtStep *) (void *) steps->data, steps->len, recipe->step_correction == BT_STEP_TO_VISIBLE);
   all = (BtRange){ prepared->curve->energy_ev[0], prepared->curve->energy_ev[prepared->curve->n - 1] };
   choose_window (prepared, previous, &window);
   bt_band_plan_init (&prepared->plan, window, recipe->shift_ev, all);
@@ -246,7 +290,8 @@ bt_prepare (BtFilm *film, const BtRecipe *recipe, const BtTally *previous, GErro
   take_points (prepared, film, recipe);
   thin_points (prepared);
   count_neighbours (prepared);
-  take_steps (prepared, film);
+  take_steps (prepared, steps, recipe->step_correction != BT_STEP_LEFT);
+  bt_film_judge_path (film, &recipe->light_path, recipe->stray_light, prepared->range, prepared->curve);
   take_fringe (prepared, film);
   if (prepared->data.n >= MIN_POINTS)
     for (guint g = 0; g < BT_N_GROUPS; g++)

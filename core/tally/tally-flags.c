@@ -33,6 +33,10 @@ flag_range (BtTally *tally, const BtPrepared *prepared)
     add (tally, bt_flag_new ("no-s11", _ ("S11 is expected near %.0f nm, outside the data used: doping cannot be seen, and the tail is "
                                           "held on one side only. Measure further into the infrared if the instrument can."),
                              bt_nm_from_ev (plan->bands[BT_S11].centre_ev)));
+  if (tally->groups[BT_M11].n_bands > 0 && prepared->range.high_ev < plan->bands[BT_M11].centre_ev + 0.3)
+    add (tally, bt_flag_new ("tail-range", _ ("The data used end at %.0f nm, hardly beyond M11: what lies under it can only be guessed from one side, and the interval is "
+                                              "wide for that reason. Measure down to %.0f nm."),
+                             bt_nm_from_ev (prepared->range.high_ev), bt_nm_from_ev (plan->bands[BT_S33].centre_ev)));
   if (prepared->n_over_limit > 0)
     add (tally, bt_flag_new ("over-limit", g_dngettext (GETTEXT_PACKAGE,
                                                         "%u point above the photometric limit of A = %.2g was left out of the fit.",

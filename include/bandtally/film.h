@@ -184,6 +184,26 @@ void bt_curve_free (BtCurve *curve);
 gboolean bt_curve_at (const BtCurve *curve, double energy_ev, double *absorbance, double *parts);
 
 /**
+ * bt_curve_measure_step:
+ *
+ * Measures the step at an energy, however small, from a parabola on either side; bends that no parabola follows count in its uncertainty, so that
+ * a band's edge is no step. Returns: %FALSE where the curve has too few points on a side
+ */
+gboolean bt_curve_measure_step (const BtCurve *curve, double energy_ev, BtStep *step);
+/* Moves one side of each step so that both meet: that of longer wavelengths (@keep_visible) or that of shorter ones. The moved side gets the step's
+ * uncertainty (BT_PART_STEP) and the curve a flag "detector-step-corrected". */
+void bt_curve_correct_steps (BtCurve *curve, const BtStep *steps, gsize n_steps, gboolean keep_visible);
+/**
+ * bt_film_judge_path:
+ * @stray_light: share of stray light; 0: unknown
+ * @range: energies that are to be fitted
+ *
+ * Adds flags to @curve for what its light path leaves out or cannot know, each with its size: an uneven film, stray light, reflection, the
+ * substrate's cut-off, a slab that is none, a baseline below zero.
+ */
+void bt_film_judge_path (BtFilm *self, const BtLightPath *how, double stray_light, BtRange range, BtCurve *curve);
+
+/**
  * BtAlpha:
  * @value, @u: absorption coefficient and its standard uncertainty, 1/cm, by first-order propagation (JCGM 100:2008)
  * @parts: by #BtPart: what each source gives to @u, 1/cm

@@ -22,6 +22,7 @@ G_BEGIN_DECLS
  * @s22_absorbance: height that S22's crown would have in 100 nm of a wholly semiconducting film, were its lines Gaussian and
  *   without sideband, scatter, jitter and doping; sets the scale of all bands
  * @tail: the featureless part
+ * @more_tail: added to it; height and offset 0 for none
  * @low_nm, @high_nm, @step_nm: the axis
  * @noise: standard deviation of the absorbance at A = 0; grows as (1 + 10^A) / 2
  * @step_at_nm, @step_size: detector change; 0 for none: added to the absorbance above @step_at_nm
@@ -40,7 +41,7 @@ typedef struct {
   double abundance_scatter, jitter_ev;
   double fwhm_ev[BT_N_GROUPS];
   double lorentzian, sideband, s22_absorbance;
-  BtTail tail;
+  BtTail tail, more_tail;
   double low_nm, high_nm, step_nm;
   double noise, step_at_nm, step_size, bleach, ceiling;
   double thickness_nm, thickness_u_nm;

@@ -152,10 +152,12 @@ char *bt_spectra_to_jcamp (GPtrArray *spectra, const char *title, BtJcampForm fo
  * @energy_ev: where the reading jumps (between two points), eV
  * @size: absorbance just above @energy_ev minus just below it (in energy)
  * @size_u: its standard uncertainty
+ * @slope: change of the absorbance's slope, above less below, 1/eV
+ * @slope_u: its standard uncertainty
  *
  * A change of detector or grating.
  */
-typedef struct { double energy_ev, size, size_u; } BtStep;
+typedef struct { double energy_ev, size, size_u, slope, slope_u; } BtStep;
 /* Steps found in the reading, and the ranges in which the reading is saturated (bends to a ceiling, or scatters beyond use).
  * Found once, owned by the spectrum. */
 const BtStep *bt_spectrum_get_steps (BtSpectrum *self, gsize *n);

@@ -1,6 +1,6 @@
 /* Coverage study: how often the 95 % interval holds the true fraction, by kind of film. Films come from the forward model, always with things that
  * the recipe does not know: abundances that scatter by 35 % about the distribution, energies that jitter by 6 meV a tube, Lorentzian wings, phonon
- * sidebands, four kinds of tail; diameters are proposed from the data. The strength ratio is known exactly, so that its uncertainty cannot help.
+ * sidebands, five kinds of tail, one of them a sum; diameters are proposed from the data. The strength ratio is known exactly, so that its uncertainty cannot help.
  *
  *   meson test -C BUILD --benchmark intervals --verbose        (or run the program; an argument sets the films a class, 25 by default)
  *
@@ -29,7 +29,11 @@ make_forecast (BtForecast *forecast, const Class *kind, guint i)
   const BtTail tails[] = { { BT_TAIL_PLASMON, 0.6 + 0.1 * (i % 6), { 4.5 + 0.1 * (i % 5), 1.0 + 0.15 * (i % 5) }, 0.01 },
                            { BT_TAIL_POWER, 0.3, { 1.0 + 0.1 * (i % 7), 0 }, 0.01 },
                            { BT_TAIL_EXPONENTIAL, 0.3, { 1e-3 + 2e-4 * (i % 5), 0 }, 0.01 },
-                           { BT_TAIL_PLASMON, 1.2, { 4.9, 1.6 }, 0.0 } };
+                           { BT_TAIL_PLASMON, 1.2, { 4.9, 1.6 }, 0.0 },
+                           { BT_TAIL_PLASMON, 0.5, { 4.6, 1.2 }, 0.005 } };
+  /* What scatters or is graphitic, on top of the plasmon. */
+  const BtTail more[] = { { BT_TAIL_POWER, 0.08, { 2.5, 0 }, 0 }, { BT_TAIL_EXPONENTIAL, 0.1, { 1e-3, 0 }, 0 } };
+  const guint kind_of_tail = (i / 2) % G_N_ELEMENTS (tails);
 
   bt_forecast_init (forecast);
   forecast->window = (BtDiameterWindow){ kind->diameter_nm, 0.075 * kind->diameter_nm };
@@ -38,7 +42,9 @@ make_forecast (BtForecast *forecast, const Class *kind, guint i)
   forecast->jitter_ev = 0.006;
   forecast->lorentzian = 0.1 + 0.05 * (i % 5);
   forecast->sideband = 0.03 + 0.02 * (i % 4);
-  forecast->tail = tails[(i / 2) % G_N_ELEMENTS (tails)];
+  forecast->tail = tails[kind_of_tail];
+  if (kind_of_tail == G_N_ELEMENTS (tails) - 1)
+    forecast->more_tail = more[i % 2];
   forecast->high_nm = kind->high_nm;
   forecast->step_at_nm = kind->step > 0 ? 860 : 0;
   forecast->step_size = kind->step;
