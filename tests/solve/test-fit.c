@@ -242,7 +242,7 @@ test_points (void)
     }
   for (int i = 0; i < N; i++)
     {
-      const gsize from = (gsize) (i * 7 + 5) % N;
+      const gsize from = (gsize)(i * 7 + 5) % N;
 
       mixed_x[i] = x[from];
       mixed_y[i] = from == used + 20 ? NAN : from > used + 40 ? 1e3 : y[from];
