@@ -173,8 +173,7 @@ bt_fit_fill_block (BtFitWork *work, gsize block, gboolean derived)
     if (high >= work->low_of_part[i] && low <= work->high_of_part[i])
       add_part (work, bt_fit_part (work->fit, i), x, derived, model, &m);
   residual = column_of (work, work->map->n_free, &m);
-  for (gsize t = 0; t < BT_BLOCK; t++)
-    residual[t] = model[t] - work->y[from + t];
+  work->kernel->difference (residual, model, work->y + from);
   if (!points->uniform || from + BT_BLOCK > points->n)
     for (guint c = 0; c < m; c++)
       work->kernel->weigh (work->columns + (gsize)c * BT_BLOCK, points->w + from);

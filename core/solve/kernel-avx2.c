@@ -4,5 +4,6 @@
 #define KERNEL(name) name##_avx2
 #include "kernel-loops.h"
 
-const BtKernel bt_kernel_avx2 = { "avx2", products_avx2, add_avx2, dot_avx2, weigh_avx2, cholesky_avx2, append_avx2 };
+const BtKernel bt_kernel_avx2
+    = { "avx2", products_avx2, add_avx2, difference_avx2, dot_avx2, weigh_avx2, cholesky_avx2, append_avx2 };
 #endif

@@ -32,14 +32,21 @@ totals (Vector a, Vector b, Vector c, Vector d)
   return __builtin_shuffle (ab, cd, low) + __builtin_shuffle (ab, cd, high);
 }
 
-/* Columns a to a + 3 times column b, where they belong. */
+/* Whether columns a to a + 3 belong to parameters one after the other. */
+static inline __attribute__ ((always_inline)) gboolean
+in_a_run (const guint *index, guint m, guint a)
+{
+  return a + 4 <= m && index[a + 1] == index[a] + 1 && index[a + 2] == index[a] + 2 && index[a + 3] == index[a] + 3;
+}
+
+/* Columns a to a + 3 times column b, where they belong. In a run what falls below the diagonal is written too; nobody reads it.
+ */
 static inline __attribute__ ((always_inline)) void
-put (double *g, gsize stride, const guint *index, guint m, guint a, guint b, Vector sum)
+put (double *g, gsize stride, const guint *index, guint m, guint a, guint b, guint run, Vector sum)
 {
   const guint w = index[b];
 
-  if (a + 4 <= m && index[a + 3] == index[a] + 3 && w <= index[a] && index[a + 1] == index[a] + 1
-      && index[a + 2] == index[a] + 2)
+  if (run && (b >= a || w <= index[a]))
     {
       *(Loose *)(g + w * stride + index[a]) += sum;
       return;
@@ -49,6 +56,15 @@ put (double *g, gsize stride, const guint *index, guint m, guint a, guint b, Vec
       g[MIN (index[a + i], w) * stride + MAX (index[a + i], w)] += sum[i];
 }
 
+/* Room after the last column up to a multiple of 4 counts as nothing. */
+static inline __attribute__ ((always_inline)) void
+clear_rest (double *columns, guint m)
+{
+  for (guint a = m; a % 4 != 0; a++)
+    memset (columns + (gsize)a * BT_BLOCK, 0, sizeof (double) * BT_BLOCK);
+}
+
+#ifndef WIDE_REGISTERS
 /* 4 x 2 tiles: eight sums fit the registers, six loads feed eight multiply-adds. */
 static void
 KERNEL (products) (double *columns, guint m, const guint *index, double *g, gsize stride)
@@ -56,7 +72,7 @@ KERNEL (products) (double *columns, guint m, const guint *index, double *g, gsiz
   for (guint a = m; a % 4 != 0; a++)
     memset (columns + (gsize)a * BT_BLOCK, 0, sizeof (double) * BT_BLOCK);
   for (guint a = 0; a < m; a += 4)
-    for (guint b = 0; b < a + 4 && b < m; b += 2)
+    for (guint b = 0, run = in_a_run (index, m, a); b < a + 4 && b < m; b += 2)
       {
         const Vector *p0 = (const Vector *)(columns + (gsize)a * BT_BLOCK), *p1 = p0 + BT_BLOCK / 4, *p2 = p1 + BT_BLOCK / 4,
                      *p3 = p2 + BT_BLOCK / 4;
@@ -76,11 +92,60 @@ KERNEL (products) (double *columns, guint m, const guint *index, double *g, gsiz
             s6 += p3[t] * u;
             s7 += p3[t] * w;
           }
-        put (g, stride, index, m, a, b, totals (s0, s2, s4, s6));
+        put (g, stride, index, m, a, b, run, totals (s0, s2, s4, s6));
         if (b + 1 < m)
-          put (g, stride, index, m, a, b + 1, totals (s1, s3, s5, s7));
+          put (g, stride, index, m, a, b + 1, run, totals (s1, s3, s5, s7));
       }
 }
+#else
+typedef double Wide __attribute__ ((vector_size (64), may_alias));
+
+static inline __attribute__ ((always_inline)) Vector
+folded (Wide v)
+{
+  const Vector low = { v[0], v[1], v[2], v[3] }, high = { v[4], v[5], v[6], v[7] };
+
+  return low + high;
+}
+
+/* 4 x 4 tiles: sixteen sums of eight. */
+static void
+KERNEL (products) (double *columns, guint m, const guint *index, double *g, gsize stride)
+{
+  clear_rest (columns, m);
+  for (guint a = 0; a < m; a += 4)
+    for (guint b = 0, run = in_a_run (index, m, a); b <= a; b += 4)
+      {
+        const Wide *p = (const Wide *)(columns + (gsize)a * BT_BLOCK), *q = (const Wide *)(columns + (gsize)b * BT_BLOCK);
+        enum
+        {
+          NEXT = BT_BLOCK / 8
+        };
+        Wide s[4][4] = { 0 };
+
+        for (int t = 0; t < NEXT; t++)
+          {
+            const Wide q0 = q[t], q1 = q[t + NEXT], q2 = q[t + 2 * NEXT], q3 = q[t + 3 * NEXT];
+
+#pragma GCC unroll 4
+            for (int i = 0; i < 4; i++)
+              {
+                const Wide pi = p[t + i * NEXT];
+
+                s[i][0] += pi * q0;
+                s[i][1] += pi * q1;
+                s[i][2] += pi * q2;
+                s[i][3] += pi * q3;
+              }
+          }
+#pragma GCC unroll 4
+        for (guint k = 0; k < 4; k++)
+          if (b + k < m)
+            put (g, stride, index, m, a, b + k, run,
+                 totals (folded (s[0][k]), folded (s[1][k]), folded (s[2][k]), folded (s[3][k])));
+      }
+}
+#endif
 
 static void
 KERNEL (add) (double *y, double a, const double *x)
@@ -90,6 +155,13 @@ KERNEL (add) (double *y, double a, const double *x)
 
   for (int t = 0; t < BT_BLOCK / 4; t++)
     to[t] += a * from[t];
+}
+
+static void
+KERNEL (difference) (double *to, const double *x, const double *y)
+{
+  for (int t = 0; t < BT_BLOCK / 4; t++)
+    ((Vector *)to)[t] = ((const Vector *)x)[t] - ((const Vector *)y)[t];
 }
 
 static double

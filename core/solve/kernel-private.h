@@ -16,6 +16,8 @@ typedef struct
   void (*products) (double *columns, guint m, const guint *index, double *g, gsize stride);
   /* y += a x over a block. */
   void (*add) (double *y, double a, const double *x);
+  /* to = x - y over a block. */
+  void (*difference) (double *to, const double *x, const double *y);
   /* Sum of x y over a block. */
   double (*dot) (const double *x, const double *y);
   /* x *= w */
@@ -29,7 +31,7 @@ typedef struct
 } BtKernel;
 
 const BtKernel *bt_kernel (void);
-extern const BtKernel bt_kernel_portable, bt_kernel_avx2;
+extern const BtKernel bt_kernel_portable, bt_kernel_avx2, bt_kernel_avx512;
 
 /* Solves U'U x = b in place. */
 void bt_cholesky_solve (const double *u, gsize m, gsize stride, double *b);

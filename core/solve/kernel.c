@@ -2,8 +2,9 @@
 #define KERNEL(name) name
 #include "kernel-loops.h"
 
-const BtKernel bt_kernel_portable = { "portable", products, add, dot, weigh, cholesky, append };
+const BtKernel bt_kernel_portable = { "portable", products, add, difference, dot, weigh, cholesky, append };
 
+/* The widest the processor has, or what BANDTALLY_KERNEL asks for. */
 const BtKernel *
 bt_kernel (void)
 {
@@ -13,9 +14,16 @@ bt_kernel (void)
   if (g_once_init_enter (&chosen))
     {
       const char *wish = g_getenv ("BANDTALLY_KERNEL");
-      gboolean wide = __builtin_cpu_supports ("avx2") && __builtin_cpu_supports ("fma") && g_strcmp0 (wish, "portable") != 0;
+      const BtKernel *kernel = &bt_kernel_portable;
 
-      g_once_init_leave (&chosen, (gsize)(wide ? &bt_kernel_avx2 : &bt_kernel_portable));
+      if (__builtin_cpu_supports ("avx2") && __builtin_cpu_supports ("fma") && g_strcmp0 (wish, "portable") != 0)
+        {
+          kernel = &bt_kernel_avx2;
+          if (__builtin_cpu_supports ("avx512f") && __builtin_cpu_supports ("avx512vl") && __builtin_cpu_supports ("avx512dq")
+              && g_strcmp0 (wish, "avx2") != 0)
+            kernel = &bt_kernel_avx512;
+        }
+      g_once_init_leave (&chosen, (gsize)kernel);
     }
   return (const BtKernel *)chosen;
 #else
