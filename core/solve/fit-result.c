@@ -61,7 +61,9 @@ bt_fit_result_new (BtFitWork *work, const BtFitOptions *options, const double *z
   result->n_parameters = n;
   result->n_points = work->points->n;
   result->iterations = (guint)work->lm.iterations;
-  result->chi2 = work->lm.now.chi2;
+  bt_fit_residuals (work, z, work->residual);
+  for (gsize block = 0; block < work->points->n_blocks; block++)
+    result->chi2 += work->kernel->dot (work->residual + block * BT_BLOCK, work->residual + block * BT_BLOCK);
   result->condition = work->lm.condition;
   result->by_qr = work->lm.orthogonal;
   result->state = work->lm.state;
@@ -85,7 +87,6 @@ bt_fit_result_new (BtFitWork *work, const BtFitOptions *options, const double *z
                 = scale * map->factor[i] * map->factor[j] * covariance[(gsize)map->index[i] * p + (guint)map->index[j]];
         result->u[i] = sqrt (result->covariance[(gsize)i * n + i]);
       }
-  bt_fit_residuals (work, z, work->residual);
   result->effective_points = bt_effective_points (result->n_points, bt_lag1_correlation (work->residual, result->n_points));
   fill_criteria (result, options->sigma_known);
   return result;

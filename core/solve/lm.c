@@ -12,12 +12,11 @@
 /* Below this share of a diagonal the normal equations are left: of 16 digits, 6 are gone. */
 #define LEAST_SHARE 1e-6
 
-/* Of the tolerated relative change of the cost: what a step must promise to be worth its evaluation. */
-#define NEGLIGIBLE 1e-3
-
 /* A fit creeps along a valley once this many steps have brought less than this share of what they promised. */
 #define CREEPING_STEPS 5
 #define POOR 0.9
+/* Undamped steps at the end, at most. */
+#define MOST_POLISHING 60
 #define LONG_WAY 100
 /* How often a fit that stands still under its damping is pushed on. */
 #define MOST_PUSHES 10
@@ -134,7 +133,7 @@ iterate (BtLm *lm, double *x)
       for (gsize j = 0; j < lm->p; j++)
         lm->trial[j] = x[j] + lm->step[j];
       expected = bt_lm_promised (lm);
-      if (expected <= NEGLIGIBLE * lm->tolerance * before || largest_move (lm, x) < 1e-15)
+      if (expected <= lm->tolerance * before || largest_move (lm, x) < 1e-15)
         {
           if (pushes++ > MOST_PUSHES || arrived (lm, x))
             return BT_SOLVE_CONVERGED;
@@ -204,21 +203,30 @@ try_step (BtLm *lm, double *x, double above)
   return TRUE;
 }
 
-/* Undamped steps for as long as they shrink: the last digits. */
+/* Undamped steps for as long as they shrink: the last digits. The last of them is taken unseen: what it promises is below the tolerance, and
+ * to look at the points once more would only say so. */
 static void
 polish (BtLm *lm, double *x)
 {
   double last = INFINITY;
 
-  for (int i = 0; i < 60; i++)
+  for (int i = 0; i < MOST_POLISHING; i++)
     {
       double size;
 
       if (!bt_lm_solve_step (lm, x, 0))
         return;
       size = bt_lm_promised (lm);
-      if (!(size < 0.9 * last) || largest_move (lm, x) < 4 * DBL_EPSILON || size <= NEGLIGIBLE * lm->tolerance * lm->now.cost)
+      if (!(size >= 0 && size < 0.9 * last) || largest_move (lm, x) < 4 * DBL_EPSILON)
         return;
+      if (size <= lm->tolerance * lm->now.cost)
+        {
+          for (gsize j = 0; j < lm->p; j++)
+            x[j] += lm->step[j];
+          lm->now.cost -= size;
+          lm->now.chi2 -= size;
+          return;
+        }
       last = size;
       /* Near the minimum the cost is known to its rounding only. */
       if (!try_step (lm, x, lm->now.cost * (1 + 1e-9)))

@@ -133,7 +133,7 @@ static Outcome
 solve (Data *data, int start)
 {
   g_autoptr (BtFit) fit = bt_fit_new (data->index, data->y, NULL, data->n);
-  const BtFitOptions options = { .max_iterations = 2000, .tolerance = 1e-18 };
+  const BtFitOptions options = { .max_iterations = 2000, .tolerance = 1e-20 };
   const guint skip = data->set->amplitude ? 1 : 0,
               first = bt_fit_add_function (fit, function, (guint)data->p - skip, data, NULL);
   BtFitResult *result;
