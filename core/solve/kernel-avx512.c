@@ -5,6 +5,6 @@
 #define WIDE_REGISTERS
 #include "kernel-loops.h"
 
-const BtKernel bt_kernel_avx512
-    = { "avx512", products_avx512, add_avx512, difference_avx512, dot_avx512, weigh_avx512, cholesky_avx512, append_avx512 };
+const BtKernel bt_kernel_avx512 = { "avx512",     products_avx512, add_avx512,  difference_avx512, dot_avx512,
+                                    weigh_avx512, cholesky_avx512, append_avx512 };
 #endif
