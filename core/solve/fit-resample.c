@@ -11,6 +11,8 @@
 /* Steps with the best fit's Jacobian at most; and the promised gain of chi2 below which the next is not made. */
 #define MOST_STEPS 8
 #define ENOUGH 1e-4
+/* What a step may promise at most, over the one before. */
+#define SLOW 0.5
 
 /* The best fit, shared by all workers and left alone by them. */
 typedef struct
@@ -102,7 +104,7 @@ static gboolean
 few_steps (BtFitWork *work, const Resample *all, double *z)
 {
   const gsize p = all->map->n_free;
-  double *step = work->lm.right, last = INFINITY;
+  double *step = work->lm.right, last = INFINITY, last_gain = INFINITY;
 
   for (int i = 0; i < MOST_STEPS; i++)
     {
@@ -123,6 +125,10 @@ few_steps (BtFitWork *work, const Resample *all, double *z)
         }
       if (gain < ENOUGH)
         return TRUE;
+      /* Along a curved valley the steps hardly shrink; a whole fit is then the shorter way. */
+      if (gain > SLOW * last_gain)
+        return FALSE;
+      last_gain = gain;
     }
   return FALSE;
 }
