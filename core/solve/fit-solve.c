@@ -116,6 +116,14 @@ bt_fit_solve (BtFit *self, const BtFitOptions *options, GCancellable *cancellabl
     full[j] = bt_fit_parameter (self, j)->start;
   bt_fit_map_reduce (map, full, z);
   solve_from_many (work, options, cancellable, z, &n_starts, &n_reached, &state);
+  if (!isfinite (work->lm.now.cost))
+    {
+      g_set_error_literal (
+          error, G_IO_ERROR, G_IO_ERROR_INVALID_DATA,
+          _ ("The fit cannot begin: with its starting values the model is not a number somewhere; change them, "
+             "or mask the points where it is not."));
+      return NULL;
+    }
   result = bt_fit_result_new (work, options, z);
   result->n_starts = n_starts;
   result->n_reached = n_reached;

@@ -329,13 +329,70 @@ test_fixed (void)
   g_assert_cmpfloat (result->x[decay], ==, 2.5);
   g_assert_cmpfloat (result->u[decay], ==, 0);
   bt_fit_result_unref (result);
+  bt_fit_set_fixed (fit, decay + 1, TRUE);
+  result = solve (fit, FALSE);
+  g_assert_cmpuint (result->n_free, ==, 0);
+  g_assert_cmpint (result->state, ==, BT_SOLVE_CONVERGED);
+  g_assert_cmpfloat (result->chi2, >, 0);
+  bt_fit_result_unref (result);
+}
+
+static void
+power (const double *q, const double *x, gsize n, double *f, double *const *df, gpointer data)
+{
+  for (gsize i = 0; i < n; i++)
+    f[i] = pow (x[i], GPOINTER_TO_INT (data));
+}
+
+/* A polynomial of degree 9 in plain powers: the condition of its normal equations is beyond what they bear. All coefficients
+ * are 1; with one of them bounded the others are those of the problem in which it is held there. */
+static void
+test_ill_conditioned (void)
+{
+  enum
+  {
+    degree = 9,
+    n = 200
+  };
+  double x[n], y[n];
+  g_autoptr (BtFit) fit = NULL;
+  BtFitResult *free_fit, *bounded, *held;
+
+  for (int i = 0; i < n; i++)
+    {
+      x[i] = (i + 1.0) / n;
+      y[i] = 0;
+      for (int k = 0; k <= degree; k++)
+        y[i] += pow (x[i], k);
+    }
+  fit = bt_fit_new (x, y, NULL, n);
+  for (int k = 0; k <= degree; k++)
+    bt_fit_set_start (fit, bt_fit_add_function (fit, power, 0, GINT_TO_POINTER (k), NULL), 0);
+  free_fit = solve (fit, FALSE);
+  g_assert_true (free_fit->by_qr);
+  g_assert_cmpfloat (free_fit->condition, >, 1e9);
+  for (guint k = 0; k <= degree; k++)
+    g_assert_cmpfloat_with_epsilon (free_fit->x[k], 1, 1e-7);
+  bt_fit_set_bounds (fit, 4, -INFINITY, 0.5);
+  bounded = solve (fit, FALSE);
+  g_assert_true (bounded->by_qr);
+  g_assert_true (bounded->at_bound[4]);
+  bt_fit_set_start (fit, 4, 0.5);
+  bt_fit_set_fixed (fit, 4, TRUE);
+  held = solve (fit, FALSE);
+  for (guint k = 0; k <= degree; k++)
+    g_assert_cmpfloat_with_epsilon (bounded->x[k], held->x[k], 1e-4);
+  g_assert_cmpfloat_with_epsilon (bounded->chi2, held->chi2, 1e-6 * held->chi2);
+  bt_fit_result_unref (free_fit);
+  bt_fit_result_unref (bounded);
+  bt_fit_result_unref (held);
 }
 
 static void
 test_refused (void)
 {
   const double x[] = { 1, 2 }, y[] = { NAN, NAN };
-  g_autoptr (BtFit) empty = bt_fit_new (x, y, NULL, 2), bare = bt_fit_new (x, x, NULL, 2);
+  g_autoptr (BtFit) empty = bt_fit_new (x, y, NULL, 2), bare = bt_fit_new (x, x, NULL, 2), nowhere = bt_fit_new (x, x, NULL, 2);
   g_autoptr (GCancellable) cancellable = g_cancellable_new ();
   g_autoptr (GError) error = NULL;
   double out[4];
@@ -347,6 +404,14 @@ test_refused (void)
   g_assert_error (error, G_IO_ERROR, G_IO_ERROR_INVALID_DATA);
   g_assert_nonnull (strstr (error->message, "no points"));
   g_clear_error (&error);
+  {
+    guint decay = bt_fit_add_shape (nowhere, BT_SHAPE_POWER, (double[]){ 1, -1 }, 2);
+
+    g_assert_cmpuint (decay, ==, 0);
+    g_assert_null (bt_fit_solve (nowhere, NULL, NULL, &error));
+    g_assert_nonnull (strstr (error->message, "cannot begin"));
+    g_clear_error (&error);
+  }
   g_assert_null (bt_fit_solve (bare, NULL, NULL, &error));
   g_assert_nonnull (strstr (error->message, "no shapes"));
   g_clear_error (&error);
@@ -443,6 +508,7 @@ main (int argc, char **argv)
   g_test_add_func ("/fit/points", test_points);
   g_test_add_func ("/fit/known", test_known);
   g_test_add_func ("/fit/fixed", test_fixed);
+  g_test_add_func ("/fit/ill-conditioned", test_ill_conditioned);
   g_test_add_func ("/fit/refused", test_refused);
   g_test_add_func ("/fit/words", test_words);
   g_test_add_func ("/fit/starts", test_starts);
