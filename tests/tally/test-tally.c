@@ -386,6 +386,49 @@ test_step (void)
   bt_tally_unref (without);
 }
 
+/* Taking a step off, either way, leaves the fraction and moves the readings of one side by the step; a stated change is in the budget even where there is
+ * none to see. */
+static void
+test_step_taken_off (void)
+{
+  BtForecast forecast;
+  BtTally *left, *moved[2];
+  BtRecipe *recipe = bt_recipe_new ();
+  g_autoptr (BtFilm) film = NULL;
+  g_autoptr (GError) error = NULL;
+  const double at_nm = 860.5;
+
+  bt_forecast_init (&forecast);
+  forecast.step_at_nm = 860;
+  forecast.step_size = 0.012;
+  film = forecast_film (&forecast);
+  recipe->tails = 1u << BT_TAIL_PLASMON;
+  g_array_append_val (recipe->steps_nm, at_nm);
+  left = bt_tally_film (film, recipe, BT_EFFORT_FULL, NULL, NULL, NULL, NULL, &error);
+  g_assert_no_error (error);
+  for (int k = 0; k < 2; k++)
+    {
+      const BtReading *before, *after;
+
+      recipe->step_correction = k == 0 ? BT_STEP_TO_VISIBLE : BT_STEP_TO_INFRARED;
+      moved[k] = bt_tally_film (film, recipe, BT_EFFORT_FULL, NULL, NULL, NULL, NULL, &error);
+      g_assert_no_error (error);
+      g_assert_nonnull (bt_flags_find (moved[k]->flags, "detector-step-corrected"));
+      g_assert_cmpfloat_with_epsilon (moved[k]->fraction.value, left->fraction.value, left->fraction.u);
+      /* 550 nm on the visible side, 1550 nm on the other. */
+      before = &g_array_index (left->readings, BtReading, k == 0 ? 3 : 0);
+      after = &g_array_index (moved[k]->readings, BtReading, k == 0 ? 3 : 0);
+      g_assert_cmpfloat_with_epsilon (after->absorbance - before->absorbance, k == 0 ? -0.012 : 0.012, 0.002);
+      g_assert_cmpfloat (after->absorbance_u, >, before->absorbance_u);
+      before = &g_array_index (left->readings, BtReading, k == 0 ? 0 : 3);
+      after = &g_array_index (moved[k]->readings, BtReading, k == 0 ? 0 : 3);
+      g_assert_cmpfloat_with_epsilon (after->absorbance, before->absorbance, 1e-12);
+      bt_tally_unref (moved[k]);
+    }
+  bt_tally_unref (left);
+  bt_recipe_free (recipe);
+}
+
 /* A fringe of a 66 um optical path (75.8 1/cm between maxima, 1 / (2 n d)) is found, said and fitted, and takes nothing from the bands. */
 static void
 test_fringe (void)
@@ -518,6 +561,7 @@ main (int argc, char **argv)
   g_test_add_func ("/tally/bound-and-verdict", test_bound_and_verdict);
   g_test_add_func ("/tally/flags", test_flags);
   g_test_add_func ("/tally/step", test_step);
+  g_test_add_func ("/tally/step-taken-off", test_step_taken_off);
   g_test_add_func ("/tally/fringe", test_fringe);
   g_test_add_func ("/tally/featureless", test_featureless);
   g_test_add_func ("/tally/cancel", test_cancel);
