@@ -64,6 +64,8 @@ gboolean parse_pair (const char *option, const char *text, double low, double hi
                      double *second, GError **error);
 /* "--x-unit", "--y-unit"; NULL leaves what is there. */
 gboolean parse_units (const char *x_unit, const char *y_unit, BtReadOptions *options, GError **error);
+/* "--paper"; NULL is A4. */
+gboolean parse_paper (const char *text, BtPaper *paper, GError **error);
 /* %FALSE and an error that names @option, @wanted (translated) and @text. */
 gboolean bad_value (const char *option, const char *wanted, const char *text, GError **error);
 

@@ -308,7 +308,7 @@ make_settings (const Options *options, BatchSettings *settings, GError **error)
   return options->reflectance_file == NULL || (settings->reflectance = bt_reflectance_new_from_file (options->reflectance_file, error)) != NULL;
 }
 
-static gboolean
+gboolean
 parse_paper (const char *text, BtPaper *paper, GError **error)
 {
   *paper = BT_PAPER_A4;

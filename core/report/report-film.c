@@ -113,8 +113,8 @@ add_title (BtFlow *flow, PangoContext *context, BtFilm *film, const BtTally *tal
 }
 
 /* The verdict's sign: told apart by its shape as well as by its colour. */
-static void
-draw_sign (cairo_t *cr, double width, double height, gpointer data)
+void
+bt_report_draw_sign (cairo_t *cr, double width, double height, gpointer data)
 {
   static const double colours[][3] = { [BT_VERDICT_NOT_JUDGED] = { 0.33, 0.33, 0.33 },
                                        [BT_VERDICT_ACCEPTED] = { 0.0, 0.42, 0.30 },
@@ -245,7 +245,7 @@ add_answer (BtFlow *flow, PangoContext *context, BtTally *tally, double width)
   Scale *scale;
 
   bt_flow_add (answers, bt_block_new_text (context, BT_FACE_ANSWER, answer, left), 0);
-  bt_flow_add (signs, bt_block_new_drawing (sign, sign, draw_sign, GINT_TO_POINTER (tally->verdict), NULL), 0);
+  bt_flow_add (signs, bt_block_new_drawing (sign, sign, bt_report_draw_sign, GINT_TO_POINTER (tally->verdict), NULL), 0);
   bt_flow_add (words, bt_block_new_text (context, BT_FACE_ANSWER, bt_verdict_title (tally->verdict), right - sign - 7), 0);
   bt_flow_add (verdicts, bt_block_new_pair (signs, words, sign + 7), 0);
   bt_flow_add (verdicts, bt_block_new_text (context, BT_FACE_NOTE, standing, right), 4);
@@ -406,8 +406,8 @@ draw_signature (cairo_t *cr, double width, double height, gpointer data)
     }
 }
 
-static BtBlock *
-signature_new (PangoContext *context, double width)
+BtBlock *
+bt_report_signature_new (PangoContext *context, double width)
 {
   static const double widths[] = { 0.37, 0.19, 0.38 };
   const char *labels[] = { _ ("Name"), _ ("Date"), _ ("Signature") };
@@ -432,7 +432,7 @@ add_close (BtFlow *flow, PangoContext *context, double width)
   bt_flow_add (close, bt_block_new_heading (context, _ ("Cautions"), width), 0);
   for (gsize i = 0; i < G_N_ELEMENTS (cautions); i++)
     bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, cautions[i], width), i == 0 ? 4 : 1);
-  bt_flow_add (close, signature_new (context, width), 4);
+  bt_flow_add (close, bt_report_signature_new (context, width), 4);
   bt_flow_add (flow, bt_block_new_pair (close, bt_flow_new (), width), 14)->bottom = TRUE;
 }
 

@@ -113,6 +113,9 @@ void bt_pages_draw (const BtPages *pages, int page, cairo_t *cr);
 /* Everything about a film, for pages this wide and high. */
 BtFlow *bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const char *date, double width,
                              double height);
+/* The sign of a verdict (as pointer in @data), and three lines to write on. */
+void bt_report_draw_sign (cairo_t *cr, double width, double height, gpointer data);
+BtBlock *bt_report_signature_new (PangoContext *context, double width);
 /* Parts of it, each appended to @flow. */
 void bt_report_add_bands (BtFlow *flow, PangoContext *context, BtFilm *film, const BtTally *tally, double width);
 void bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally, double width);

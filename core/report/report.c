@@ -5,7 +5,7 @@
 #include <gio/gio.h>
 #include <glib/gi18n-lib.h>
 
-#include "report-private.h"
+#include "report-check-private.h"
 
 #define MARGIN_X 48.0
 #define MARGIN_TOP 40.0
@@ -13,10 +13,13 @@
 /* Height of the footer with the space above it. */
 #define FOOTER 22.0
 
+/* A film with its tally, or a check with its spectrum. */
 typedef struct
 {
   BtFilm *film;
   BtTally *tally;
+  BtInstrumentCheck *check;
+  BtSpectrum *spectrum;
   BtFlow *flow;
   BtPages *pages;
 } Entry;
@@ -51,8 +54,17 @@ clear_entry (gpointer data)
   Entry *entry = data;
 
   forget_pages (entry);
-  g_object_unref (entry->film);
-  bt_tally_unref (entry->tally);
+  g_clear_object (&entry->film);
+  g_clear_pointer (&entry->tally, bt_tally_unref);
+  g_clear_pointer (&entry->check, bt_instrument_check_free);
+  g_clear_object (&entry->spectrum);
+}
+
+/* (transfer full) */
+static char *
+entry_name (const Entry *entry)
+{
+  return entry->film != NULL ? bt_report_film_name (entry->film) : bt_report_check_name (entry->check);
 }
 
 BtReport *
@@ -85,7 +97,15 @@ void
 bt_report_add (BtReport *report, BtFilm *film, BtTally *tally)
 {
   /* As it is now: what is changed afterwards does not change the page. */
-  Entry entry = { bt_film_copy (film), bt_tally_ref (tally), NULL, NULL };
+  Entry entry = { .film = bt_film_copy (film), .tally = bt_tally_ref (tally) };
+
+  g_array_append_val (report->entries, entry);
+}
+
+void
+bt_report_add_check (BtReport *report, const BtInstrumentCheck *check, BtSpectrum *spectrum)
+{
+  Entry entry = { .check = bt_instrument_check_copy (check), .spectrum = g_object_ref (spectrum) };
 
   g_array_append_val (report->entries, entry);
 }
@@ -123,7 +143,8 @@ laid_out (BtReport *report, guint index)
       const double width = report->width - 2 * MARGIN_X, height = report->height - MARGIN_TOP - MARGIN_BOTTOM - FOOTER;
       g_autofree char *date = date_text (report, FALSE);
 
-      entry->flow = bt_report_film_flow (report->context, entry->film, entry->tally, date, width, height);
+      entry->flow = entry->film != NULL ? bt_report_film_flow (report->context, entry->film, entry->tally, date, width, height)
+                                        : bt_report_check_flow (report->context, entry->check, entry->spectrum, date, width);
       entry->pages = bt_pages_new (entry->flow, height);
     }
   return entry;
@@ -144,7 +165,7 @@ static void
 draw_footer (BtReport *report, cairo_t *cr, const Entry *entry, int film_page, int page)
 {
   const double y = report->height - MARGIN_BOTTOM - 9, width = report->width - 2 * MARGIN_X;
-  g_autofree char *film = bt_report_film_name (entry->film);
+  g_autofree char *film = entry_name (entry);
   g_autofree char *number = report->entries->len > 1
                                 ? g_strdup_printf (_ ("page %d of %d, sheet %d of %d"), film_page + 1,
                                                    bt_pages_n (entry->pages), page + 1, bt_report_n_pages (report))
@@ -200,7 +221,7 @@ static void
 describe (BtReport *report, cairo_surface_t *surface)
 {
   g_autofree char *date = date_text (report, TRUE), *creator = g_strdup_printf ("Bandtally %s", bt_version ());
-  g_autofree char *film = bt_report_film_name (g_array_index (report->entries, Entry, 0).film);
+  g_autofree char *film = entry_name (&g_array_index (report->entries, Entry, 0));
   g_autofree char *title
       = report->entries->len > 1 ? g_strdup_printf (
             ngettext ("%s and %u film more", "%s and %u films more", report->entries->len - 1), film, report->entries->len - 1)

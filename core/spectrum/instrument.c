@@ -213,6 +213,17 @@ bt_instrument_check (BtSpectrum *spectrum, BtStandard standard, double concentra
   return check;
 }
 
+BtInstrumentCheck *
+bt_instrument_check_copy (const BtInstrumentCheck *check)
+{
+  BtInstrumentCheck *copy = g_new (BtInstrumentCheck, 1);
+
+  *copy = *check;
+  /* Sources belong to the table, which stays. */
+  copy->lines = g_array_copy (check->lines);
+  return copy;
+}
+
 void
 bt_instrument_check_free (BtInstrumentCheck *check)
 {
@@ -222,8 +233,8 @@ bt_instrument_check_free (BtInstrumentCheck *check)
   g_free (check);
 }
 
-static const char *
-state_title (BtCheckState state)
+const char *
+bt_check_state_title (BtCheckState state)
 {
   switch (state)
     {
@@ -235,6 +246,19 @@ state_title (BtCheckState state)
     }
 }
 
+const char *
+bt_instrument_check_outcome (const BtInstrumentCheck *check)
+{
+  switch (check->state)
+    {
+    case BT_CHECK_PASSED: return _ ("Every judged value is within its published tolerance.");
+    case BT_CHECK_FAILED: return _ ("At least one value is outside its tolerance: have the instrument seen to.");
+    case BT_CHECK_NOT_JUDGED:
+    case BT_CHECK_NOT_MEASURED:
+    default: return _ ("Nothing could be judged in the range measured.");
+    }
+}
+
 static void
 append_line (GString *text, const BtCheckLine *line, int digits)
 {
@@ -243,7 +267,7 @@ append_line (GString *text, const BtCheckLine *line, int digits)
   g_autofree char *limits = isnan (line->low) ? g_strdup ("-") : g_strdup_printf ("%.*f .. %.*f", digits, line->low, digits, line->high);
 
   g_string_append_printf (text, "%9.2f  %9.*f  %9s  %9s  %18s  %-12s  %s\n", line->wavelength_nm, digits, line->published, found, deviation, limits,
-                          state_title (line->state), line->source);
+                          bt_check_state_title (line->state), line->source);
 }
 
 char *
@@ -267,9 +291,7 @@ bt_instrument_check_to_text (const BtInstrumentCheck *check, BtSpectrum *spectru
   g_string_append_printf (text, holmium ? _ ("\nMean deviation %+.2f nm; standard uncertainty of a wavelength from it %.2f nm.\n")
                                         : _ ("\nMean deviation %+.4f; standard uncertainty of an absorbance from it %.4f.\n"),
                           check->deviation, check->deviation_u);
-  g_string_append_printf (text, "%s\n", check->state == BT_CHECK_PASSED   ? _ ("Every judged value is within its published tolerance.")
-                                        : check->state == BT_CHECK_FAILED ? _ ("At least one value is outside its tolerance: have the instrument seen to.")
-                                                                          : _ ("Nothing could be judged in the range measured."));
+  g_string_append_printf (text, "%s\n", bt_instrument_check_outcome (check));
   g_string_append (text, _ ("Potassium dichromate is toxic and carcinogenic, perchloric acid corrosive: use sealed cells and follow your laboratory's "
                             "rules.\n"));
   return g_string_free (text, FALSE);

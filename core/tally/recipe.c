@@ -255,3 +255,15 @@ bt_recipe_check (const BtRecipe *recipe, GError **error)
     }
   return TRUE;
 }
+
+gboolean
+bt_recipe_take_check (BtRecipe *recipe, const BtInstrumentCheck *check)
+{
+  if (!(check->deviation_u >= 0))
+    return FALSE;
+  if (check->standard == BT_STANDARD_HOLMIUM)
+    recipe->wavelength_u_nm = check->deviation_u;
+  else
+    recipe->photometric_u = check->deviation_u;
+  return TRUE;
+}

@@ -54,7 +54,12 @@ const double *bt_instrument_concentrations (void);
  * Returns: (transfer full): the outcome, or %NULL with @error set (unknown concentration, or nothing of the standard in the range)
  */
 BtInstrumentCheck *bt_instrument_check (BtSpectrum *spectrum, BtStandard standard, double concentration_mg_l, GError **error);
+/* (transfer full) */
+BtInstrumentCheck *bt_instrument_check_copy (const BtInstrumentCheck *check);
 void bt_instrument_check_free (BtInstrumentCheck *check);
+/* Translated: a word for a line's state; a sentence for the whole outcome. */
+const char *bt_check_state_title (BtCheckState state);
+const char *bt_instrument_check_outcome (const BtInstrumentCheck *check);
 /* (transfer full): the result as translated text, one page. @unix_s: the date it bears. */
 char *bt_instrument_check_to_text (const BtInstrumentCheck *check, BtSpectrum *spectrum, gint64 unix_s);
 

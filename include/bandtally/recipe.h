@@ -3,6 +3,7 @@
 #define BANDTALLY_RECIPE_H
 
 #include <bandtally/film.h>
+#include <bandtally/instrument.h>
 #include <bandtally/model.h>
 
 G_BEGIN_DECLS
@@ -93,6 +94,10 @@ gboolean bt_recipe_equal (const BtRecipe *a, const BtRecipe *b);
 void bt_recipe_hold (BtRecipe *recipe, BtGroup group, guint index, BtBandField field, double value);
 void bt_recipe_release (BtRecipe *recipe, BtGroup group, guint index, BtBandField field);
 const BtHeld *bt_recipe_get_held (const BtRecipe *recipe, BtGroup group, guint index, BtBandField field);
+
+/* Takes the standard uncertainty that a check of the instrument found: of a wavelength from holmium, of an absorbance from dichromate. Leaves @recipe as
+ * it is, and returns %FALSE, where the check found nothing. */
+gboolean bt_recipe_take_check (BtRecipe *recipe, const BtInstrumentCheck *check);
 
 /* JSON, a member a field; every member may be left out. Errors name the member. */
 BtRecipe *bt_recipe_new_from_json (const char *text, gssize length, GError **error);

@@ -3,6 +3,7 @@
 #define BANDTALLY_REPORT_H
 
 #include <cairo.h>
+#include <bandtally/instrument.h>
 #include <bandtally/tally.h>
 
 G_BEGIN_DECLS
@@ -15,6 +16,8 @@ typedef struct _BtReport BtReport;
 BtReport *bt_report_new (BtPaper paper);
 void bt_report_free (BtReport *report);
 void bt_report_add (BtReport *report, BtFilm *film, BtTally *tally);
+/* The page of a check of the instrument: what was published and what was found on @spectrum. Copies @check, keeps @spectrum. */
+void bt_report_add_check (BtReport *report, const BtInstrumentCheck *check, BtSpectrum *spectrum);
 /* Seconds since 1970 that the report bears; without it SOURCE_DATE_EPOCH, or now. */
 void bt_report_set_date (BtReport *report, gint64 unix_s);
 int bt_report_n_pages (BtReport *report);

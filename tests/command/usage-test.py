@@ -4,7 +4,7 @@ from whole_program import Folder, holds, main, run, test
 OPTIONS = {
     "grade": ["thickness-nm", "thickness-u-nm", "blank", "diameter-nm", "diameter-spread-nm", "strength-ratio", "strength-ratio-u",
               "limit", "level", "wavelengths-nm", "recipe", "substrate", "light-path", "reflectance", "substrate-index", "x-unit", "y-unit", "json", "csv", "report", "paper", "jobs"],
-    "check-instrument": ["standard", "concentration-mg-l", "x-unit", "y-unit", "output"],
+    "check-instrument": ["standard", "concentration-mg-l", "x-unit", "y-unit", "output", "pdf", "paper", "recipe", "write-recipe"],
     "inspect": ["points", "spectrum", "x-unit", "y-unit"],
     "energies": ["tube", "diameter-nm", "diameter-spread-nm", "set", "shift-mev", "nm", "csv"],
     "forecast": ["film", "lot", "fraction", "diameter-nm", "diameter-spread-nm", "thickness-nm", "thickness-u-nm", "tail",
