@@ -19,17 +19,14 @@ total (Vector v)
   return (v[0] + v[1]) + (v[2] + v[3]);
 }
 
-typedef long long Order __attribute__ ((vector_size (32)));
-
 /* Four sums at once: each is (0 + 1) + (2 + 3) of its vector. */
 static inline __attribute__ ((always_inline)) Vector
 totals (Vector a, Vector b, Vector c, Vector d)
 {
-  const Order even = { 0, 4, 2, 6 }, odd = { 1, 5, 3, 7 }, low = { 0, 1, 4, 5 }, high = { 2, 3, 6, 7 };
-  const Vector ab = __builtin_shuffle (a, b, even) + __builtin_shuffle (a, b, odd);
-  const Vector cd = __builtin_shuffle (c, d, even) + __builtin_shuffle (c, d, odd);
+  const Vector ab = __builtin_shufflevector (a, b, 0, 4, 2, 6) + __builtin_shufflevector (a, b, 1, 5, 3, 7);
+  const Vector cd = __builtin_shufflevector (c, d, 0, 4, 2, 6) + __builtin_shufflevector (c, d, 1, 5, 3, 7);
 
-  return __builtin_shuffle (ab, cd, low) + __builtin_shuffle (ab, cd, high);
+  return __builtin_shufflevector (ab, cd, 0, 1, 4, 5) + __builtin_shufflevector (ab, cd, 2, 3, 6, 7);
 }
 
 /* Whether columns a to a + 3 belong to parameters one after the other. */
