@@ -26,8 +26,8 @@ printing_free (gpointer data, GClosure *closure)
 }
 
 /* The report knows two papers; any other gets the pages of the one that is nearer in shape, scaled. */
-static BtPaper
-paper_of (GtkPageSetup *setup)
+BtPaper
+desk_paper_of (GtkPageSetup *setup)
 {
   GtkPaperSize *size = gtk_page_setup_get_paper_size (setup);
   double width = gtk_paper_size_get_width (size, GTK_UNIT_POINTS), height = gtk_paper_size_get_height (size, GTK_UNIT_POINTS);
@@ -42,7 +42,7 @@ paper_of (GtkPageSetup *setup)
 static BtReport *
 new_report (Printing *printing, GtkPageSetup *setup)
 {
-  BtReport *report = bt_report_new (paper_of (setup));
+  BtReport *report = bt_report_new (desk_paper_of (setup));
   bt_report_add (report, printing->film, printing->tally);
   return report;
 }
@@ -52,7 +52,7 @@ on_begin (GtkPrintOperation *operation, GtkPrintContext *context, Printing *prin
 {
   GtkPageSetup *setup = gtk_print_context_get_page_setup (context);
   double width, height;
-  bt_paper_size_pt (paper_of (setup), &width, &height);
+  bt_paper_size_pt (desk_paper_of (setup), &width, &height);
   printing->scale = MIN (gtk_print_context_get_width (context) / width, gtk_print_context_get_height (context) / height);
   g_clear_pointer (&printing->report, bt_report_free);
   printing->report = new_report (printing, setup);
@@ -108,7 +108,7 @@ on_preview (GtkPrintOperation *operation, GtkPrintOperationPreview *preview, Gtk
 {
   GtkPageSetup *setup = gtk_print_context_get_page_setup (context);
   GtkWidget *window
-      = desk_preview_new (GTK_WINDOW (printing->window), printing->title, new_report (printing, setup), paper_of (setup));
+      = desk_preview_new (GTK_WINDOW (printing->window), printing->title, new_report (printing, setup), desk_paper_of (setup));
   /* The context needs a surface, though nothing of it is drawn on. */
   cairo_surface_t *surface = cairo_recording_surface_create (CAIRO_CONTENT_COLOR, NULL);
   cairo_t *cr = cairo_create (surface);

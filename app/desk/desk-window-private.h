@@ -28,6 +28,9 @@ void desk_window_say (DeskWindow *self, GtkMessageType type, const char *sentenc
 void desk_window_update_actions (DeskWindow *self);
 void desk_window_set_enabled (DeskWindow *self, const char *action, gboolean enabled);
 
+/* The report's paper that is nearer in shape to the printer's. */
+BtPaper desk_paper_of (GtkPageSetup *setup);
+
 /* Lets a file dialog begin where the last one ended. */
 void desk_window_begin_in_folder (DeskWindow *self, GtkFileChooser *chooser);
 void desk_window_keep_folder (DeskWindow *self, GtkFileChooser *chooser);
@@ -39,4 +42,5 @@ void desk_window_add_open_actions (DeskWindow *self);
 void desk_window_add_reflectance_actions (DeskWindow *self);
 void desk_window_add_save_actions (DeskWindow *self);
 void desk_window_add_print_actions (DeskWindow *self);
+void desk_window_add_check_actions (DeskWindow *self);
 void desk_window_accept_drops (DeskWindow *self);

@@ -200,6 +200,7 @@ desk_window_init (DeskWindow *self)
   desk_window_add_reflectance_actions (self);
   desk_window_add_save_actions (self);
   desk_window_add_print_actions (self);
+  desk_window_add_check_actions (self);
   desk_window_accept_drops (self);
 
   g_signal_connect_swapped (self->history, "changed", G_CALLBACK (on_history_changed), self);

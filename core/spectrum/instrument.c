@@ -259,6 +259,23 @@ bt_instrument_check_outcome (const BtInstrumentCheck *check)
     }
 }
 
+char *
+bt_instrument_check_summary (const BtInstrumentCheck *check)
+{
+  const char *sentence = check->standard == BT_STANDARD_HOLMIUM ? _ ("Mean deviation %+.2f nm; standard uncertainty of a wavelength from it %.2f nm.")
+                                                                : _ ("Mean deviation %+.4f; standard uncertainty of an absorbance from it %.4f.");
+  g_autofree char *deviation = g_strdup_printf (sentence, check->deviation, check->deviation_u);
+
+  return isnan (check->deviation) ? g_strdup (bt_instrument_check_outcome (check))
+                                  : g_strdup_printf ("%s\n%s", bt_instrument_check_outcome (check), deviation);
+}
+
+const char *
+bt_instrument_check_caution (void)
+{
+  return _ ("Potassium dichromate is toxic and carcinogenic, perchloric acid corrosive: use sealed cells and follow your laboratory's rules.");
+}
+
 static void
 append_line (GString *text, const BtCheckLine *line, int digits)
 {
@@ -276,6 +293,7 @@ bt_instrument_check_to_text (const BtInstrumentCheck *check, BtSpectrum *spectru
   GString *text = g_string_new (NULL);
   g_autoptr (GDateTime) date = g_date_time_new_from_unix_local (unix_s);
   g_autofree char *when = date != NULL ? g_date_time_format (date, "%Y-%m-%d %H:%M") : g_strdup ("");
+  g_autofree char *summary = bt_instrument_check_summary (check);
   const gboolean holmium = check->standard == BT_STANDARD_HOLMIUM;
 
   g_string_append_printf (text, "%s\n", holmium ? _ ("Wavelength check with holmium oxide in perchloric acid") : _ ("Absorbance check with potassium dichromate"));
@@ -288,11 +306,6 @@ bt_instrument_check_to_text (const BtInstrumentCheck *check, BtSpectrum *spectru
                           _ ("source"));
   for (guint i = 0; i < check->lines->len; i++)
     append_line (text, &g_array_index (check->lines, BtCheckLine, i), holmium ? 2 : 4);
-  g_string_append_printf (text, holmium ? _ ("\nMean deviation %+.2f nm; standard uncertainty of a wavelength from it %.2f nm.\n")
-                                        : _ ("\nMean deviation %+.4f; standard uncertainty of an absorbance from it %.4f.\n"),
-                          check->deviation, check->deviation_u);
-  g_string_append_printf (text, "%s\n", bt_instrument_check_outcome (check));
-  g_string_append (text, _ ("Potassium dichromate is toxic and carcinogenic, perchloric acid corrosive: use sealed cells and follow your laboratory's "
-                            "rules.\n"));
+  g_string_append_printf (text, "\n%s\n%s\n", summary, bt_instrument_check_caution ());
   return g_string_free (text, FALSE);
 }

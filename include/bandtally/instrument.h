@@ -60,6 +60,10 @@ void bt_instrument_check_free (BtInstrumentCheck *check);
 /* Translated: a word for a line's state; a sentence for the whole outcome. */
 const char *bt_check_state_title (BtCheckState state);
 const char *bt_instrument_check_outcome (const BtInstrumentCheck *check);
+/* (transfer full): the outcome, and the deviation with what it means, as translated sentences, a line each. */
+char *bt_instrument_check_summary (const BtInstrumentCheck *check);
+/* Translated: cautions for the standards' solutions. */
+const char *bt_instrument_check_caution (void);
 /* (transfer full): the result as translated text, one page. @unix_s: the date it bears. */
 char *bt_instrument_check_to_text (const BtInstrumentCheck *check, BtSpectrum *spectrum, gint64 unix_s);
 

@@ -210,6 +210,31 @@ def xdo(*words):
     subprocess.run(["xdotool", *[str(word) for word in words]], check=True, stdout=subprocess.DEVNULL)
 
 
+def location_entry(desk, dialog):
+    """A dialog for opening shows its entry once asked; the key may come before the dialog has the focus."""
+    entry = desk.find(role="text", top=dialog)
+    if not entry:
+        xdo("key", "--delay", 200, "ctrl+l")
+    return entry
+
+
+def choose(desk, title, path):
+    """Types a path into the file dialog of that title and presses Enter."""
+    dialog = desk.wait(role=("file chooser", "dialog"), contains=title)
+    entry = until(lambda: location_entry(desk, dialog), "the place to type a path")
+    entry.queryEditableText().setTextContents(path)
+    until(lambda: entry.queryText().getText(0, -1) == path, "the path in the entry")
+    entry.queryComponent().grabFocus()
+    desk.key("Return")
+    until(lambda: not desk.find(role=("file chooser", "dialog"), contains=title), f"the dialog {title} closed")
+
+
+def menu(desk, *names):
+    desk.press(desk.wait(name="Menu", role="toggle button"))
+    for name in names:
+        desk.press(desk.wait(name=name))
+
+
 class Tap:
     """Prints the tests' outcomes in TAP and says at the end whether all passed."""
 

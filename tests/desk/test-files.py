@@ -9,6 +9,7 @@ import tempfile
 
 sys.path.insert(0, os.path.dirname(os.path.abspath(__file__)))
 import desk as d
+from desk import choose, menu
 
 program, command, shots = (os.path.abspath(path) for path in sys.argv[1:4])
 d.inside_display()
@@ -19,31 +20,6 @@ def forecast(folder, name, *options):
     path = os.path.join(folder, name)
     subprocess.run([command, "forecast", "--output", path, *options], check=True)
     return path
-
-
-def location_entry(desk, dialog):
-    """A dialog for opening shows its entry once asked; the key may come before the dialog has the focus."""
-    entry = desk.find(role="text", top=dialog)
-    if not entry:
-        d.xdo("key", "--delay", 200, "ctrl+l")
-    return entry
-
-
-def choose(desk, title, path):
-    """Types a path into the file dialog of that title and presses Enter."""
-    dialog = desk.wait(role=("file chooser", "dialog"), contains=title)
-    entry = d.until(lambda: location_entry(desk, dialog), "the place to type a path")
-    entry.queryEditableText().setTextContents(path)
-    d.until(lambda: entry.queryText().getText(0, -1) == path, "the path in the entry")
-    entry.queryComponent().grabFocus()
-    desk.key("Return")
-    d.until(lambda: not desk.find(role=("file chooser", "dialog"), contains=title), f"the dialog {title} closed")
-
-
-def menu(desk, *names):
-    desk.press(desk.wait(name="Menu", role="toggle button"))
-    for name in names:
-        desk.press(desk.wait(name=name))
 
 
 def opens_by_dialog(desk, folder):
