@@ -73,6 +73,13 @@ static Reading *
 end_reading (DeskWindow *self, GAsyncResult *result)
 {
   Reading *reading = g_task_get_task_data (G_TASK (result));
+  /* So that nobody counts, or misses those that have to be scrolled to. */
+  if (reading->sentences->len > 1)
+    {
+      g_autofree char *sum
+          = g_strdup_printf (_("%u of %u files could not be read:"), reading->sentences->len, reading->files->len);
+      desk_window_say (self, GTK_MESSAGE_ERROR, sum);
+    }
   for (guint i = 0; i < reading->sentences->len; i++)
     desk_window_say (self, GTK_MESSAGE_ERROR, reading->sentences->pdata[i]);
   return reading;

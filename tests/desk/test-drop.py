@@ -102,6 +102,8 @@ def every_failure_is_named(desk, folder, files):
         own = [sentence for sentence in sentences if name in sentence]
         d.same(len(own), 1, f"sentences about {name}")
         d.need(own[0].endswith(".") and len(own[0].split()) > 5, own[0])
+    failed = sum(not isinstance(outcome, int) for _, _, outcome in files)
+    d.same(sentences[0], f"{failed} of {len(files)} files could not be read:", "the sum above them")
     desk.shot(os.path.join(shots, "dropped.png"))
 
 
