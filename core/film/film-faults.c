@@ -97,9 +97,11 @@ judge_stray_light (BtFilm *film, double stray, BtRange range, BtCurve *curve)
 
       for (gsize i = 0; i < n; i++)
         ceiling = fmax (ceiling, absorbance[i]);
-      add (curve, bt_flag_new ("stray-light", _ ("The highest reading, A = %.2f, means stray light of at most %.2g %%: readings from A = %.1f on are low by 2 %% or "
-                                                 "more. State the instrument's share to have it judged."),
-                               ceiling, 100 * pow (10, -ceiling), fmax (0, ceiling - 1)));
+      stray = pow (10, -ceiling) / (1 - pow (10, -ceiling));
+      missing = stray_missing (ceiling - 1, stray);
+      add (curve, bt_flag_new ("stray-light", _ ("The highest reading, A = %.2f, means stray light of at most %.2g %%: readings of A = %.1f may be low by %.3f "
+                                                 "(%.1f %%), higher ones by more. State the instrument's share to have it judged."),
+                               ceiling, 100 * stray, ceiling - 1, missing, 100 * missing / (ceiling - 1)));
     }
 }
 
@@ -112,18 +114,36 @@ substrate_index (BtFilm *film, const BtLightPath *how, double wavelength_nm)
   return isnan (index) ? 1.5 : index;
 }
 
-/* What the film's front face reflects beyond the bare substrate's, for the lowest and the highest index of films. */
+/* What the film's front face reflects beyond the bare substrate's, for the lowest and the highest index of films; and, for a film much thinner than the
+ * wave, how much the blank ratio's absorption coefficient is above the bulk's, 2n / (1 + n_s): the ratio of
+ * 2 Z0 s / (1 + n_s), Glover and Tinkham (1957) to first order in s, to Z0 s / n. */
 static void
 judge_reflection (BtFilm *film, const BtLightPath *how, BtCurve *curve)
 {
-  const double substrate = bt_face_reflectance (substrate_index (film, how, 550));
-  double low = -log10 ((1 - bt_face_reflectance (FILM_INDEX_LOW)) / (1 - substrate)), high = -log10 ((1 - bt_face_reflectance (FILM_INDEX_HIGH)) / (1 - substrate));
+  const double t = bt_film_get_thickness_nm (film);
+  double at_nm = 550, here, index, substrate, low, high;
 
-  if (curve->kind != BT_LIGHT_PATH_BLANK_RATIO || !(bt_film_get_thickness_nm (film) > 0))
+  if (curve->kind != BT_LIGHT_PATH_BLANK_RATIO || !(t > 0) || curve->n < 2)
     return;
-  add (curve, bt_flag_new ("reflection-left-out", _ ("Reflection is left out of the absorption coefficient: a film of index 1.5 to 2 reflects so much more than "
-                                                     "its substrate that the absorbance is high by %.3f to %.3f. Measure the reflectance to have it taken off."),
-                           fmax (0, fmin (low, high)), fmax (low, high)));
+  if (!bt_curve_at (curve, bt_ev_from_nm (at_nm), &here, NULL))
+    {
+      at_nm = bt_nm_from_ev ((curve->energy_ev[0] + curve->energy_ev[curve->n - 1]) / 2);
+      if (!bt_curve_at (curve, bt_ev_from_nm (at_nm), &here, NULL))
+        return;
+    }
+  index = substrate_index (film, how, at_nm);
+  substrate = bt_face_reflectance (index);
+  low = -log10 ((1 - bt_face_reflectance (FILM_INDEX_LOW)) / (1 - substrate));
+  high = -log10 ((1 - bt_face_reflectance (FILM_INDEX_HIGH)) / (1 - substrate));
+  if (t < at_nm / 10)
+    add (curve, bt_flag_new ("reflection-left-out", _ ("The absorption coefficient is that of the blank ratio: in a film this thin the bulk's is lower by the factor 2n/(1+n_s), "
+                                                       "%.2f to %.2f for a film of index 1.5 to 2 at %.0f nm. State the film's index beside it."),
+                             2 * FILM_INDEX_LOW / (1 + index), 2 * FILM_INDEX_HIGH / (1 + index), at_nm));
+  else
+    add (curve, bt_flag_new ("reflection-left-out", _ ("Reflection is left out of the absorption coefficient: a film of index 1.5 to 2 reflects so much more than "
+                                                       "its substrate that the absorbance is high by %.3f to %.3f, up to %.1f %% at %.0f nm. Measure the reflectance to "
+                                                       "have it taken off."),
+                             fmax (0, fmin (low, high)), fmax (low, high), here > 0 ? 100 * fmax (low, high) / here : 100, at_nm));
 }
 
 static void

@@ -136,7 +136,15 @@ test_reflection (void)
   bt_film_set_thickness (film, 120, 3);
   curve = judge (film, NULL, 0);
   g_assert_nonnull (strstr (flag_text (curve, "reflection-left-out"), "0.002 to 0.036"));
+  /* plain (550) = 0.3 1.1^-1.2 = 0.26757; 0.0357 of it is 13.3 %. */
+  g_assert_nonnull (strstr (flag_text (curve, "reflection-left-out"), "13.3 % at 550 nm"));
   bt_curve_free (curve);
+  /* Much thinner than the wave: 3 / 2.459911 = 1.22 and 4 / 2.459911 = 1.63. */
+  bt_film_set_thickness (film, 30, 1);
+  curve = judge (film, NULL, 0);
+  g_assert_nonnull (strstr (flag_text (curve, "reflection-left-out"), "1.22 to 1.63"));
+  bt_curve_free (curve);
+  bt_film_set_thickness (film, 120, 3);
   curve = judge (film, &slab, 0);
   g_assert_null (bt_flags_find (curve->flags, "reflection-left-out"));
   g_assert_nonnull (strstr (flag_text (curve, "not-slab"), "120 nm"));
