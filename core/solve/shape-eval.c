@@ -217,7 +217,6 @@ bt_shape_support (BtShape shape, const double *q, double loss, double *low, doub
     case BT_SHAPE_LINE:
     case BT_SHAPE_FANO:
     case BT_SHAPE_RECIPROCAL_EXPONENTIAL:
-    case BT_N_SHAPES:
     default:
       break;
     }

@@ -41,9 +41,20 @@ typedef void (*BtFitFunc) (const double *q, const double *x, gsize n, double *f,
  * Returns: (transfer full): a problem without shapes
  */
 BtFit *bt_fit_new (const double *x, const double *y, const double *sigma, gsize n);
-/* Each returns the index of the shape's amplitude; its nonlinear parameters follow, and after those its references (x0), which are always held.
- * Everything starts at 1; amplitudes and nonlinear parameters are free. @start gives the first @n_start of what follows the amplitude. */
+/**
+ * bt_fit_add_shape:
+ * @start: (array length=n_start) (nullable): the first @n_start of what follows the amplitude; 1 for the rest
+ *
+ * Amplitudes and nonlinear parameters are free, references (x0) are held.
+ *
+ * Returns: the index of the shape's amplitude; its nonlinear parameters follow, and after those its references
+ */
 guint bt_fit_add_shape (BtFit *self, BtShape shape, const double *start, gsize n_start);
+/**
+ * bt_fit_add_function: (skip)
+ *
+ * Returns: the index of the amplitude; the nonlinear parameters follow, all starting at 1
+ */
 guint bt_fit_add_function (BtFit *self, BtFitFunc func, guint n_nonlinear, gpointer data, GDestroyNotify destroy);
 guint bt_fit_get_n_parameters (BtFit *self);
 
@@ -63,7 +74,10 @@ void bt_fit_set_step_limit (BtFit *self, guint parameter, double limit);
 /* Leaves out the points of a range of x; bt_fit_unmask() takes all of them back. */
 void bt_fit_mask (BtFit *self, double low, double high);
 void bt_fit_unmask (BtFit *self);
-/* Other data on the same axis: resamples, overlaid films. */
+/**
+ * bt_fit_set_data:
+ * @y: (array length=n): other data on the same axis: resamples, overlaid films
+ */
 void bt_fit_set_data (BtFit *self, const double *y, gsize n);
 
 /**
@@ -87,7 +101,7 @@ typedef struct {
  * @n_parameters: p; all of the problem's, free or not
  * @x: (array length=n_parameters): the minimum
  * @u: (array length=n_parameters): standard uncertainties; 0 where fixed or on a bound
- * @covariance: p x p, row-major
+ * @covariance: (skip): p x p, row-major; bt_fit_result_dup_covariance()
  * @at_bound: (array length=n_parameters)
  * @chi2: weighted sum of squared residuals, without priors
  * @n_free: parameters that the data determined
@@ -129,13 +143,25 @@ char *bt_fit_result_to_text (const BtFitResult *result);
  * Returns: (transfer full): the outcome; %NULL with @error set only where nothing could be tried (no points, cancelled)
  */
 BtFitResult *bt_fit_solve (BtFit *self, const BtFitOptions *options, GCancellable *cancellable, GError **error);
-/* Values of the whole model, or of the shape that starts at @parameter. */
+/**
+ * bt_fit_eval: (skip)
+ * @out: (array length=n): values of the whole model; of the shape that starts at @parameter by bt_fit_eval_shape()
+ */
 void bt_fit_eval (BtFit *self, const double *parameters, const double *x, gsize n, double *out);
+/**
+ * bt_fit_eval_shape: (skip)
+ */
 void bt_fit_eval_shape (BtFit *self, guint parameter, const double *parameters, const double *x, gsize n, double *out);
 
-/* Interval of a parameter in which chi2 (with priors) rises by no more than the quantile of @level with one degree of freedom, all others
+/**
+ * bt_fit_profile:
+ * @low: (out): lower end
+ * @high: (out): upper end
+ *
+ * Interval of a parameter in which chi2 (with priors) rises by no more than the quantile of @level with one degree of freedom, all others
  * fitted again (profile likelihood; Venzon and Moolgavkar 1988). Without known uncertainties chi2 counts in units of its mean per degree of
- * freedom. FALSE where a bound or a failed fit ends it; that end is then the bound, or the last value that could be fitted. */
+ * freedom. FALSE where a bound or a failed fit ends it; that end is then the bound, or the last value that could be fitted.
+ */
 gboolean bt_fit_profile (BtFit *self, const BtFitResult *best, guint parameter, double level, double *low, double *high);
 
 /**
@@ -145,7 +171,7 @@ gboolean bt_fit_profile (BtFit *self, const BtFitResult *best, guint parameter, 
  */
 typedef enum { BT_RESAMPLE_NOISE, BT_RESAMPLE_BLOCKS } BtResampleKind;
 /**
- * bt_fit_resample:
+ * bt_fit_resample: (skip)
  * @block: points in a block; 0: from the correlation of the residuals
  * @refit: %TRUE: whole fits from where the best one stands; %FALSE: a few steps with the best fit's Jacobian, many times faster, and a whole
  *   fit only where those do not settle or meet a bound
@@ -160,6 +186,47 @@ typedef enum { BT_RESAMPLE_NOISE, BT_RESAMPLE_BLOCKS } BtResampleKind;
  */
 gboolean bt_fit_resample (BtFit *self, const BtFitResult *best, BtResampleKind kind, guint block, guint n_resamples, gboolean refit, guint64 seed,
                           guint threads, double *out, GCancellable *cancellable, GError **error);
+
+/**
+ * bt_fit_result_dup_x:
+ * @n: (out): number of parameters
+ *
+ * Returns: (array length=n) (transfer full): the minimum
+ */
+double *bt_fit_result_dup_x (const BtFitResult *result, gsize *n);
+/**
+ * bt_fit_result_dup_u:
+ * @n: (out): number of parameters
+ *
+ * Returns: (array length=n) (transfer full): standard uncertainties
+ */
+double *bt_fit_result_dup_u (const BtFitResult *result, gsize *n);
+/**
+ * bt_fit_result_dup_covariance:
+ * @n: (out): p x p
+ *
+ * Returns: (array length=n) (transfer full): row-major
+ */
+double *bt_fit_result_dup_covariance (const BtFitResult *result, gsize *n);
+/**
+ * bt_fit_dup_curve:
+ * @parameters: (array length=n_parameters): all of the problem's
+ * @x: (array length=n): abscissae
+ * @n_out: (out): @n
+ *
+ * Returns: (array length=n_out) (transfer full): values of the whole model
+ */
+double *bt_fit_dup_curve (BtFit *self, const double *parameters, gsize n_parameters, const double *x, gsize n, gsize *n_out);
+/**
+ * bt_fit_dup_resamples:
+ * @n_out: (out): n_resamples x p
+ *
+ * bt_fit_resample() for languages that want arrays returned.
+ *
+ * Returns: (array length=n_out) (transfer full): row-major; %NULL with @error set where it was cancelled
+ */
+double *bt_fit_dup_resamples (BtFit *self, const BtFitResult *best, BtResampleKind kind, guint block, guint n_resamples, gboolean refit, guint64 seed,
+                              guint threads, GCancellable *cancellable, gsize *n_out, GError **error);
 
 G_END_DECLS
 

@@ -14,12 +14,12 @@ G_BEGIN_DECLS
  * @BT_SHAPE_LORENTZIAN: 1 / (1 + u^2), u = 2 (x - c) / w; q = (c, w), w the FWHM
  * @BT_SHAPE_VOIGT: convolution of a Gaussian of FWHM wg and a Lorentzian of FWHM wl, divided by its value at c; q = (c, wg,
  * wl); one of the widths may be 0
- * @BT_SHAPE_PSEUDO_VOIGT: (1 - s) Gaussian + s Lorentzian of one centre and FWHM; q = (c, w, s)
- * @BT_SHAPE_FANO: (a + u)^2 / ((1 + a^2) (1 + u^2)), u = 2 (x - c) / w: U. Fano, Phys. Rev. 124, 1866 (1961), eq. 21 (from
+ * @BT_SHAPE_PSEUDO_VOIGT: f = (1 - s) Gaussian + s Lorentzian of one centre and FWHM; q = (c, w, s)
+ * @BT_SHAPE_FANO: f = (a + u)^2 / ((1 + a^2) (1 + u^2)), u = 2 (x - c) / w: U. Fano, Phys. Rev. 124, 1866 (1961), eq. 21 (from
  * memory), over its largest value; q = (c, w, a), a the asymmetry; far from c it tends to 1 / (1 + a^2), not to 0
  * @BT_SHAPE_EXPONENTIAL: exp(-b (x - x0)); q = (b, x0)
  * @BT_SHAPE_RECIPROCAL_EXPONENTIAL: exp(-b (1/x - 1/x0)): an exponential in wavelength over an axis of energy; q = (b, x0)
- * @BT_SHAPE_POWER: (x / x0)^-p; q = (p, x0); NaN where x / x0 is not a positive normal number
+ * @BT_SHAPE_POWER: f = (x / x0)^-p; q = (p, x0); NaN where x / x0 is not a positive normal number
  * @BT_SHAPE_PLASMON: 1 / (1 + u^2), u = (x - c) / g: the Lorentzian as tails have it; q = (c, g), g the half width at half
  * height
  *
@@ -39,9 +39,10 @@ typedef enum
   BT_SHAPE_EXPONENTIAL,
   BT_SHAPE_RECIPROCAL_EXPONENTIAL,
   BT_SHAPE_POWER,
-  BT_SHAPE_PLASMON,
-  BT_N_SHAPES
+  BT_SHAPE_PLASMON
 } BtShape;
+/* Not one of them, so that bindings call the members by their own names. */
+#define BT_N_SHAPES (BT_SHAPE_PLASMON + 1)
 
 /* The most parameters a shape has, and the most numbers in q. */
 #define BT_SHAPE_MAX_PARAMETERS 3

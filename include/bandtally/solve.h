@@ -18,7 +18,7 @@ typedef void (*BtModelFunc) (const double *x, double *residual, double *jacobian
 
 /**
  * BtProblem:
- * @low: (nullable) (array length=n_parameters): lower bounds; -INFINITY for none
+ * @low: (nullable): n_parameters lower bounds; -INFINITY for none
  * @high: (nullable): upper bounds
  * @scale: (nullable): largest step of each parameter in one iteration; INFINITY for none
  * @prior_mean: (nullable): with @prior_u, a weak Gaussian knowledge added as extra rows; @prior_u INFINITY for none
@@ -38,7 +38,7 @@ typedef enum { BT_SOLVE_CONVERGED, BT_SOLVE_STOPPED_EARLY, BT_SOLVE_SINGULAR, BT
 
 /**
  * BtSolution:
- * @x: (array length=n_parameters): the minimum (in: the start; caller's array)
+ * @x: the minimum, n_parameters (in: the start; the caller's array)
  * @covariance: (nullable): caller's array n x n; (J'J)^-1 of the free parameters, unscaled; rows of parameters on a bound are 0
  * @at_bound: (nullable): caller's array of n; TRUE where a parameter sits on a bound
  * @chi2: sum of squared residuals (without priors)

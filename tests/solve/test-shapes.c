@@ -43,7 +43,6 @@ reference (BtShape shape, const long double *q, long double x)
       return powl (x / q[1], -q[0]);
     case BT_SHAPE_VOIGT:
       return voigt_reference (q, x);
-    case BT_N_SHAPES:
     default:
       return NAN;
     }
