@@ -140,7 +140,7 @@ add_lines (BtFlow *flow, PangoContext *context, const BtInstrumentCheck *check, 
                                   holmium ? _ ("Found: the top of a parabola through the points about the highest maximum near the published position. "
                                                "Uncertainty: standard uncertainty from the noise. Lines without a tolerance are shown and not judged.")
                                           : _ ("Found: the absorbance read at the wavelength. Uncertainty: standard uncertainty from the noise. "
-                                               "Tolerance: 0.010, or 1 % above absorbance 1 (common practice)."),
+                                               "Tolerance: 0.010, or a hundredth of it above absorbance 1 (common practice)."),
                                   width),
                4);
 }
