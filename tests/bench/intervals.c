@@ -2,7 +2,7 @@
  * the recipe does not know: abundances that scatter by 35 % about the distribution, energies that jitter by 6 meV a tube, Lorentzian wings, phonon
  * sidebands, five kinds of tail, one of them a sum; diameters are proposed from the data. The strength ratio is known exactly, so that its uncertainty cannot help.
  *
- *   meson test -C BUILD --benchmark intervals --verbose        (or run the program; an argument sets the films a class, 25 by default)
+ *   meson test -C BUILD --benchmark intervals --verbose        (or run the program; arguments set the films a class, 30 by default, and the first seed)
  *
  * Fixed seeds: the same table each time. What it does not cover: blanks, reflection, uneven films, polymer bands, aligned tubes. */
 #include <bandtally/bandtally.h>
@@ -21,6 +21,9 @@ static const Class classes[] = {
 
 /* @covered, @n; sums for bias; half widths to be sorted. */
 typedef struct { guint n, covered, bounds; double bias, squares, *half_width, seconds; } Outcome;
+
+/* The second argument: films that nothing was ever tuned on. */
+static guint64 first_seed = 77000;
 
 static void
 make_forecast (BtForecast *forecast, const Class *kind, guint i)
@@ -50,7 +53,7 @@ make_forecast (BtForecast *forecast, const Class *kind, guint i)
   forecast->step_size = kind->step;
   forecast->bleach = kind->bleach;
   forecast->thickness_nm = kind->thickness_nm;
-  forecast->seed = 77000 + i;
+  forecast->seed = first_seed + i;
 }
 
 static void
@@ -107,8 +110,11 @@ by_size (const void *a, const void *b)
 int
 main (int argc, char **argv)
 {
-  const guint films = argc > 1 ? (guint) atoi (argv[1]) : 25;
+  const guint films = argc > 1 ? (guint) atoi (argv[1]) : 30;
   guint all = 0, covered = 0;
+
+  if (argc > 2)
+    first_seed = g_ascii_strtoull (argv[2], NULL, 10);
 
   g_return_val_if_fail (films > 0 && films <= 10000, 2);
   printf ("%-24s %6s %8s %8s %8s %12s %8s %8s\n", "class", "films", "covered", "bias", "rms", "half width", "bounds", "s/film");
