@@ -35,7 +35,17 @@ struct _BtFit
   gboolean *masked;
   GArray *parts;      /* BtFitPart */
   GArray *parameters; /* BtFitParameter */
+  BtFitProgressFunc progress;
+  gpointer progress_data;
+  GDestroyNotify progress_destroy;
 };
+
+static inline void
+bt_fit_tell (const BtFit *self, double share)
+{
+  if (self->progress != NULL)
+    self->progress (share, self->progress_data);
+}
 
 static inline const BtFitPart *
 bt_fit_part (const BtFit *self, guint i)

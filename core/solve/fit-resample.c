@@ -34,6 +34,7 @@ typedef struct
   gboolean usable;
   double *out;
   GCancellable *cancellable;
+  GThread *caller;
   gint next;
 } Resample;
 
@@ -159,6 +160,8 @@ worker (gpointer data)
           bt_fit_run (work, &options, all->cancellable, z);
         }
       bt_fit_map_expand (all->map, z, all->out + (gsize)number * all->map->n_full);
+      if (g_thread_self () == all->caller)
+        bt_fit_tell (all->fit, (double)(number + 1) / all->n_resamples);
     }
   g_aligned_free (y);
   return NULL;
@@ -250,7 +253,8 @@ bt_fit_resample (BtFit *self, const BtFitResult *best, BtResampleKind kind, guin
                    .n_resamples = n_resamples,
                    .seed = seed,
                    .out = out,
-                   .cancellable = cancellable };
+                   .cancellable = cancellable,
+                   .caller = g_thread_self () };
 
   g_return_val_if_fail (points->n > 0 && best->n_parameters == map->n_full, FALSE);
   work = bt_fit_work_new (self, points, map);

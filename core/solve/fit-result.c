@@ -45,6 +45,17 @@ fill_criteria (BtFitResult *result, gboolean sigma_known)
   result->bic = misfit + k * log (n);
 }
 
+/* Points that repeat their neighbours' errors say less: as many independent ones as there are effective points have their variance. */
+static double
+covariance_scale (const BtFitResult *result, const BtFitOptions *options)
+{
+  const double points = options->correlated ? fmin (result->effective_points, (double)result->n_points) : (double)result->n_points;
+
+  if (options->sigma_known)
+    return (double)result->n_points / fmax (points, 1);
+  return points > result->n_free ? result->chi2 / (points - result->n_free) : 1;
+}
+
 BtFitResult *
 bt_fit_result_new (BtFitWork *work, const BtFitOptions *options, const double *z)
 {
@@ -70,8 +81,8 @@ bt_fit_result_new (BtFitWork *work, const BtFitOptions *options, const double *z
   result->sigma_known = options->sigma_known;
   for (guint k = 0; k < p; k++)
     result->n_free += covariance[(gsize)k * p + k] > 0;
-  if (!options->sigma_known && result->n_points > result->n_free)
-    scale = result->chi2 / (double)(result->n_points - result->n_free);
+  result->effective_points = bt_effective_points (result->n_points, bt_lag1_correlation (work->residual, result->n_points));
+  scale = covariance_scale (result, options);
   result->x = g_new (double, n);
   result->u = g_new0 (double, n);
   result->covariance = g_new0 (double, (gsize)n *n);
@@ -87,7 +98,6 @@ bt_fit_result_new (BtFitWork *work, const BtFitOptions *options, const double *z
                 = scale * map->factor[i] * map->factor[j] * covariance[(gsize)map->index[i] * p + (guint)map->index[j]];
         result->u[i] = sqrt (result->covariance[(gsize)i * n + i]);
       }
-  result->effective_points = bt_effective_points (result->n_points, bt_lag1_correlation (work->residual, result->n_points));
   fill_criteria (result, options->sigma_known);
   return result;
 }

@@ -66,6 +66,7 @@ solve_from_many (BtFitWork *work, const BtFitOptions *options, GCancellable *can
           *state = now;
           memcpy (best, z, bytes);
         }
+      bt_fit_tell (work->fit, (double)(i + 1) / most);
       if (now == BT_SOLVE_CANCELLED)
         break;
       if (options->good_enough > 0 && *state == BT_SOLVE_CONVERGED && best_cost <= options->good_enough * freedom)

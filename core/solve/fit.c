@@ -34,6 +34,8 @@ bt_fit_finalize (GObject *object)
   g_free (self->masked);
   g_array_unref (self->parts);
   g_array_unref (self->parameters);
+  if (self->progress_destroy != NULL)
+    self->progress_destroy (self->progress_data);
   G_OBJECT_CLASS (bt_fit_parent_class)->finalize (object);
 }
 
@@ -41,6 +43,17 @@ static void
 bt_fit_class_init (BtFitClass *class)
 {
   G_OBJECT_CLASS (class)->finalize = bt_fit_finalize;
+}
+
+void
+bt_fit_set_progress (BtFit *self, BtFitProgressFunc func, gpointer data, GDestroyNotify destroy)
+{
+  g_return_if_fail (BT_IS_FIT (self));
+  if (self->progress_destroy != NULL)
+    self->progress_destroy (self->progress_data);
+  self->progress = func;
+  self->progress_data = data;
+  self->progress_destroy = destroy;
 }
 
 BtFit *

@@ -81,20 +81,35 @@ void bt_fit_unmask (BtFit *self);
 void bt_fit_set_data (BtFit *self, const double *y, gsize n);
 
 /**
+ * BtFitProgressFunc:
+ * @share: 0 to 1
+ */
+typedef void (*BtFitProgressFunc) (double share, gpointer data);
+/**
+ * bt_fit_set_progress:
+ * @func: (nullable) (scope notified): called after each start of bt_fit_solve() and each resample of bt_fit_resample(), from the thread that called them
+ *
+ * For long calls; a cancellable ends them.
+ */
+void bt_fit_set_progress (BtFit *self, BtFitProgressFunc func, gpointer data, GDestroyNotify destroy);
+
+/**
  * BtFitOptions:
  * @max_iterations: 0: 200 a start
  * @tolerance: relative change of chi2 and parameters; 0: 1e-10
  * @starts: most starts; 1 (or 0): only the one given. Others are drawn within the bounds from @seed
  * @good_enough: chi2 over the degrees of freedom below which no further start is tried; 0: every start is used
+ * @correlated: whether the correlation of the residuals counts: covariances are then scaled by chi2 over the effective points (of an AR(1) series,
+ *   n (1 - r) / (1 + r)) less the parameters, or by the points over the effective ones where @sigma_known
  * @sigma_known: whether the points' standard uncertainties are absolute; otherwise covariances are scaled by chi2 over the degrees of freedom
  */
 typedef struct {
   guint max_iterations, starts;
   guint64 seed;
   double tolerance, good_enough;
-  gboolean sigma_known;
+  gboolean sigma_known, correlated;
 } BtFitOptions;
-#define BT_FIT_OPTIONS_INIT { 0, 1, 1, 0, 0, FALSE }
+#define BT_FIT_OPTIONS_INIT { 0, 1, 1, 0, 0, FALSE, FALSE }
 
 /**
  * BtFitResult:

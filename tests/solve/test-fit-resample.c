@@ -297,6 +297,92 @@ test_profile (void)
   }
 }
 
+/* Noise that repeats itself (AR(1), r = 0.8): the covariance that knows of it holds against the scatter of many fits, the plain one is too small by about
+ * sqrt ((1 + r) / (1 - r)) = 3. */
+static void
+test_correlated_covariance (void)
+{
+  const BtFitOptions plain = { .starts = 1 }, aware = { .starts = 1, .correlated = TRUE };
+  const double r = 0.8, u = 0.01;
+  double x[N], clean[N], y[N], told[2][P] = { { 0 } }, mean[P] = { 0 }, square[P] = { 0 };
+  GRand *random = g_rand_new_with_seed (4711);
+  const int runs = 300;
+
+  curve (x, clean);
+  for (int k = 0; k < runs; k++)
+    {
+      double error = u * normal (random);
+      g_autoptr (BtFit) fit = NULL;
+
+      for (int i = 0; i < N; i++)
+        {
+          y[i] = clean[i] + error;
+          error = r * error + sqrt (1 - r * r) * u * normal (random);
+        }
+      fit = two_bands (x, y, NULL);
+      for (int way = 0; way < 2; way++)
+        {
+          g_autoptr (BtFitResult) result = bt_fit_solve (fit, way == 0 ? &plain : &aware, NULL, NULL);
+
+          for (guint j = 0; j < P; j++)
+            {
+              told[way][j] += result->u[j] / runs;
+              if (way == 0)
+                {
+                  mean[j] += result->x[j] / runs;
+                  square[j] += result->x[j] * result->x[j] / runs;
+                }
+            }
+        }
+    }
+  for (guint j = 0; j < P; j++)
+    {
+      const double seen = sqrt (square[j] - mean[j] * mean[j]);
+
+      g_assert_cmpfloat (told[1][j] / seen, >, 0.75);
+      g_assert_cmpfloat (told[1][j] / seen, <, 1.5);
+      g_assert_cmpfloat (told[0][j] / seen, <, 0.55);
+    }
+  g_rand_free (random);
+}
+
+typedef struct { guint calls; double last; gboolean forwards; } Told;
+
+static void
+tell (double share, gpointer data)
+{
+  Told *told = data;
+
+  told->forwards = told->forwards && share >= told->last && share <= 1;
+  told->last = share;
+  told->calls++;
+}
+
+static void
+test_progress (void)
+{
+  double x[N], y[N], out[40 * P];
+  g_autoptr (BtFit) fit = NULL;
+  g_autoptr (BtFitResult) result = NULL;
+  const BtFitOptions options = { .starts = 6, .seed = 3 };
+  Told told = { 0, 0, TRUE };
+
+  curve (x, y);
+  for (int i = 0; i < N; i++)
+    y[i] += 1e-3 * sin (91.0 * i);
+  fit = two_bands (x, y, NULL);
+  bt_fit_set_progress (fit, tell, &told, NULL);
+  result = bt_fit_solve (fit, &options, NULL, NULL);
+  g_assert_cmpuint (told.calls, ==, 6);
+  g_assert_true (told.forwards);
+  g_assert_cmpfloat_with_epsilon (told.last, 1, 1e-12);
+  told = (Told){ 0, 0, TRUE };
+  g_assert_true (bt_fit_resample (fit, result, BT_RESAMPLE_NOISE, 0, 40, TRUE, 1, 1, out, NULL, NULL));
+  g_assert_cmpuint (told.calls, ==, 40);
+  g_assert_true (told.forwards);
+  g_assert_cmpfloat_with_epsilon (told.last, 1, 1e-12);
+}
+
 int
 main (int argc, char **argv)
 {
@@ -306,5 +392,7 @@ main (int argc, char **argv)
   g_test_add_func ("/fit/resample/bound", test_resample_bound);
   g_test_add_func ("/fit/correlated", test_correlated);
   g_test_add_func ("/fit/profile", test_profile);
+  g_test_add_func ("/fit/correlated-covariance", test_correlated_covariance);
+  g_test_add_func ("/fit/progress", test_progress);
   return g_test_run ();
 }
