@@ -121,7 +121,7 @@ def test_the_same_twice():
 
 def test_a_film_without_an_answer():
     path, films = grade("short", SHORT, "--limit", "0.6", "--wavelengths-nm", "550,2000", "--diameter-nm", "3")
-    assert films[0]["semiconducting_fraction"]["bound"] == "none", films[0]["semiconducting_fraction"]
+    assert films[0]["semiconducting_fraction"]["bound"] is None, films[0]["semiconducting_fraction"]
     text = words_of(path)
     for flag in films[0]["flags"]:
         has(text, re.sub(r"\s+", " ", flag["text"]))
