@@ -51,9 +51,9 @@ solve_from_many (BtFitWork *work, const BtFitOptions *options, GCancellable *can
       BtRandom random = bt_random_new (options->seed, i);
       BtSolveState now;
 
-      if (i == 0)
+      if (i == 0 && bytes > 0)
         memcpy (z, from, bytes);
-      else
+      else if (i > 0)
         draw_start (map, &random, i, from, best, z);
       work->lm.hopeless_above = i > 0 ? best_cost : 0;
       now = bt_fit_run (work, options, cancellable, z);

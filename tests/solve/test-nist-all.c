@@ -23,7 +23,7 @@ static void
 load (const Nist *set, Data *data)
 {
   g_autofree char *file = g_strconcat (set->name, ".dat", NULL);
-  g_autofree char *path = g_test_build_filename (G_TEST_DIST, "nist-strd", file, NULL);
+  g_autofree char *path = g_build_filename (SOURCE_DIR, "nist-strd", file, NULL);
   g_autofree char *text = NULL;
   g_auto (GStrv) lines = NULL;
   g_autoptr (GError) error = NULL;
