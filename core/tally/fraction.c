@@ -33,35 +33,27 @@ bt_area_fraction (double area_s, double area_m, double strength_ratio)
   return area_s / (area_s + strength_ratio * area_m);
 }
 
-/* Variance of g'x from the noise of the readings alone: the fit's answer to an error e of the data is C J' W e. */
-static void
-noise_part (BtCandidate *candidate, const BtPrepared *prepared, const double *gs, const double *gm)
+void
+bt_candidate_take_noise (BtCandidate *candidate, const BtLinear *fit, const double *noise, const double *sigma, const double *gs, const double *gm)
 {
-  const BtFilmFit *fit = candidate->fit;
-  const BtFilmData *data = &prepared->data;
   const gsize p = fit->p;
-  g_autofree double *residual = g_new (double, data->n), *jacobian = g_new (double, data->n * p);
-  double vs[BT_MODEL_MAX_PARAMETERS], vm[BT_MODEL_MAX_PARAMETERS];
+  g_autofree double *vs = g_new0 (double, p), *vm = g_new0 (double, p);
 
-  bt_film_fit_residual (fit, data, residual, jacobian);
   for (gsize a = 0; a < p; a++)
-    {
-      vs[a] = vm[a] = 0;
-      for (gsize b = 0; b < p; b++)
-        {
-          vs[a] += fit->covariance[a * p + b] * gs[b];
-          vm[a] += fit->covariance[a * p + b] * gm[b];
-        }
-    }
+    for (gsize b = 0; b < p; b++)
+      {
+        vs[a] += fit->covariance[a * p + b] * gs[b];
+        vm[a] += fit->covariance[a * p + b] * gm[b];
+      }
   candidate->noise_ss = candidate->noise_mm = candidate->noise_sm = 0;
-  for (gsize i = 0; i < data->n; i++)
+  for (gsize i = 0; i < fit->n; i++)
     {
-      double s = 0, m = 0, ratio = prepared->noise[i] / data->sigma[i];
+      double s = 0, m = 0, ratio = noise[i] / sigma[i];
 
       for (gsize a = 0; a < p; a++)
         {
-          s += jacobian[i * p + a] * vs[a];
-          m += jacobian[i * p + a] * vm[a];
+          s += fit->jacobian[i * p + a] * vs[a];
+          m += fit->jacobian[i * p + a] * vm[a];
         }
       candidate->noise_ss += s * s * ratio * ratio;
       candidate->noise_mm += m * m * ratio * ratio;
@@ -69,23 +61,37 @@ noise_part (BtCandidate *candidate, const BtPrepared *prepared, const double *gs
     }
 }
 
-/* Share of var(g'x) that would go if the sizes of the steps were known: c' S^-1 c / var, one step at a time. */
-static double
-step_share (const BtFilmFit *fit, const double *g, double variance)
+double
+bt_step_share (const double *covariance, gsize p, gsize first_step, guint n_steps, const double *g)
 {
-  double share = 0;
+  double share = 0, variance = 0;
 
-  for (guint k = 0; k < fit->n_steps; k++)
+  for (gsize a = 0; a < p; a++)
+    for (gsize b = 0; b < p && fabs (g[a]) > 0; b++)
+      variance += g[a] * covariance[a * p + b] * g[b];
+  for (guint k = 0; k < n_steps; k++)
     {
-      gsize j = bt_film_fit_offset (fit) + 1 + k;
-      double c = 0, v = fit->covariance[j * fit->p + j];
+      const gsize j = first_step + k;
+      double c = 0, v = covariance[j * p + j];
 
-      for (gsize b = 0; b < fit->p; b++)
-        c += fit->covariance[j * fit->p + b] * g[b];
+      for (gsize b = 0; b < p; b++)
+        c += covariance[j * p + b] * g[b];
       if (v > 0 && variance > 0)
         share += c * c / v / variance;
     }
   return fmin (share, 1);
+}
+
+static void
+noise_part (BtCandidate *candidate, const BtPrepared *prepared, const double *gs, const double *gm)
+{
+  const BtFilmFit *fit = candidate->fit;
+  const BtFilmData *data = &prepared->data;
+  g_autofree double *residual = g_new (double, data->n), *jacobian = g_new (double, data->n * fit->p);
+  const BtLinear linear = { data->n, fit->p, fit->covariance, jacobian };
+
+  bt_film_fit_residual (fit, data, residual, jacobian);
+  bt_candidate_take_noise (candidate, &linear, prepared->noise, data->sigma, gs, gm);
 }
 
 static double
@@ -169,7 +175,7 @@ bt_candidate_init (BtCandidate *candidate, const BtFilmFit *fit, const BtPrepare
    * it at least as much as it is short of zero. */
   if (candidate->area_m < 0 && candidate->area_m * candidate->area_m > candidate->var_mm)
     candidate->var_mm = candidate->area_m * candidate->area_m;
-  candidate->step_share = step_share (fit, gf, bt_film_fit_covariance_of (fit, gf, gf));
+  candidate->step_share = bt_step_share (fit->covariance, fit->p, bt_film_fit_offset (fit) + 1, fit->n_steps, gf);
   if (fit->n_in_group[BT_S11] > 0)
     candidate->doping_u = bt_doping_u (bt_film_fit_group_area (fit, BT_S11, NULL), candidate->area_s);
   find_ambiguous (candidate, prepared);

@@ -33,6 +33,13 @@ typedef struct {
   BtAmbiguous ambiguous[BT_MAX_AMBIGUOUS];
 } BtCandidate;
 
+/* A fit at its minimum: @covariance p x p for residuals in units of sigma, @jacobian n x p of the model over sigma. */
+typedef struct { gsize n, p; const double *covariance, *jacobian; } BtLinear;
+/* What the reading's noise alone gives to the areas whose gradients are @gs and @gm: the fit's answer to an error e of the data is C J' W e. */
+void bt_candidate_take_noise (BtCandidate *candidate, const BtLinear *fit, const double *noise, const double *sigma, const double *gs, const double *gm);
+/* Share of var(g'x) that would go if the sizes of the steps were known: c' S^-1 c / var, one step at a time. */
+double bt_step_share (const double *covariance, gsize p, gsize first_step, guint n_steps, const double *g);
+
 /* Fills what comes from the fit; @weight and @tail are the caller's. */
 void bt_candidate_init (BtCandidate *candidate, const BtFilmFit *fit, const BtPrepared *prepared);
 /* The same for the ensemble of the tail numbered @tail. */

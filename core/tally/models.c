@@ -36,53 +36,14 @@ effective_points (const BtEnsembles *e)
   return sum;
 }
 
-/* What the reading's noise alone gives to the areas: the fit's answer to an error of the data is C J' W e. */
 static void
 noise_part (BtCandidate *candidate, const BtEnsembles *e, const BtEnsembleFit *fit, const double *gs, const double *gm)
 {
-  const gsize n = e->data.n, p = fit->p;
-  g_autofree double *residual = g_new (double, n), *jacobian = g_new (double, n * p), *vs = g_new0 (double, p), *vm = g_new0 (double, p);
+  g_autofree double *residual = g_new (double, e->data.n), *jacobian = g_new (double, e->data.n * fit->p);
+  const BtLinear linear = { e->data.n, fit->p, fit->covariance, jacobian };
 
   bt_ensemble_fit_residual (fit, &e->data, residual, jacobian);
-  for (gsize a = 0; a < p; a++)
-    for (gsize b = 0; b < p; b++)
-      {
-        vs[a] += fit->covariance[a * p + b] * gs[b];
-        vm[a] += fit->covariance[a * p + b] * gm[b];
-      }
-  for (gsize i = 0; i < n; i++)
-    {
-      double s = 0, m = 0, ratio = e->noise[i] / e->sigma[i];
-
-      for (gsize a = 0; a < p; a++)
-        {
-          s += jacobian[i * p + a] * vs[a];
-          m += jacobian[i * p + a] * vm[a];
-        }
-      candidate->noise_ss += s * s * ratio * ratio;
-      candidate->noise_mm += m * m * ratio * ratio;
-      candidate->noise_sm += s * m * ratio * ratio;
-    }
-}
-
-/* Share of var(g'x) that would go if the sizes of the steps were known, one step at a time. */
-static double
-step_share (const BtEnsembleFit *fit, const double *g)
-{
-  const double variance = bt_ensemble_fit_covariance_of (fit, g, g);
-  double share = 0;
-
-  for (guint k = 0; k < fit->n_steps; k++)
-    {
-      const gsize j = fit->first_common - fit->n_fringe - fit->n_steps + k;
-      double c = 0, v = fit->covariance[j * fit->p + j];
-
-      for (gsize b = 0; b < fit->p; b++)
-        c += fit->covariance[j * fit->p + b] * g[b];
-      if (v > 0 && variance > 0)
-        share += c * c / v / variance;
-    }
-  return fmin (share, 1);
+  bt_candidate_take_noise (candidate, &linear, e->noise, e->sigma, gs, gm);
 }
 
 void
@@ -105,7 +66,7 @@ bt_candidate_init_ensemble (BtCandidate *candidate, const BtEnsembles *e, guint 
   sum = candidate->area_s + candidate->area_m;
   for (gsize j = 0; j < fit->p; j++)
     gf[j] = (gs[j] * candidate->area_m - gm[j] * candidate->area_s) / (sum * sum);
-  candidate->step_share = step_share (fit, gf);
+  candidate->step_share = bt_step_share (fit->covariance, fit->p, fit->first_common - fit->n_fringe - fit->n_steps, fit->n_steps, gf);
   if (prepared->n_in_group[BT_S11] > 0)
     candidate->doping_u = bt_doping_u (exp (fit->x[fit->first_common + BT_ENSEMBLE_LOG_S11]), 1);
   /* As with the groups: an area below zero by more than its uncertainty says that the uncertainty is too small. */
