@@ -7,8 +7,8 @@
 /* Lines of single tubes are wider than 40 meV: so many points over the usual range show all of them. */
 #define MAX_POINTS 350
 /* Smooth waves that photometers leave in any reading, as a share of the mean absorbance (common practice). */
-#define LEAST_STRUCTURE 5e-4
-#define STRUCTURE_FACTOR 2.0
+#define LEAST_STRUCTURE 8e-4
+#define STRUCTURE_FACTOR 2.5
 /* Rounds of fitting and learning the structure that is left. */
 #define ROUNDS 3
 /* A tail so much worse than the best one cannot come back: its weight is below e^-50. */

@@ -10,6 +10,8 @@
 #define MAX_POINTS 700
 /* Fewer than this cannot carry a tail and a band. */
 #define MIN_POINTS 20
+/* Readings of which stray light hides more than this share are left out. */
+#define MOST_HIDDEN 0.02
 
 void
 bt_prepared_free (BtPrepared *prepared)
@@ -49,6 +51,19 @@ in_any (const BtRange *ranges, gsize n, double energy_ev)
   return FALSE;
 }
 
+/* The share of the absorbance that stray light hides where the reading stands, A_read = -log10 ((T + s) / (1 + s)). */
+static double
+hidden_share (BtFilm *film, double stray, double energy_ev)
+{
+  double a, t;
+
+  if (!(stray > 0))
+    return 0;
+  a = bt_spectrum_absorbance_at (bt_film_get_spectrum (film), energy_ev);
+  t = pow (10, -a) * (1 + stray) - stray;
+  return t > 0 ? (a > 0 ? (-log10 (t) - a) / a : 0) : 1;
+}
+
 /* Copies the points to be fitted; counts those left out for being too dark. */
 static void
 take_points (BtPrepared *prepared, BtFilm *film, const BtRecipe *recipe)
@@ -70,7 +85,7 @@ take_points (BtPrepared *prepared, BtFilm *film, const BtRecipe *recipe)
       if (e < prepared->range.low_ev || e > prepared->range.high_ev
           || in_any ((const BtRange *) (void *) recipe->excluded->data, recipe->excluded->len, e))
         continue;
-      if (in_any (saturated, n_saturated, e))
+      if (in_any (saturated, n_saturated, e) || (!is_alpha && hidden_share (film, recipe->stray_light, e) > MOST_HIDDEN))
         {
           prepared->n_saturated++;
           continue;

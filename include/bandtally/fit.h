@@ -202,6 +202,35 @@ typedef enum { BT_RESAMPLE_NOISE, BT_RESAMPLE_BLOCKS } BtResampleKind;
 gboolean bt_fit_resample (BtFit *self, const BtFitResult *best, BtResampleKind kind, guint block, guint n_resamples, gboolean refit, guint64 seed,
                           guint threads, double *out, GCancellable *cancellable, GError **error);
 
+/* Correlation of two parameters, -1 to 1; 0 where one of them has no uncertainty. */
+double bt_fit_result_correlation (const BtFitResult *result, guint a, guint b);
+
+/**
+ * BtFitDerivedFunc:
+ * @parameters: all of the problem's
+ *
+ * A quantity that follows from the parameters: an area, a ratio. Pure.
+ */
+typedef double (*BtFitDerivedFunc) (const double *parameters, gpointer data);
+/**
+ * bt_fit_result_derive: (skip)
+ * @u: (out) (nullable): its standard uncertainty by the delta method, sqrt (g'Cg) with the gradient by central differences (JCGM 100:2008 eq. 13)
+ *
+ * Returns: the quantity at the minimum
+ */
+double bt_fit_result_derive (const BtFitResult *result, BtFitDerivedFunc func, gpointer data, double *u);
+/**
+ * bt_fit_derive_from_draws: (skip)
+ * @draws: (array): n_draws x n_parameters, of bt_fit_resample()
+ * @level: of the interval
+ * @mean, @u: (out) (nullable): of the quantity over the draws
+ * @low, @high: (out) (nullable): probabilistically symmetric interval (JCGM 101:2008 7.7)
+ *
+ * The same by resampling, for quantities that bend where the parameters are uncertain.
+ */
+void bt_fit_derive_from_draws (const double *draws, guint n_draws, guint n_parameters, BtFitDerivedFunc func, gpointer data, double level, double *mean,
+                               double *u, double *low, double *high);
+
 /**
  * bt_fit_result_dup_x:
  * @n: (out): number of parameters

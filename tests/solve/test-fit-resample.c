@@ -346,6 +346,40 @@ test_correlated_covariance (void)
   g_rand_free (random);
 }
 
+/* Area of the first band over that of both: by hand from the truth, and the same uncertainty by the delta method and by draws. */
+static double
+area_share (const double *p, gpointer data)
+{
+  return p[0] * p[2] / (p[0] * p[2] + p[3] * p[5]);
+}
+
+static void
+test_derived (void)
+{
+  const guint n = 4000;
+  double x[N], y[N], sigma[N], value, u, mean, drawn_u, low, high;
+  g_autofree double *draws = g_new (double, (gsize) n * P);
+  g_autoptr (BtFit) fit = NULL;
+  g_autoptr (BtFitResult) result = NULL;
+
+  curve (x, y);
+  for (int i = 0; i < N; i++)
+    sigma[i] = 5e-3;
+  fit = two_bands (x, y, sigma);
+  result = solve (fit, TRUE);
+  value = bt_fit_result_derive (result, area_share, NULL, &u);
+  g_assert_cmpfloat_with_epsilon (value, 1 * 0.3 / (1 * 0.3 + 0.7 * 0.35), 1e-6);
+  g_assert_true (bt_fit_resample (fit, result, BT_RESAMPLE_NOISE, 0, n, TRUE, 11, 1, draws, NULL, NULL));
+  bt_fit_derive_from_draws (draws, n, P, area_share, NULL, 0.95, &mean, &drawn_u, &low, &high);
+  g_assert_cmpfloat_with_epsilon (mean, value, 5 * u / sqrt (n) + 0.01 * u);
+  g_assert_cmpfloat_with_epsilon (drawn_u / u, 1, 0.06);
+  g_assert_cmpfloat_with_epsilon ((high - low) / (2 * 1.96 * u), 1, 0.08);
+  g_assert_cmpfloat_with_epsilon (bt_fit_result_correlation (result, 0, 0), 1, 1e-9);
+  /* A taller band is a narrower one. */
+  g_assert_cmpfloat (bt_fit_result_correlation (result, 0, 2), <, -0.3);
+  g_assert_cmpfloat_with_epsilon (bt_fit_result_correlation (result, 0, 2), bt_fit_result_correlation (result, 2, 0), 1e-12);
+}
+
 typedef struct { guint calls; double last; gboolean forwards; } Told;
 
 static void
@@ -394,5 +428,6 @@ main (int argc, char **argv)
   g_test_add_func ("/fit/profile", test_profile);
   g_test_add_func ("/fit/correlated-covariance", test_correlated_covariance);
   g_test_add_func ("/fit/progress", test_progress);
+  g_test_add_func ("/fit/derived", test_derived);
   return g_test_run ();
 }
