@@ -319,7 +319,7 @@ def main():
         wrong = os.path.join(folder, "wrong.txt")
         with open(wrong, "w") as file:
             file.write("This is a letter and no spectrum.\n")
-        desk = d.Desk(program, first, wrong, second, cwd=folder, environment={"HOME": folder})
+        desk = d.Desk(program, first, wrong, second, cwd=folder, environment={"HOME": folder, "SOURCE_DATE_EPOCH": "1000000000"})
         for function in (opens_and_answers, says_what_is_wrong, bad_number_keeps_value, thickness_gives_alpha, undo_and_redo,
                          crown_is_dragged, beam_by_keyboard, beam_by_value, range_is_left_out, range_is_typed,
                          tail_is_left_out, light_path_is_chosen, menu_holds_band, width_is_typed, zooms_and_shows_all, limit_gives_verdict,
