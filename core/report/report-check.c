@@ -145,33 +145,21 @@ add_lines (BtFlow *flow, PangoContext *context, const BtInstrumentCheck *check, 
                4);
 }
 
-static void
-add_close (BtFlow *flow, PangoContext *context, const BtInstrumentCheck *check, double width)
+BtFlow *
+bt_report_check_flow (PangoContext *context, const BtInstrumentCheck *check, BtSpectrum *spectrum, const char *date, double width)
 {
-  const char *cautions[]
+  const char *const cautions[]
       = { check->standard == BT_STANDARD_HOLMIUM
               ? _ ("Perchloric acid is corrosive and strongly oxidizing: use the standard in its sealed cell, and do not open it.")
               : _ ("Potassium dichromate is toxic, carcinogenic and an oxidizer; perchloric acid is corrosive: use sealed cells, and collect the waste."),
           _ ("Do not look into the light of an ultraviolet lamp. Your laboratory's rules come before this page."),
-          _ ("This check is a measurement aid; it does not replace the instrument's calibration.") };
-  BtFlow *close = bt_flow_new ();
-
-  bt_flow_add (close, bt_block_new_heading (context, _ ("Cautions"), width), 0);
-  for (gsize i = 0; i < G_N_ELEMENTS (cautions); i++)
-    bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, cautions[i], width), i == 0 ? 4 : 1);
-  bt_flow_add (close, bt_report_signature_new (context, width), 4);
-  bt_flow_add (flow, bt_block_new_pair (close, bt_flow_new (), width), 14)->bottom = TRUE;
-}
-
-BtFlow *
-bt_report_check_flow (PangoContext *context, const BtInstrumentCheck *check, BtSpectrum *spectrum, const char *date, double width)
-{
+          _ ("This check is a measurement aid; it does not replace the instrument's calibration."), NULL };
   BtFlow *flow = bt_flow_new ();
 
   add_title (flow, context, check, spectrum, date, width);
   add_outcome (flow, context, check, width);
   bt_flow_add (flow, bt_report_check_figure_new (context, check, spectrum, width), 10);
   add_lines (flow, context, check, width);
-  add_close (flow, context, check, width);
+  bt_report_add_close (flow, context, cautions, width);
   return flow;
 }

@@ -406,8 +406,8 @@ draw_signature (cairo_t *cr, double width, double height, gpointer data)
     }
 }
 
-BtBlock *
-bt_report_signature_new (PangoContext *context, double width)
+static BtBlock *
+signature_new (PangoContext *context, double width)
 {
   static const double widths[] = { 0.37, 0.19, 0.38 };
   const char *labels[] = { _ ("Name"), _ ("Date"), _ ("Signature") };
@@ -422,23 +422,23 @@ bt_report_signature_new (PangoContext *context, double width)
   return bt_block_new_drawing (width, 36 + tallest, draw_signature, signature, signature_free);
 }
 
-static void
-add_close (BtFlow *flow, PangoContext *context, double width)
+void
+bt_report_add_close (BtFlow *flow, PangoContext *context, const char *const *cautions, double width)
 {
-  const char *cautions[] = { _ ("Follow your laboratory's rules for nanomaterials, solvents and ultraviolet lamps."),
-                             _ ("A tally is a measurement aid, not a certificate.") };
   BtFlow *close = bt_flow_new ();
 
   bt_flow_add (close, bt_block_new_heading (context, _ ("Cautions"), width), 0);
-  for (gsize i = 0; i < G_N_ELEMENTS (cautions); i++)
+  for (gsize i = 0; cautions[i] != NULL; i++)
     bt_flow_add (close, bt_block_new_text (context, BT_FACE_BODY, cautions[i], width), i == 0 ? 4 : 1);
-  bt_flow_add (close, bt_report_signature_new (context, width), 4);
+  bt_flow_add (close, signature_new (context, width), 4);
   bt_flow_add (flow, bt_block_new_pair (close, bt_flow_new (), width), 14)->bottom = TRUE;
 }
 
 BtFlow *
 bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const char *date, double width, double height)
 {
+  const char *const cautions[] = { _ ("Follow your laboratory's rules for nanomaterials, solvents and ultraviolet lamps."),
+                                   _ ("A tally is a measurement aid, not a certificate."), NULL };
   BtFlow *flow = bt_flow_new ();
 
   add_title (flow, context, film, tally, date, width);
@@ -448,6 +448,6 @@ bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally, const 
   add_beside (flow, context, tally, bt_report_add_budget, bt_report_add_tails, 0.56, width, height);
   add_sentences (flow, context, tally, film, width);
   add_beside (flow, context, tally, bt_report_add_readings, bt_report_add_recipe, 0.5, width, height);
-  add_close (flow, context, width);
+  bt_report_add_close (flow, context, cautions, width);
   return flow;
 }

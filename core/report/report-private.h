@@ -115,7 +115,8 @@ BtFlow *bt_report_film_flow (PangoContext *context, BtFilm *film, BtTally *tally
                              double height);
 /* The sign of a verdict (as pointer in @data), and three lines to write on. */
 void bt_report_draw_sign (cairo_t *cr, double width, double height, gpointer data);
-BtBlock *bt_report_signature_new (PangoContext *context, double width);
+/* Cautions, and lines to sign on, at the foot of the page; @cautions ends with NULL. */
+void bt_report_add_close (BtFlow *flow, PangoContext *context, const char *const *cautions, double width);
 /* Parts of it, each appended to @flow. */
 void bt_report_add_bands (BtFlow *flow, PangoContext *context, BtFilm *film, const BtTally *tally, double width);
 void bt_report_add_budget (BtFlow *flow, PangoContext *context, const BtTally *tally, double width);

@@ -6,7 +6,8 @@ import re
 import subprocess
 import sys
 import tempfile
-import traceback
+
+from tap import main
 
 PROGRAM = sys.argv[1]
 EPOCH = "1000000000"  # 2001-09-09 01:46:40 UTC
@@ -126,21 +127,5 @@ def test_wrong_use_is_named():
         assert not os.path.exists(in_folder("x.json"))
 
 
-def main():
-    tests = [(name, function) for name, function in globals().items() if name.startswith("test_")]
-    failed = 0
-    print(f"1..{len(tests)}", flush=True)
-    for number, (name, function) in enumerate(tests, 1):
-        title = name.removeprefix("test_").replace("_", " ")
-        try:
-            function()
-            print(f"ok {number} - {title}", flush=True)
-        except Exception:  # a test fails by whatever it raises
-            failed += 1
-            print(f"not ok {number} - {title}")
-            print("".join("# " + line + "\n" for line in traceback.format_exc().splitlines()), end="", flush=True)
-    sys.exit(1 if failed else 0)
-
-
 if __name__ == "__main__":
-    main()
+    main(globals())
